@@ -1,0 +1,1 @@
+//! The rule book: limits and settings, raw → validated.
