@@ -8,7 +8,7 @@ mod finding;
 
 pub use balance::{Balance, LegLoad, Move};
 pub use diagnosis::{
-    AddedOhms, Cause, CauseKind, Diagnosis, ExposedLeg, Exposure, LoadStep, NeutralInterval, NextReading, RepairEvidence,
-    RepairOutcome, SupplyDirection,
+    AddedOhms, Cause, CauseKind, Diagnosis, ExposedLeg, Exposure, LoadStep, NeutralInterval, NextReading, RepairEvidence, RepairOutcome,
+    SupplyDirection,
 };
 pub use finding::{Finding, Limit, Measurement, Signal, Verdict};

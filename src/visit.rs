@@ -60,12 +60,11 @@ impl Visit {
         let named = row.instrument.as_ref().map(|i| name_key(&i.value));
         let fits = |i: &&Instrument| i.measures.value == measures;
         match named {
-            Some(key) => self
-                .instruments
-                .iter()
-                .filter(fits)
-                .find(|i| name_key(&i.name.value) == key)
-                .or_else(|| self.instruments.iter().find(fits).filter(|_| self.instruments.iter().any(|i| name_key(&i.name.value) == key))),
+            Some(key) => {
+                self.instruments.iter().filter(fits).find(|i| name_key(&i.name.value) == key).or_else(|| {
+                    self.instruments.iter().find(fits).filter(|_| self.instruments.iter().any(|i| name_key(&i.name.value) == key))
+                })
+            }
             None => self.instruments.iter().find(fits),
         }
     }

@@ -244,11 +244,8 @@ mod tests {
     use super::*;
 
     fn tiny() -> Language {
-        Language::from_toml(
-            "xx",
-            "[number]\ndecimal-mark = \",\"\nand = \"y\"\n[a]\nb = \"{v} at {where}, {n?# row|# rows}, {runs}\"\n",
-        )
-        .unwrap()
+        Language::from_toml("xx", "[number]\ndecimal-mark = \",\"\nand = \"y\"\n[a]\nb = \"{v} at {where}, {n?# row|# rows}, {runs}\"\n")
+            .unwrap()
     }
 
     #[test]

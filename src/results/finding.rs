@@ -118,7 +118,15 @@ pub struct Finding {
 impl Finding {
     /// A finding with its primary place, what it says and what it advises.
     #[must_use]
-    pub fn new(rule: &'static str, signal: Signal, verdict: Verdict, primary: CellRef, says: Sentence, advice: Sentence, basis: &str) -> Self {
+    pub fn new(
+        rule: &'static str,
+        signal: Signal,
+        verdict: Verdict,
+        primary: CellRef,
+        says: Sentence,
+        advice: Sentence,
+        basis: &str,
+    ) -> Self {
         Self {
             rule,
             signal,
