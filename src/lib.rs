@@ -13,6 +13,8 @@
 pub mod diag;
 pub mod electrics;
 pub mod quantity;
+pub mod render;
+pub mod report;
 pub mod results;
 pub mod rulebook;
 pub mod visit;

@@ -1,0 +1,1 @@
+//! Renderers: the document as PDF, XLSX and HTML. They see [`crate::report::document`] alone.
