@@ -17,5 +17,6 @@ pub mod render;
 pub mod report;
 pub mod results;
 pub mod rulebook;
+pub mod rules;
 pub mod visit;
 pub mod wording;
