@@ -10,6 +10,7 @@
 //! [`pipeline`] is the only module that names all phases. Only [`cli`] touches files, the clock and the terminal; everything
 //! else gets bytes and values. DEVELOPERS.md has the map: what each module may use and what it must not know.
 
+pub mod balance;
 pub mod diag;
 pub mod electrics;
 pub mod quantity;
