@@ -9,13 +9,26 @@ mod book;
 mod facts;
 mod findings;
 mod list;
+mod listed;
 mod manual;
 mod range;
+mod tested;
 
+mod breaker_conductor;
+mod continuous_load;
+mod element_resistance;
+mod gfci_trip;
+mod ground_electrode;
+mod insulation_resistance;
 mod leg_difference;
+mod neutral_load;
 mod nominal_band;
 mod service_range;
+mod temperature_rise;
+mod torque;
 mod utilization_range;
+mod voltage_drop;
+mod voltage_unbalance;
 
 pub use facts::Facts;
 pub use findings::Findings;

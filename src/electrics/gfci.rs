@@ -22,3 +22,14 @@ pub fn longest_trip_time(residual: Amperes) -> Option<Seconds> {
     let milliamperes = residual.0.min(CURVE_END.0) * 1000.0;
     Some(Seconds(math::pow(20.0 / milliamperes, 1.43)))
 }
+
+/// Longest break time of a general residual-current device of 30 mA: 300 ms at its rated residual current, 40 ms at five times it
+/// (IEC 61008-1, table of limits; from memory). `None` below 30 mA.
+#[must_use]
+pub fn longest_residual_device_time(residual: Amperes) -> Option<Seconds> {
+    match residual.0 {
+        i if i >= 0.150 => Some(Seconds(0.040)),
+        i if i >= 0.030 => Some(Seconds(0.300)),
+        _ => None,
+    }
+}

@@ -6,7 +6,7 @@ use midwire::rules::{RULES, manual, manual_pages};
 use std::collections::BTreeSet;
 
 /// Files of `src/rules` that are no rule.
-const SHARED: [&str; 8] = ["book", "facts", "findings", "list", "manual", "range", "triangle", "cause"];
+const SHARED: [&str; 10] = ["book", "facts", "findings", "list", "listed", "manual", "range", "tested", "triangle", "cause"];
 
 fn rule_files() -> BTreeSet<String> {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("src/rules");
