@@ -6,15 +6,36 @@
 //! the manual page the program prints and `docs/rules.md` collects.
 
 mod book;
+mod cause;
 mod facts;
 mod findings;
 mod list;
 mod manual;
 mod range;
 
+mod accuracy_assumed;
+mod calibration_lapsed;
+mod circuit_list;
+mod current_balance;
+mod hot_path;
 mod leg_difference;
+mod leg_sum;
+mod neutral_current_sum;
+mod neutral_path;
+mod neutral_shift;
+mod neutral_to_ground;
 mod nominal_band;
+mod not_ruled_out;
+mod observation;
+mod open_neutral_exposure;
+mod receptacle_pattern;
+mod repair_proven;
+mod repeat_readings;
+mod rise_above_source;
 mod service_range;
+mod shared_neutral_disconnect;
+mod shared_neutral_legs;
+mod supply_voltage;
 mod utilization_range;
 
 pub use facts::Facts;
