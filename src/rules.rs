@@ -6,6 +6,7 @@
 //! the manual page the program prints and `docs/rules.md` collects.
 
 mod book;
+mod cause;
 mod facts;
 mod findings;
 mod list;
@@ -14,16 +15,36 @@ mod manual;
 mod range;
 mod tested;
 
+mod accuracy_assumed;
 mod breaker_conductor;
+mod calibration_lapsed;
+mod circuit_list;
 mod continuous_load;
+mod current_balance;
 mod element_resistance;
 mod gfci_trip;
 mod ground_electrode;
+mod hot_path;
 mod insulation_resistance;
 mod leg_difference;
+mod leg_sum;
+mod neutral_current_sum;
 mod neutral_load;
+mod neutral_path;
+mod neutral_shift;
+mod neutral_to_ground;
 mod nominal_band;
+mod not_ruled_out;
+mod observation;
+mod open_neutral_exposure;
+mod receptacle_pattern;
+mod repair_proven;
+mod repeat_readings;
+mod rise_above_source;
 mod service_range;
+mod shared_neutral_disconnect;
+mod shared_neutral_legs;
+mod supply_voltage;
 mod temperature_rise;
 mod torque;
 mod utilization_range;

@@ -2,7 +2,8 @@
 
 use crate::diag::CellRef;
 use crate::results::{Balance, Diagnosis, Exposure};
-use crate::visit::{Accuracy, Leg, Quantity, Reading, ReadingRow, Stage, Visit};
+use crate::visit::{Accuracy, Leg, Quantity, Reading, ReadingRow, Run, Stage, Visit};
+use crate::wording::{Arg, Sentence};
 use std::collections::BTreeMap;
 
 /// Everything the rules may look at.
@@ -34,7 +35,7 @@ impl<'a> Facts<'a> {
     /// The run is fed by the utility.
     #[must_use]
     pub fn is_service(&self, run: usize) -> bool {
-        self.visit.tree.roots.contains(&run)
+        self.visit.runs.get(run).is_some_and(|r| r.fed_from.is_none())
     }
 
     /// A run's name, as written; empty where there is no such run.
@@ -121,4 +122,23 @@ impl Known<'_> {
 pub fn common_gain(accuracy: Accuracy, total: f64, weights: &[f64]) -> f64 {
     let counts = accuracy.counts() * weights.iter().map(|w| w * w).sum::<f64>().sqrt();
     crate::quantity::math::hypot(accuracy.gain(total), counts)
+}
+
+/// Runs named in one sentence, at most; cells listed with it, at most. A list may be of ten thousand runs.
+const MOST_NAMES: usize = 8;
+const MOST_CELLS: usize = 100;
+
+/// The names of some runs for a sentence, with how many more there are.
+#[must_use]
+pub fn names(runs: &[&Run]) -> Vec<Arg> {
+    let mut names: Vec<Arg> = runs.iter().take(MOST_NAMES).map(|r| Arg::from(r.name.value.as_str())).collect();
+    if runs.len() > MOST_NAMES {
+        names.push(Arg::from(Sentence::new("advice.more").with("n", runs.len() - MOST_NAMES)));
+    }
+    names
+}
+
+/// The cells of the names of some runs.
+pub fn name_cells(runs: &[&Run]) -> impl Iterator<Item = CellRef> {
+    runs.iter().take(MOST_CELLS).map(|r| r.name.cell.clone())
 }

@@ -4,6 +4,7 @@ use super::Settings;
 use crate::diag::CellRef;
 use crate::electrics::judgement;
 use crate::results::{Finding, Limit, Signal, Verdict};
+use crate::visit::ReadingRow;
 use crate::wording::Sentence;
 
 /// Collects the findings of one rule; it knows the rule's name, basis, signal word and coverage factor.
@@ -44,7 +45,7 @@ impl<'a> Findings<'a> {
 
     /// A finding with another signal word than the rule's own, unless the user set one.
     ///
-    /// What is undecided is one word milder: that a limit may be exceeded is less than that it is. What passed is a NOTICE.
+    /// What passed asks for nothing. What is undecided is one word milder: that a limit may be exceeded is less than that it is. What passed is a NOTICE.
     #[must_use]
     pub fn draft_as(&self, signal: Signal, verdict: Verdict, cell: &CellRef, says: Sentence, advice: Sentence) -> Finding {
         let signal = self.user_signal.unwrap_or(signal);
@@ -53,7 +54,28 @@ impl<'a> Findings<'a> {
             Verdict::Undecided => milder(signal),
             Verdict::Pass => Signal::Notice,
         };
+        let advice = if verdict == Verdict::Pass { Sentence::new("advice.none") } else { advice };
         Finding::new(self.rule, signal, verdict, cell.clone(), says, advice, self.basis)
+    }
+
+    /// A finding about a set of readings, at its place, state and stage.
+    #[must_use]
+    pub fn of_row(&self, verdict: Verdict, row: &ReadingRow, cell: &CellRef, says: Sentence, advice: &'static str) -> Finding {
+        self.draft(verdict, cell, says, Sentence::new(advice)).at(&row.location.value).taken(&row.state, row.stage)
+    }
+
+    /// The same with another signal word.
+    #[must_use]
+    pub fn of_row_as(
+        &self,
+        signal: Signal,
+        verdict: Verdict,
+        row: &ReadingRow,
+        cell: &CellRef,
+        says: Sentence,
+        advice: &'static str,
+    ) -> Finding {
+        self.draft_as(signal, verdict, cell, says, Sentence::new(advice)).at(&row.location.value).taken(&row.state, row.stage)
     }
 
     /// The basis of a finding: a limit row's own, unless the user set one for the rule.

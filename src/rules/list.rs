@@ -1,27 +1,42 @@
 //! The list of all rules, in the order of the book.
 
-use super::Rule;
-use super::{
-    breaker_conductor, continuous_load, element_resistance, gfci_trip, ground_electrode, insulation_resistance, neutral_load,
-    temperature_rise, torque, voltage_drop, voltage_unbalance,
-};
-use super::{leg_difference, nominal_band, service_range, utilization_range};
+use super::*;
 
 /// All rules.
 pub static RULES: &[&Rule] = &[
     &nominal_band::RULE,
     &service_range::RULE,
     &utilization_range::RULE,
+    &leg_sum::RULE,
     &leg_difference::RULE,
+    &neutral_shift::RULE,
+    &rise_above_source::RULE,
     &voltage_unbalance::RULE,
     &voltage_drop::RULE,
+    &neutral_to_ground::RULE,
+    &receptacle_pattern::RULE,
+    &current_balance::RULE,
+    &neutral_current_sum::RULE,
     &continuous_load::RULE,
     &neutral_load::RULE,
     &breaker_conductor::RULE,
+    &shared_neutral_legs::RULE,
+    &shared_neutral_disconnect::RULE,
+    &circuit_list::RULE,
+    &neutral_path::RULE,
+    &hot_path::RULE,
+    &supply_voltage::RULE,
+    &open_neutral_exposure::RULE,
+    &not_ruled_out::RULE,
+    &calibration_lapsed::RULE,
+    &accuracy_assumed::RULE,
+    &repeat_readings::RULE,
     &insulation_resistance::RULE,
     &ground_electrode::RULE,
     &gfci_trip::RULE,
     &temperature_rise::RULE,
     &torque::RULE,
     &element_resistance::RULE,
+    &repair_proven::RULE,
+    &observation::RULE,
 ];
