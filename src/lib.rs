@@ -13,6 +13,7 @@
 pub mod balance;
 pub mod diag;
 pub mod electrics;
+pub mod intake;
 pub mod quantity;
 pub mod render;
 pub mod report;

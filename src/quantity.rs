@@ -5,6 +5,7 @@
 //! below this module.
 
 pub mod math;
+pub mod parse;
 
 use std::fmt;
 use std::ops::{Add, Div, Mul, Neg, Sub};

@@ -1,0 +1,60 @@
+//! The command line: the only place that opens files, prints and names `clap` and `anyhow`.
+//!
+//! Standard output carries results, standard error everything else. Exit status: `check` 0 nothing above NOTICE, 1 CAUTION or
+//! worse, 2 input that could not be used; the others 0 all done, 2 something was not.
+
+mod args;
+mod check;
+mod files;
+mod name;
+mod report;
+mod rules;
+mod templates;
+mod terminal;
+
+use crate::pipeline::Settings;
+use clap::Parser;
+use std::path::Path;
+use std::process::ExitCode;
+
+/// Everything was done, and nothing above NOTICE was found.
+const DONE: u8 = 0;
+/// CAUTION or worse was found.
+const FOUND: u8 = 1;
+/// Something could not be used or written.
+const FAILED: u8 = 2;
+
+/// Runs the command the arguments name.
+#[must_use]
+pub fn main() -> ExitCode {
+    let arguments = args::Arguments::parse();
+    let outcome = match &arguments.command {
+        args::Command::Check(a) => check::run(a),
+        args::Command::Report(a) => report::run(a),
+        args::Command::Rules(a) => rules::run(a),
+        args::Command::Templates(a) => templates::run(a),
+    };
+    match outcome {
+        Ok(status) => ExitCode::from(status),
+        // A reader that closed the pipe early (`| head`) is no failure of ours.
+        Err(e) if e.downcast_ref::<std::io::Error>().is_some_and(|e| e.kind() == std::io::ErrorKind::BrokenPipe) => ExitCode::from(DONE),
+        Err(e) => {
+            anstream::eprintln!("midwire: {}", terminal::visible(&format!("{e:#}")));
+            ExitCode::from(FAILED)
+        }
+    }
+}
+
+/// Settings with the user's rule book laid over the built-in one.
+fn settings(rules: Option<&Path>) -> anyhow::Result<Settings> {
+    let mut settings = Settings::default();
+    if let Some(path) = rules {
+        let text = files::text(path)?;
+        let name = path.display().to_string();
+        settings.rulebook = settings.rulebook.overlay(&text, &name).map_err(|problems| {
+            let lines: Vec<String> = problems.iter().map(|p| p.say(&settings.language)).collect();
+            anyhow::anyhow!("the rule book can't be used\n{}", lines.join("\n"))
+        })?;
+    }
+    Ok(settings)
+}

@@ -1,0 +1,106 @@
+//! Arguments of every command.
+
+use clap::{Args, Parser, Subcommand, ValueEnum};
+use std::path::PathBuf;
+
+/// Reads field workbooks of 120/240 V services, says what the readings mean, and writes reports.
+#[derive(Parser)]
+#[command(version, about, after_help = "Readings on live parts are for qualified people. The local code and the authority having jurisdiction decide.")]
+pub struct Arguments {
+    /// What to do.
+    #[command(subcommand)]
+    pub command: Command,
+}
+
+/// The commands.
+#[derive(Subcommand)]
+pub enum Command {
+    /// Read and check workbooks; print cell problems and findings
+    #[command(after_help = "Examples:\n  midwire check visit.xlsx\n  midwire check --json visit.xlsx > visit.json\n  midwire check --rules our-limits.toml *.xlsx\n\nExit status: 0 nothing above NOTICE, 1 CAUTION or worse, 2 input that could not be used.")]
+    Check(Check),
+    /// Check workbooks, then write a PDF and an XLSX of each
+    #[command(after_help = "Examples:\n  midwire report visit.xlsx\n  midwire report visit.xlsx -o out --html --page a4\n\nExit status: 0 all written, 2 something was not.")]
+    Report(Report),
+    /// Print the rule book in force: each rule, its limits, their basis
+    #[command(after_help = "Examples:\n  midwire rules\n  midwire rules leg-sum voltage-drop\n  midwire rules --rules our-limits.toml")]
+    Rules(Rules),
+    /// List the built-in report templates, or write them out for editing
+    #[command(after_help = "Examples:\n  midwire templates\n  midwire templates -o our-templates")]
+    Templates(Templates),
+}
+
+/// `midwire check`.
+#[derive(Args)]
+pub struct Check {
+    /// Workbooks (xlsx, xls, xlsb, ods), or folders of csv files, one a sheet
+    #[arg(required = true)]
+    pub workbooks: Vec<PathBuf>,
+    /// Print one JSON document (an array for several workbooks)
+    #[arg(long)]
+    pub json: bool,
+    /// List what passed, too
+    #[arg(long)]
+    pub all: bool,
+    /// A rule book of yours (TOML) to lay over the built-in one
+    #[arg(long, value_name = "FILE")]
+    pub rules: Option<PathBuf>,
+}
+
+/// `midwire report`.
+#[derive(Args)]
+pub struct Report {
+    /// Workbooks (xlsx, xls, xlsb, ods), or folders of csv files, one a sheet
+    #[arg(required = true)]
+    pub workbooks: Vec<PathBuf>,
+    /// Folder to write to; made if it is missing [default: beside each workbook]
+    #[arg(short, long, value_name = "DIR")]
+    pub output: Option<PathBuf>,
+    /// Replace reports that exist
+    #[arg(long)]
+    pub force: bool,
+    /// Write an HTML page, too
+    #[arg(long)]
+    pub html: bool,
+    /// Paper
+    #[arg(long, value_enum, default_value_t = Page::Letter)]
+    pub page: Page,
+    /// Date of issue (YYYY-MM-DD) [default: the visit date]
+    #[arg(long, value_name = "DATE")]
+    pub date: Option<String>,
+    /// A report template of yours
+    #[arg(long, value_name = "FILE")]
+    pub template: Option<PathBuf>,
+    /// A rule book of yours (TOML) to lay over the built-in one
+    #[arg(long, value_name = "FILE")]
+    pub rules: Option<PathBuf>,
+}
+
+/// Paper sizes.
+#[derive(Clone, Copy, ValueEnum)]
+pub enum Page {
+    /// 8.5 × 11 in
+    Letter,
+    /// 210 × 297 mm
+    A4,
+}
+
+/// `midwire rules`.
+#[derive(Args)]
+pub struct Rules {
+    /// Only these rules [default: all]
+    pub names: Vec<String>,
+    /// A rule book of yours (TOML) to lay over the built-in one
+    #[arg(long, value_name = "FILE")]
+    pub rules: Option<PathBuf>,
+}
+
+/// `midwire templates`.
+#[derive(Args)]
+pub struct Templates {
+    /// Folder to write them to [default: list them]
+    #[arg(short, long, value_name = "DIR")]
+    pub output: Option<PathBuf>,
+    /// Replace files that exist
+    #[arg(long)]
+    pub force: bool,
+}

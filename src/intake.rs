@@ -1,0 +1,88 @@
+//! Intake: from the bytes of a field workbook to a [`Visit`], every value with its cell, every problem collected.
+//!
+//! Bytes become a grid (`workbook`, the only place that knows file formats), the grid's tables are found by their headers
+//! (`header`, with the words of `synonyms.toml`), and each sheet's rows become values (`sheets`, one file a sheet).
+
+mod grid;
+
+use crate::diag::Output;
+use crate::visit::Visit;
+
+/// An input: its name as given, and what it holds.
+#[derive(Clone, Copy, Debug)]
+pub struct Input<'a> {
+    /// File name or path as the user gave it, for messages alone.
+    pub name: &'a str,
+    /// Its bytes.
+    pub content: Content<'a>,
+}
+
+/// What an input holds.
+#[derive(Clone, Copy, Debug)]
+pub enum Content<'a> {
+    /// A workbook file of any of the formats.
+    File(&'a [u8]),
+    /// A folder of csv files: file names and bytes.
+    Folder(&'a [(String, Vec<u8>)]),
+}
+
+/// How to read.
+#[derive(Clone, Copy)]
+pub struct Options<'a> {
+    /// Where photos come from.
+    pub beside: &'a dyn Beside,
+}
+
+/// Files that lie beside a workbook. Implemented by the command line; nothing else opens files.
+pub trait Beside {
+    /// The bytes of a file named in the workbook.
+    ///
+    /// # Errors
+    /// The name points out of the folder, or there is no such file, or it can't be read.
+    fn read(&self, name: &str) -> Result<Vec<u8>, BesideError>;
+}
+
+/// Why a file beside the workbook was not read.
+#[derive(Clone, Debug, PartialEq, Eq, thiserror::Error)]
+pub enum BesideError {
+    /// An absolute path, `..`, a link or a device.
+    #[error("the name points out of the workbook's folder")]
+    Outside,
+    /// No such file.
+    #[error("there is no such file beside the workbook")]
+    Missing,
+    /// Too large or not readable.
+    #[error("the file can't be read: {0}")]
+    Unreadable(String),
+}
+
+/// Why an input could not be used at all: one clear sentence each.
+#[derive(Clone, Debug, PartialEq, Eq, thiserror::Error)]
+pub enum Refusal {
+    /// No bytes.
+    #[error("the file is empty")]
+    Empty,
+    /// Not one of the formats that are read.
+    #[error("this is not a workbook that can be read ({0}); xlsx, xlsm, xls, xlsb, ods or a folder of csv files was expected")]
+    NotAWorkbook(String),
+    /// Protected by a password.
+    #[error("the workbook is protected by a password; save a copy without one")]
+    Encrypted,
+    /// Broken inside.
+    #[error("the workbook is damaged: {0}")]
+    Damaged(String),
+    /// Beyond a bound on size or number.
+    #[error("the workbook is too large to be read safely: {0}")]
+    TooLarge(String),
+    /// No table of readings.
+    #[error("there is no table of readings; a sheet with the columns Location and L1-N (or Location, Quantity, Value) was expected{0}")]
+    NoReadings(String),
+}
+
+/// Reads an input.
+///
+/// # Errors
+/// It could not be used at all; problems of single cells are in the output instead.
+pub fn read(_input: &Input, _options: &Options) -> Result<Output<Visit>, Refusal> {
+    todo!("merged from the two halves of the intake")
+}
