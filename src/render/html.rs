@@ -1,0 +1,1 @@
+//! The document as one self-contained HTML file.
