@@ -170,7 +170,12 @@ pub fn balance() -> Table {
     let load = |key: &str, heading: &str| column(key, heading, Some(Unit::VoltAmpere), ColumnKind::Number);
     let columns = vec![column("circuit", "Circuit", None, ColumnKind::Name), load("l1", "L1"), load("l2", "L2")];
     let line = |name: &str, l1: f64, l2: f64| row(vec![words(name), Cell::Number(Number::new(l1, 0)), Cell::Number(Number::new(l2, 0))]);
-    let rows = vec![line("1 range", 4000.0, 4000.0), line("5/7 kitchen", 1500.0, 350.0), line("9 laundry", 0.0, 1200.0), line("dryer", 2700.0, 2700.0)];
+    let rows = vec![
+        line("1 range", 4000.0, 4000.0),
+        line("5/7 kitchen", 1500.0, 350.0),
+        line("9 laundry", 0.0, 1200.0),
+        line("dryer", 2700.0, 2700.0),
+    ];
     table("balance", "Load of the legs", columns, rows)
 }
 
@@ -237,7 +242,12 @@ pub fn drawing() -> Drawing {
         label(70.0, "5/7a"),
         mark(331.0, 70.0, Colour::Signal(Signal::Danger)),
     ];
-    Drawing { width: 504.0, height: 90.0, alt: "At the panel and at 5/7 the neutral sits midway between the legs; at 5/7a it has moved towards L2.".to_owned(), shapes }
+    Drawing {
+        width: 504.0,
+        height: 90.0,
+        alt: "At the panel and at 5/7 the neutral sits midway between the legs; at 5/7a it has moved towards L2.".to_owned(),
+        shapes,
+    }
 }
 
 fn blocks() -> Vec<Block> {
@@ -268,7 +278,9 @@ fn blocks() -> Vec<Block> {
                     start: None,
                     items: vec![
                         vec![Block::Paragraph(text("Switch both breakers of 5/7 off and leave them off."))],
-                        vec![Block::Paragraph(text("Have the splice in the box above the counter opened and remade by a licensed electrician."))],
+                        vec![Block::Paragraph(text(
+                            "Have the splice in the box above the counter opened and remade by a licensed electrician.",
+                        ))],
                     ],
                 },
             ],
@@ -296,18 +308,36 @@ fn blocks() -> Vec<Block> {
         Block::Table(Arc::new(findings())),
         heading(3, "Where the neutral sits", "neutral"),
         Block::Figure { caption: text("Position of the neutral between L1 and L2, heater on"), drawing: Arc::new(drawing()) },
-        Block::Callout { signal: Some(Signal::Warning), title: text("Until the repair"), blocks: vec![Block::Paragraph(text("Unplug electronic equipment in the kitchen."))] },
-        Block::Callout { signal: Some(Signal::Caution), title: text("Read again"), blocks: vec![Block::Paragraph(text("The leg difference at the panel is undecided."))] },
-        Block::Callout { signal: Some(Signal::Notice), title: text("What was not shown"), blocks: vec![Block::Paragraph(text("A balanced load hides an open neutral."))] },
+        Block::Callout {
+            signal: Some(Signal::Warning),
+            title: text("Until the repair"),
+            blocks: vec![Block::Paragraph(text("Unplug electronic equipment in the kitchen."))],
+        },
+        Block::Callout {
+            signal: Some(Signal::Caution),
+            title: text("Read again"),
+            blocks: vec![Block::Paragraph(text("The leg difference at the panel is undecided."))],
+        },
+        Block::Callout {
+            signal: Some(Signal::Notice),
+            title: text("What was not shown"),
+            blocks: vec![Block::Paragraph(text("A balanced load hides an open neutral."))],
+        },
         Block::Callout {
             signal: None,
             title: text("No certificate"),
-            blocks: vec![Block::Paragraph(text("This report is no certificate of compliance; the adopted local code and the authority having jurisdiction decide."))],
+            blocks: vec![Block::Paragraph(text(
+                "This report is no certificate of compliance; the adopted local code and the authority having jurisdiction decide.",
+            ))],
         },
         heading(2, "Readings", "readings"),
         Block::Table(Arc::new(readings())),
         Block::Table(Arc::new(exposure())),
-        Block::Photos(vec![photo("Box above the counter, cover off"), photo("The splice before the repair"), photo("The splice after the repair")]),
+        Block::Photos(vec![
+            photo("Box above the counter, cover off"),
+            photo("The splice before the repair"),
+            photo("The splice after the repair"),
+        ]),
         Block::PageBreak,
         heading(2, "Basis", "basis"),
         Block::List {
