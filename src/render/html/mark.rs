@@ -21,11 +21,11 @@ pub(super) fn class(signal: Signal) -> &'static str {
     }
 }
 
-/// A full octagon with a broken bar, a full triangle, a hollow diamond with a core, a ring.
+/// A full octagon with a slit, a full triangle, a hollow diamond with a core, a ring.
 fn shape(signal: Signal) -> &'static str {
     match signal {
         Signal::Danger => {
-            r#"<svg class="mark" viewBox="0 0 16 16" aria-hidden="true"><path fill="currentColor" fill-rule="evenodd" d="M5 .5h6L15.5 5v6L11 15.5H5L.5 11V5zM3 7v2h3.6V7zm6.4 0v2H13V7z"/></svg>"#
+            r#"<svg class="mark" viewBox="0 0 16 16" aria-hidden="true"><path fill="currentColor" fill-rule="evenodd" d="M5 .5h6L15.5 5v6L11 15.5H5L.5 11V5zm5.2 2.8L4.2 11.2l1.6 1.5 6-7.9z"/></svg>"#
         }
         Signal::Warning => {
             r#"<svg class="mark" viewBox="0 0 16 16" aria-hidden="true"><path fill="currentColor" d="M8 1l7.6 13.5H.4z"/></svg>"#

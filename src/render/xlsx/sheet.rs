@@ -6,7 +6,7 @@ use super::page::{CHART_ROWS, Page, Part};
 use super::style::{Styles, color, mark_words};
 use super::{cell, chart, width};
 use crate::render::text::{not_finite, visible};
-use crate::report::document::{Cell, Column, ColumnKind, Meta, Number, PageSize};
+use crate::report::document::{Cell, ColumnKind, Meta, Number, PageSize};
 use rust_xlsxwriter::{Format, Formula, IgnoreError, Worksheet, XlsxError};
 
 /// Rows above the data that may stay in view while it scrolls.
@@ -17,6 +17,12 @@ const WIDE_TABLE: u16 = 8;
 const PORTRAIT: f64 = 96.0;
 /// Height of a line of text in points.
 const LINE: f64 = 15.0;
+/// The highest a row may be, in points (ECMA-376: 409.5).
+const HIGHEST: f64 = 405.0;
+/// Width of the lines of a long fact.
+const FACT_ROOM: f64 = 78.0;
+/// Width of a column that was given none.
+const DEFAULT_WIDTH: f64 = 8.43;
 
 /// Writes one worksheet.
 pub(super) fn write(sheet: &mut Worksheet, page: &Page, meta: &Meta, styles: &Styles) -> Result<(), XlsxError> {
@@ -62,17 +68,31 @@ impl Writer<'_> {
         Ok(())
     }
 
-    /// A value runs on over the empty cells at its right; one too long for them is wrapped over all of them.
+    /// A value runs on over the empty cells at its right; one too long for them is wrapped over as many as a line needs.
     fn fact(&mut self, value: &str) -> Result<(), XlsxError> {
-        let room: f64 = self.widths.iter().skip(1).sum();
-        let lines = value.lines().map(|line| lines(width::widest_line(line), room)).sum::<f64>();
-        let last = u16::try_from(self.widths.len() - 1).unwrap_or(1);
-        let wrapped = self.styles.value.clone().set_text_wrap();
-        if lines > 1.0 && last > 1 {
-            self.sheet.merge_range(self.row, 1, self.row, last, "", &wrapped)?;
-            self.sheet.set_row_height(self.row, (lines * LINE).min(405.0))?;
+        let (mut last, mut room) = (0, 0.0);
+        while room < FACT_ROOM {
+            last += 1;
+            room += self.widths.get(usize::from(last)).copied().unwrap_or(DEFAULT_WIDTH);
         }
-        cell::write(self.sheet, self.row, 1, value, if lines > 1.0 { &wrapped } else { &self.styles.value })
+        let lines = width::lines(value, room);
+        if lines == 1 {
+            return cell::write(self.sheet, self.row, 1, value, &self.styles.value);
+        }
+        let wrapped = self.styles.value.clone().set_text_wrap();
+        if last > 1 {
+            self.sheet.merge_range(self.row, 1, self.row, last, "", &wrapped)?;
+        }
+        self.set_lines(lines)?;
+        cell::write(self.sheet, self.row, 1, value, &wrapped)
+    }
+
+    /// Makes the row as high as its lines. Programs differ in whether they do so themselves, and none does for merged cells.
+    fn set_lines(&mut self, lines: u32) -> Result<(), XlsxError> {
+        if lines > 1 {
+            self.sheet.set_row_height(self.row, (f64::from(lines) * LINE + 1.0).min(HIGHEST))?;
+        }
+        Ok(())
     }
 
     fn part(&mut self, part: &Part) -> Result<(), XlsxError> {
@@ -84,7 +104,8 @@ impl Writer<'_> {
         }
         let grid = grid::of(part.table);
         let header = self.row;
-        self.header(&grid)?;
+        let filtered = alone && grid.width > 0 && !part.rows.is_empty();
+        self.header(&grid, filtered)?;
         if part.rows.is_empty() {
             cell::write(self.sheet, self.row, 0, &part.table.when_empty, &self.styles.value)?;
             self.row += 1;
@@ -95,26 +116,39 @@ impl Writer<'_> {
         let last = self.row - 1;
         if grid.width > 0 {
             self.sheet.ignore_error_range(first, 0, last, grid.width - 1, IgnoreError::NumberStoredAsText)?;
-            if alone {
+            if filtered {
                 self.hold_header(&grid, header, last)?;
             }
         }
         self.chart(part, &grid, header, (first, last))
     }
 
-    fn header(&mut self, grid: &Grid) -> Result<(), XlsxError> {
+    /// The headings; where the table is filtered, with a line below them for the filter's buttons, which cover what is there.
+    fn header(&mut self, grid: &Grid, filtered: bool) -> Result<(), XlsxError> {
+        let mut most = 1;
         for place in &grid.places {
-            let Column { heading, unit, kind, .. } = place.column;
-            let symbol = unit.map_or("", |u| u.symbol());
-            let text = if symbol.is_empty() { heading.clone() } else { format!("{heading} ({symbol})") };
-            let format = if *kind == ColumnKind::Number { &self.styles.heading_number } else { &self.styles.heading };
-            cell::write(self.sheet, self.row, place.at, &text, format)?;
+            let text = width::heading(place.column);
+            let format = self.styles.heading(place.column.kind, place.uncertainty.is_some(), filtered);
+            cell::write(self.sheet, self.row, place.at, &text, &format)?;
+            most = most.max(width::lines(&text, self.width(place.at)));
             if let Some(at) = place.uncertainty {
-                cell::write(self.sheet, self.row, at, format!("± {symbol}").trim_end(), &self.styles.heading)?;
+                let unit = place.column.unit.map_or("", |u| u.symbol());
+                cell::write(
+                    self.sheet,
+                    self.row,
+                    at,
+                    format!("± {unit}").trim_end(),
+                    &self.styles.heading(ColumnKind::Text, false, filtered),
+                )?;
             }
         }
+        self.set_lines(most + u32::from(filtered))?;
         self.row += u32::from(grid.width > 0);
         Ok(())
+    }
+
+    fn width(&self, col: u16) -> f64 {
+        self.widths.get(usize::from(col)).copied().unwrap_or(DEFAULT_WIDTH)
     }
 
     fn rows(&mut self, part: &Part, grid: &Grid) -> Result<(), XlsxError> {
@@ -122,11 +156,14 @@ impl Writer<'_> {
         let mut words = vec![false; part.table.columns.len()];
         for row in part.table.rows.get(part.rows.clone()).unwrap_or_default() {
             let line = Line { grid, row, at: self.row };
+            let mut most = 1;
             for place in &grid.places {
                 let cell = row.cells.get(place.index).unwrap_or(&Cell::Empty);
                 words[place.index] |= matches!(cell, Cell::Signal(_) | Cell::Verdict(_));
                 self.cell(cell, place, line)?;
+                most = most.max(if row.group { 1 } else { self.lines(cell, place) });
             }
+            self.set_lines(most)?;
             self.row += 1;
         }
         for place in grid.places.iter().filter(|p| words[p.index]) {
@@ -151,8 +188,16 @@ impl Writer<'_> {
         }
     }
 
+    fn lines(&self, content: &Cell, place: &Place) -> u32 {
+        match content {
+            Cell::Text(text) => width::lines(text, self.width(place.at)),
+            Cell::Rich(text) => width::lines(&cell::plain(text), self.width(place.at)),
+            Cell::Empty | Cell::Number(_) | Cell::Signal(_) | Cell::Verdict(_) => 1,
+        }
+    }
+
     fn number(&mut self, number: &Number, place: &Place, line: Line) -> Result<(), XlsxError> {
-        let format = self.styles.number(number.decimals, number.verdict);
+        let format = self.styles.number(number, place.uncertainty.is_some());
         if !number.value.is_finite() {
             return cell::write(self.sheet, self.row, place.at, not_finite(number.value), &format);
         }
@@ -194,12 +239,6 @@ impl Writer<'_> {
         }
         Ok(())
     }
-}
-
-/// How many lines a text of that width takes.
-fn lines(width: usize, room: f64) -> f64 {
-    let width = f64::from(u32::try_from(width).unwrap_or(u32::MAX)) * 1.05;
-    (width / room.max(1.0)).ceil().max(1.0)
 }
 
 /// Paper, direction, one page wide, running lines.

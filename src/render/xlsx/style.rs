@@ -4,6 +4,7 @@
 //! what is undecided is italic.
 
 use crate::render::contrast;
+use crate::report::document::{ColumnKind, Number};
 use crate::report::drawing::Colour;
 use crate::results::{Signal, Verdict};
 use rust_xlsxwriter::{Color, ConditionalFormatCell, ConditionalFormatCellRule, Format, FormatAlign, FormatBorder, Worksheet, XlsxError};
@@ -18,10 +19,6 @@ pub(super) struct Styles {
     pub value: Format,
     /// A table's caption.
     pub caption: Format,
-    /// Heading above text.
-    pub heading: Format,
-    /// Heading above numbers.
-    pub heading_number: Format,
     /// A row that heads a group.
     pub group: Format,
     /// Text.
@@ -30,6 +27,7 @@ pub(super) struct Styles {
     pub word: Format,
     /// The accent, dark enough to be read on white.
     pub accent: [u8; 3],
+    heading: Format,
     number: Format,
 }
 
@@ -53,7 +51,6 @@ impl Styles {
             label: plain.clone().set_font_color(quiet),
             value: plain.clone(),
             caption: plain.set_bold().set_font_size(12),
-            heading_number: heading.clone().set_align(FormatAlign::Right),
             heading,
             group: data.clone().set_bold().set_background_color(GROUP_FILL),
             text: data.clone().set_text_wrap(),
@@ -63,12 +60,17 @@ impl Styles {
         }
     }
 
-    /// A number with so many decimals, as it was judged.
-    pub(super) fn number(&self, decimals: u8, verdict: Option<Verdict>) -> Format {
-        let format = self.number.clone().set_num_format(pattern(decimals));
-        match verdict {
-            Some(Verdict::Fail) => format.merge(&judged(Verdict::Fail)),
-            Some(Verdict::Undecided) => format.merge(&judged(Verdict::Undecided)),
+    /// The heading of a column.
+    pub(super) fn heading(&self, kind: ColumnKind, uncertain: bool, filtered: bool) -> Format {
+        let format = if filtered { self.heading.clone().set_align(FormatAlign::Top) } else { self.heading.clone() };
+        if kind == ColumnKind::Number { spaced(format, uncertain) } else { format }
+    }
+
+    /// A number with its decimals, as it was judged; `uncertain` where its uncertainty may stand right of it.
+    pub(super) fn number(&self, number: &Number, uncertain: bool) -> Format {
+        let format = spaced(self.number.clone(), uncertain).set_num_format(pattern(number.decimals));
+        match number.verdict {
+            Some(verdict @ (Verdict::Fail | Verdict::Undecided)) => format.merge(&judged(verdict)),
             Some(Verdict::Pass) | None => format,
         }
     }
@@ -77,6 +79,11 @@ impl Styles {
     pub(super) fn uncertainty(&self, decimals: u8) -> Format {
         self.number.clone().set_align(FormatAlign::Left).set_num_format(format!("\"± \"{}", pattern(decimals)))
     }
+}
+
+/// Right-aligned, away from the text at its right; the uncertainty belongs close to its number.
+fn spaced(format: Format, uncertain: bool) -> Format {
+    format.set_align(FormatAlign::Right).set_indent(u8::from(!uncertain))
 }
 
 /// Marks signal words and verdicts wherever they stand in a range.

@@ -3,15 +3,17 @@
 use super::cell;
 use super::grid::{self, Place};
 use super::page::{Page, Part};
-use crate::report::document::{Cell, ColumnKind, Number, Table};
+use crate::report::document::{Cell, Column, ColumnKind, Number, Table};
 use unicode_width::UnicodeWidthStr;
 
 /// The widest a worksheet gets before its running text is set narrower, so that its print can still be read.
 const WIDEST: f64 = 165.0;
 /// The narrowest running text is set.
 const NARROWEST_TEXT: f64 = 26.0;
-/// Room for the filter's button beside a heading.
-const BUTTON: usize = 3;
+/// Running text is narrower than as many digits, by which widths are counted.
+const TEXT_TO_DIGITS: f64 = 1.06;
+/// The widest heading that is kept on one line with its unit.
+const SHORT_HEADING: usize = 12;
 
 /// The widths of a worksheet's columns.
 pub(super) fn columns(page: &Page) -> Vec<f64> {
@@ -35,8 +37,32 @@ pub(super) fn columns(page: &Page) -> Vec<f64> {
 }
 
 /// Width of the widest line of a text.
-pub(super) fn widest_line(text: &str) -> usize {
+fn widest_line(text: &str) -> usize {
     text.lines().map(UnicodeWidthStr::width).max().unwrap_or(0)
+}
+
+/// How many lines a text takes in a column or merged cell of that width.
+pub(super) fn lines(text: &str, wide: f64) -> u32 {
+    let room = ((wide - 1.0) * TEXT_TO_DIGITS).max(4.0);
+    text.lines().map(|line| wrapped(line, room)).sum::<u32>().max(1)
+}
+
+/// Lines of a paragraph, broken at blanks and within words longer than a line.
+fn wrapped(line: &str, room: f64) -> u32 {
+    let (mut lines, mut used) = (1, 0.0);
+    for word in line.split(' ') {
+        let word = f64::from(u32::try_from(word.width()).unwrap_or(u32::MAX));
+        if used > 0.0 && used + 1.0 + word > room {
+            lines += 1;
+            used = 0.0;
+        }
+        used += word + if used > 0.0 { 1.0 } else { 0.0 };
+        while used > room {
+            lines += 1;
+            used -= room;
+        }
+    }
+    lines
 }
 
 #[derive(Clone, Copy, Default)]
@@ -71,9 +97,18 @@ fn content(part: &Part, place: &Place) -> f64 {
         ColumnKind::Number => (6, 20),
         ColumnKind::Signal | ColumnKind::Verdict => (10, 20),
     };
-    let word = place.column.heading.split_whitespace().map(UnicodeWidthStr::width).max().unwrap_or(0);
-    let unit = place.column.unit.map_or(0, |u| u.symbol().width() + 2);
-    characters(widest.clamp(least, most).max((word.max(unit) + BUTTON).min(most)))
+    let heading = heading(place.column);
+    let whole = heading.width();
+    let word = if whole <= SHORT_HEADING { whole } else { heading.split_whitespace().map(UnicodeWidthStr::width).max().unwrap_or(0) };
+    characters(widest.clamp(least, most).max((word.max(whole.div_ceil(2)) + 1).min(most)))
+}
+
+/// A column's heading with its unit.
+pub(super) fn heading(column: &Column) -> String {
+    match column.unit.map_or("", |u| u.symbol()) {
+        "" => column.heading.clone(),
+        symbol => format!("{} ({symbol})", column.heading),
+    }
 }
 
 fn uncertainties(table: &Table, place: &Place) -> f64 {
