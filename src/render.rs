@@ -4,4 +4,5 @@ mod contrast;
 mod text;
 
 pub mod html;
+pub mod svg;
 pub mod xlsx;

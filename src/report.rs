@@ -5,6 +5,7 @@
 
 pub mod document;
 pub mod drawing;
+pub mod figures;
 
 use crate::diag::Problem;
 use crate::results::{Balance, Diagnosis, Exposure, Finding};

@@ -75,7 +75,7 @@ fn outline(html: &str) -> String {
         match step {
             Step::Open(name, attributes) => {
                 let shown = attributes.iter().filter(|(name, _)| name != "d");
-                let attributes: String = shown.map(|(name, value)| format!(" {name}={:.60}", value.replace('\u{2007}', "_"))).collect();
+                let attributes: String = shown.map(|(name, value)| format!(" {name}={:.38}", value.replace('\u{2007}', "_"))).collect();
                 write(depth, &format!("{name}{attributes}"));
                 depth += 1;
             }
