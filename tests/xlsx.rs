@@ -182,6 +182,34 @@ fn text_is_only_ever_text() {
 }
 
 #[test]
+fn long_and_rich_texts_are_never_refused() {
+    let ampersands = "&".repeat(32_000);
+    let texts = [format!("<r>{ampersands}</r>"), format!("<r>{ampersands}{ampersands}</r>"), format!("<r>{}</r>", "_x0041_".repeat(900))];
+    for given in &texts {
+        let bytes = write(&one_text(given));
+        assert_well_formed(&bytes);
+        let values = open(&bytes).worksheet_range("Texts").expect("the sheet");
+        let read = values.get_value((2, 0)).map(ToString::to_string).expect("a text");
+        assert!(read.trim_end_matches([' ', '…']).len() > 6000 && given.starts_with(read.trim_end_matches([' ', '…'])));
+    }
+    let strong = |s: &str| Inline::Strong(specimen::text(s));
+    let plain = |s: &str| Inline::Text(s.to_owned());
+    let rich = [
+        vec![plain(&ampersands), strong("b")],
+        vec![strong("_x0041_"), plain("<r>")],
+        vec![strong("")],
+        vec![],
+        vec![strong("x"); 500],
+        vec![[strong("a"), plain("b")]; 200].concat(),
+    ];
+    let rows = rich.iter().map(|r| row(vec![Cell::Rich(r.clone())])).collect();
+    let bytes = write(&document_of(vec![sheet("Rich", vec![table("rich", "Rich", vec![column("r", "R", None, ColumnKind::Text)], rows)])]));
+    assert_well_formed(&bytes);
+    let values = open(&bytes).worksheet_range("Rich").expect("the sheet");
+    assert_eq!(values.get_value((3, 0)).map(ToString::to_string).as_deref(), Some("_x0041_<r>"));
+}
+
+#[test]
 fn text_elsewhere_breaks_nothing() {
     let nasty = "<r>&\"'\u{0}\u{ffff}]]>=(A1[x]!A1&[Page]&P\n</r>";
     let mut document = specimen::document();
