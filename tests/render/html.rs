@@ -1,16 +1,13 @@
 //! The HTML renderer: what it writes, read back as XML.
 
-#[path = "render/specimen.rs"]
-mod specimen;
-
+use crate::specimen::{self, column, document_of, row, table, text, words};
 use midwire::quantity::Unit;
-use midwire::render::html;
+use midwire::render::html::write as write_html;
 use midwire::report::document::*;
 use midwire::results::Verdict;
 use proptest::prelude::*;
 use quick_xml::events::{BytesStart, Event};
 use sha2::{Digest, Sha256};
-use specimen::{column, document_of, row, table, text, words};
 use std::sync::Arc;
 
 /// One step through the markup.
@@ -112,12 +109,12 @@ fn attributes(html: &str) -> Vec<(String, String, String)> {
 }
 
 fn body(blocks: Vec<Block>) -> String {
-    html::write(&Document { blocks, ..document_of(Vec::new()) })
+    write_html(&Document { blocks, ..document_of(Vec::new()) })
 }
 
 #[test]
 fn the_specimen_reads_as_it_should() {
-    insta::assert_snapshot!(outline(&html::write(&specimen::document())));
+    insta::assert_snapshot!(outline(&write_html(&specimen::document())));
 }
 
 /// Nothing runs, nothing is asked for: checked over every element and attribute.
@@ -136,12 +133,12 @@ fn assert_inert(html: &str) {
 
 #[test]
 fn nothing_runs_and_nothing_is_fetched() {
-    assert_inert(&html::write(&specimen::document()));
+    assert_inert(&write_html(&specimen::document()));
 }
 
 #[test]
 fn the_policy_names_the_style_sheet_by_its_hash() {
-    let html = html::write(&specimen::document());
+    let html = write_html(&specimen::document());
     let policy = attributes(&html).into_iter().find(|(_, _, value)| value.contains("default-src")).expect("a policy").2;
     let hash = policy.split("sha256-").nth(1).and_then(|s| s.split('\'').next()).expect("a hash");
     assert_eq!(policy, format!("default-src 'none'; style-src 'sha256-{hash}'; img-src data:; base-uri 'none'; form-action 'none'"));
@@ -217,7 +214,7 @@ fn text_from_a_stranger_stays_text_everywhere() {
             blocks: vec![Block::List { start: None, items: vec![vec![Block::Paragraph(text(nasty))]] }],
         },
     ]);
-    let html = html::write(&document);
+    let html = write_html(&document);
     assert_inert(&html);
     assert_eq!(texts(&html, "style").len(), 1);
     assert!(!html.contains('\0') && !html.contains('\u{202e}'));
@@ -243,7 +240,7 @@ fn numbers_take_the_decimal_mark_and_never_a_negative_zero() {
     let rows = vec![number(-0.04, 1), number(-1234.5, 2), number(7.0, 0), number(f64::NAN, 1), number(f64::NEG_INFINITY, 1)];
     let block = Block::Table(Arc::new(table("n", "N", vec![column("n", "N", Some(Unit::Ohm), ColumnKind::Number)], rows)));
     let document = Document { meta: Meta { decimal_mark: ',', ..specimen::meta() }, blocks: vec![block], sheets: Vec::new() };
-    let html = html::write(&document);
+    let html = write_html(&document);
     assert_eq!(texts(&html, "data"), ["0,0", "−1234,50", "7", "?", "−∞"]);
     let pads: Vec<String> = attributes(&html).into_iter().filter(|(_, name, _)| name == "data-pad").map(|(_, _, value)| value).collect();
     assert_eq!(pads, ["\u{2007}", "\u{2008}\u{2007}\u{2007}", "\u{2007}", "\u{2007}"], "blanks in place of missing decimals");
@@ -267,7 +264,7 @@ fn a_document_without_blocks_has_its_title() {
 
 #[test]
 fn the_same_document_gives_the_same_text() {
-    assert_eq!(html::write(&specimen::document()), html::write(&specimen::document()));
+    assert_eq!(write_html(&specimen::document()), write_html(&specimen::document()));
 }
 
 proptest! {

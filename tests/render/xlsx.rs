@@ -1,14 +1,11 @@
 //! The XLSX renderer: what it writes, read back by another library and as XML.
 
-#[path = "render/specimen.rs"]
-mod specimen;
-
+use crate::specimen::{self, column, document_of, row, sheet, table, words};
 use calamine::{Data, Reader, Xlsx};
 use midwire::quantity::Unit;
 use midwire::render::xlsx;
 use midwire::report::document::*;
 use midwire::results::Signal;
-use specimen::{column, document_of, row, sheet, table, words};
 use std::io::{Cursor, Read};
 use std::sync::Arc;
 
