@@ -96,7 +96,7 @@ impl Beside for Siblings {
         if !path.starts_with(&folder) {
             return Err(BesideError::Outside);
         }
-        bytes(&path).map_err(|_| BesideError::Unreadable)
+        bytes(&path).map_err(|e| BesideError::Unreadable(e.root_cause().to_string()))
     }
 }
 

@@ -26,14 +26,13 @@ pub fn run(args: &args::Report) -> anyhow::Result<u8> {
     if let Some(folder) = &args.output {
         std::fs::create_dir_all(folder).with_context(|| format!("{} can't be made", folder.display()))?;
     }
-    let mut taken: HashSet<PathBuf> = HashSet::new();
     let mut names: HashSet<String> = HashSet::new();
     let mut status = DONE;
     for path in &args.workbooks {
         let shown = path.display().to_string();
         let done = check::one(path, &shown, &settings)
             .map_err(|(e, _)| anyhow::anyhow!(e))
-            .and_then(|checked| write(args, path, &checked, &settings, &options, &mut names, &mut taken));
+            .and_then(|checked| write(args, path, &checked, &settings, &options, &mut names));
         if let Err(e) = done {
             status = FAILED;
             anstream::eprintln!("midwire: {}: {}", terminal::line(&shown), terminal::visible(&format!("{e:#}")));
@@ -49,7 +48,6 @@ fn write(
     settings: &Settings,
     options: &ReportOptions,
     names: &mut HashSet<String>,
-    taken: &mut HashSet<PathBuf>,
 ) -> anyhow::Result<()> {
     let folder = args.output.clone().unwrap_or_else(|| path.parent().map_or_else(PathBuf::new, Path::to_owned));
     let stem = path.file_stem().map_or_else(String::new, |s| s.to_string_lossy().into_owned());
@@ -73,7 +71,6 @@ fn write(
         if !args.force && target.exists() {
             anyhow::bail!("{} exists; --force replaces it, -o writes to another folder", target.display());
         }
-        taken.insert(target);
     }
     for (ending, bytes) in &files {
         let target = folder.join(format!("{chosen}.{ending}"));
