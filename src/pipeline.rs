@@ -143,6 +143,33 @@ pub fn document(checked: &Checked, settings: &Settings, options: &ReportOptions)
     )
 }
 
+/// Why a report could not be made.
+#[derive(Debug, thiserror::Error)]
+pub enum ReportError {
+    /// The template can't be used.
+    #[error(transparent)]
+    Template(#[from] TemplateError),
+    /// The PDF could not be made.
+    #[error("the PDF could not be made: {0}")]
+    Pdf(#[from] render::pdf::PdfError),
+    /// The XLSX could not be made.
+    #[error("the XLSX could not be made: {0}")]
+    Xlsx(#[from] render::xlsx::XlsxError),
+}
+
+/// The report files of a checked workbook: ending and bytes.
+///
+/// # Errors
+/// The template can't be used, or a file could not be made.
+pub fn render(checked: &Checked, settings: &Settings, options: &ReportOptions, html: bool) -> Result<Vec<(&'static str, Vec<u8>)>, ReportError> {
+    let document = document(checked, settings, options)?;
+    let mut files = vec![("pdf", render::pdf::write(&document)?), ("xlsx", render::xlsx::write(&document)?)];
+    if html {
+        files.push(("html", render::html::write(&document).into_bytes()));
+    }
+    Ok(files)
+}
+
 /// The rules that judged something, each with its title, settings and basis.
 fn rule_bases(settings: &Settings, checked: &Checked) -> Vec<RuleBasis> {
     rules::manual_pages(&settings.rulebook, &settings.language)
