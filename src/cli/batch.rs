@@ -31,6 +31,7 @@ pub fn run(args: &args::Batch) -> anyhow::Result<u8> {
     let job = work::Job { settings: &settings, options: look.options(), html: args.look.html, fingerprint: fingerprint(args, &look)? };
     let found = walk::workbooks(&args.folder, &args.output, args.only.as_deref(), args.since.as_deref())?;
     let mut journal = Journal::open(&args.output)?;
+    files::clear(&args.output)?;
     let threads = args.jobs.unwrap_or_else(|| std::thread::available_parallelism().map_or(1, std::num::NonZero::get)).clamp(1, 256);
     let pool = rayon::ThreadPoolBuilder::new().num_threads(threads).build()?;
     let progress = Progress::new(found.len(), args.quiet);
