@@ -4,6 +4,7 @@
 //! (`header`, with the words of `synonyms.toml`), and each sheet's rows become values (`sheets`, one file a sheet).
 
 mod grid;
+mod workbook;
 
 use crate::diag::Output;
 use crate::visit::Visit;
