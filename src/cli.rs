@@ -5,6 +5,7 @@
 
 mod args;
 mod batch;
+mod blank;
 mod check;
 mod files;
 mod name;
@@ -33,6 +34,7 @@ pub fn main() -> ExitCode {
         args::Command::Check(a) => check::run(a),
         args::Command::Report(a) => report::run(a),
         args::Command::Batch(a) => batch::run(a),
+        args::Command::Blank(a) => blank::run(a),
         args::Command::Rules(a) => rules::run(a),
         args::Command::Templates(a) => templates::run(a),
     };

@@ -13,7 +13,7 @@ use crate::report::{self, RuleBasis, Source, TemplateError};
 use crate::results::{Balance, Diagnosis, Exposure, Finding, Signal, Verdict};
 use crate::rulebook::Rulebook;
 use crate::rules::{self, Facts};
-use crate::visit::Visit;
+use crate::visit::{System, Visit};
 use crate::wording::Language;
 use sha2::{Digest, Sha256};
 
@@ -168,6 +168,14 @@ pub fn render(checked: &Checked, settings: &Settings, options: &ReportOptions, h
         files.push(("html", render::html::write(&document).into_bytes()));
     }
     Ok(files)
+}
+
+/// An empty field workbook for a system.
+///
+/// # Errors
+/// The spreadsheet library refused.
+pub fn blank(system: &System, language: &Language, rows: u32) -> Result<Vec<u8>, crate::blank::Error> {
+    crate::blank::write(&crate::blank::Options { system, language, rows })
 }
 
 /// The rules that judged something, each with its title, settings and basis.

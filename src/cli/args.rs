@@ -24,6 +24,9 @@ pub enum Command {
     /// Report on every workbook below a folder, in parallel; goes on where it was stopped
     #[command(after_help = "Examples:\n  midwire batch visits -o reports\n  midwire batch visits -o reports --only '2026-11-*' --jobs 4\n\nExit status: 0 all written, 2 something was not.")]
     Batch(Batch),
+    /// Write an empty field workbook to fill in
+    #[command(after_help = "Examples:\n  midwire blank\n  midwire blank --system 208Y/120 -o shop.xlsx\n\nExit status: 0 written, 2 not.")]
+    Blank(Blank),
     /// Print the rule book in force: each rule, its limits, their basis
     #[command(after_help = "Examples:\n  midwire rules\n  midwire rules leg-sum voltage-drop\n  midwire rules --rules our-limits.toml")]
     Rules(Rules),
@@ -121,6 +124,23 @@ pub enum Page {
     Letter,
     /// 210 × 297 mm
     A4,
+}
+
+/// `midwire blank`.
+#[derive(Args)]
+pub struct Blank {
+    /// The system as ANSI C84.1 writes it: 120/240, 120/208, 208Y/120, 240/120 …
+    #[arg(long, default_value = "120/240")]
+    pub system: String,
+    /// File to write
+    #[arg(short, long, value_name = "FILE", default_value = "field-workbook.xlsx")]
+    pub output: PathBuf,
+    /// Rows to fill in on each sheet
+    #[arg(long, default_value_t = 100, value_parser = clap::value_parser!(u32).range(1..=10_000))]
+    pub rows: u32,
+    /// Replace the file if it exists
+    #[arg(long)]
+    pub force: bool,
 }
 
 /// `midwire rules`.
