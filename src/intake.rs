@@ -3,7 +3,11 @@
 //! Bytes become a grid (`workbook`, the only place that knows file formats), the grid's tables are found by their headers
 //! (`header`, with the words of `synonyms.toml`), and each sheet's rows become values (`sheets`, one file a sheet).
 
+mod cell;
 mod grid;
+mod header;
+mod sheets;
+mod words;
 
 use crate::diag::Output;
 use crate::visit::Visit;
