@@ -41,13 +41,15 @@ impl<'a> Tables<'a> {
 ///
 /// # Errors
 /// It has no table of readings.
-pub(super) fn assemble(workbook: &Workbook, options: &Options) -> Result<Output<Visit>, Refusal> {
+pub(super) fn assemble(grid: Output<Workbook>, options: &Options) -> Result<Output<Visit>, Refusal> {
+    let workbook = &grid.value;
     let words = Words::built_in();
     let tables = Tables(workbook.sheets.iter().flat_map(|sheet| header::tables(sheet, words)).collect());
     if tables.of(Kind::Readings).next().is_none() {
         return Err(Refusal::NoReadings(unread::nearest_to_readings(workbook, words)));
     }
     let mut reader = Reader::new(words);
+    reader.problems = grid.problems;
     let visit = read(workbook, &tables, options, &mut reader);
     unread::say(workbook, &tables, &mut reader);
     Ok(Output { value: visit, problems: ordered(reader.problems, workbook) })
