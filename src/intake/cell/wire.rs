@@ -119,8 +119,8 @@ pub(super) fn read(words: &Words, text: &str, millimetres: bool) -> Result<WireT
 /// Blank-divided words, with letters and the digits before them parted: `12cu`, `2.5mm2`, `250mcm`.
 fn tokens(text: &str) -> Vec<String> {
     let mut out = Vec::new();
-    for word in text.split(|c: char| c.is_whitespace() || "(),;&+\"".contains(c)).filter(|w| !w.is_empty()) {
-        let word = word.trim_start_matches('#').trim_end_matches(['.', ':']);
+    for word in text.split(|c: char| c.is_whitespace() || "();&+\"".contains(c)).filter(|w| !w.is_empty()) {
+        let word = word.trim_start_matches('#').trim_matches(['.', ':', ',']);
         let cut = word.find(|c: char| c.is_ascii_alphabetic());
         match cut {
             // Cross-sections and gauges: the unit follows the digits at once.

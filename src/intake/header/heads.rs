@@ -9,8 +9,11 @@ use serde::Deserialize;
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord, Deserialize)]
 #[serde(rename_all = "kebab-case")]
 pub(crate) enum HeadWord {
+    #[serde(rename = "line-1")]
     Line1,
+    #[serde(rename = "line-2")]
     Line2,
+    #[serde(rename = "line-3")]
     Line3,
     /// `A` is a phase or the ampere.
     #[serde(rename = "line-1-or-amps")]
@@ -132,7 +135,9 @@ fn compact(words: &Words, word: &str) -> Option<Vec<HeadWord>> {
         return None;
     }
     while !rest.is_empty() {
-        let len = [2, 1].into_iter().find(|&n| rest.get(..n).is_some_and(|w| words.head(w).is_some()))?;
+        // Of two letters only a leg with its number and PE; `va` of `van` is two conductors.
+        let pair = |w: &str| w == "pe" || w.ends_with(|c: char| c.is_ascii_digit());
+        let len = [2, 1].into_iter().find(|&n| rest.get(..n).is_some_and(|w| words.head(w).is_some() && (n == 1 || pair(w))))?;
         atoms.extend(words.head(&rest[..len]));
         atoms.push(HeadWord::Join);
         rest = &rest[len..];
