@@ -1,1 +1,7 @@
 //! Renderers: the document as PDF, XLSX and HTML. They see [`crate::report::document`] alone.
+
+mod contrast;
+mod text;
+
+pub mod html;
+pub mod xlsx;

@@ -1,0 +1,4 @@
+//! The XLSX renderer, read back.
+
+#[path = "render/specimen.rs"]
+mod specimen;
