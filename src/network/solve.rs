@@ -1,4 +1,4 @@
-//! Solving: Newton from the last or the open-circuit volts, by continuation where that fails.
+//! Solving: Newton from the last or the open-circuit volts, by descent along chords where that fails.
 //!
 //! Equation: Kirchhoff's laws with the loads' laws, see the sweeps. Preconditions: [`Fault`]. A solution always exists, since
 //! every law's current is bounded by a straight line; it need not be the only one. Tolerance and cap: [`SolveSettings`]. Numbers
@@ -7,10 +7,11 @@
 
 use super::adjoint::Excitation;
 use super::engine::{Engine, NONE, row};
-use super::model::{Fault, Law, Network, Observed, Phasor, SLOTS, Terminal, slot};
+use super::model::{Fault, Network, Observed, Phasor, SLOTS, Terminal, slot};
 use super::sensitivity::Gradient;
 use super::several;
 use super::solution::Solution;
+use super::sweep::Slope;
 use crate::quantity::math;
 use crate::visit::Conductor;
 
@@ -133,11 +134,14 @@ impl Workspace {
             *self = Self::new(network).map_err(SolveOutcome::Malformed)?;
         }
         either!(&mut self.form, e => e.take_numbers(network)).map_err(SolveOutcome::Malformed)?;
-        if self.iterate(network, settings).is_err() {
+        let mut outcome = self.iterate(network, settings);
+        if outcome.is_err() {
             self.restart();
-            if self.iterate(network, settings).is_err() {
-                self.continue_from_passive(network, settings)?;
-            }
+            outcome = self.iterate(network, settings).or_else(|_| self.descend(network, settings));
+        }
+        if outcome.is_err() {
+            self.restart();
+            return outcome;
         }
         either!(&mut self.form, e => e.settle(network));
         Ok(())
@@ -147,7 +151,7 @@ impl Workspace {
         let mut step = f64::NAN;
         for _ in 0..settings.iterations {
             self.iterations += 1;
-            step = either!(&mut self.form, e => e.step(network));
+            step = either!(&mut self.form, e => e.step(network, Slope::Tangent));
             if step <= settings.tolerance {
                 return Ok(());
             }
@@ -158,25 +162,22 @@ impl Workspace {
         Err(SolveOutcome::NotConverged { step })
     }
 
-    /// Continuation: from the network without its electronic loads, which has one solution, to the whole.
-    fn continue_from_passive(&mut self, network: &Network, settings: &SolveSettings) -> Result<(), SolveOutcome> {
-        const STEPS: u32 = 16;
-        let mut eased = network.clone();
+    /// Chord steps from the open-circuit volts until they are small, then Newton's. Where every current rises more slowly than
+    /// its voltage, a chord lies above the load's content ∫I·dV, so that each step lowers the content of the whole network
+    /// (Millar, *Philosophical Magazine* 42, 1951, 1150; from memory): it can't cycle as the tangents may.
+    fn descend(&mut self, network: &Network, settings: &SolveSettings) -> Result<(), SolveOutcome> {
+        const STEPS: usize = 400;
+        const NEAR: f64 = 1e-3;
         self.restart();
-        for step in 0..=STEPS {
-            let share = f64::from(step) / f64::from(STEPS);
-            for (e, load) in eased.loads.iter_mut().zip(&network.loads) {
-                if matches!(load.law, Law::Electronic { .. }) {
-                    e.watts = load.watts * share;
-                }
-            }
-            let outcome = self.iterate(&eased, settings);
-            if outcome.is_err() {
-                self.restart();
-                return outcome;
+        let mut step = f64::INFINITY;
+        for _ in 0..STEPS {
+            self.iterations += 1;
+            step = either!(&mut self.form, e => e.step(network, Slope::Chord));
+            if step <= NEAR {
+                break;
             }
         }
-        Ok(())
+        if step <= NEAR { self.iterate(network, settings) } else { Err(SolveOutcome::NotConverged { step }) }
     }
 
     /// Value of a quantity in the last solution (see [`Observed`] for its sign); `None` for a conductor that is not there.

@@ -10,28 +10,37 @@
 //!
 //! S and s are added to D and c of the run that feeds it: the network is summed up towards the source, then the volts run down.
 //! That is Gaussian elimination of the nodal equations from the leaves, in time linear in the runs and without recursion, and
-//! written with ohms, so that neither 0 Ω nor an open conductor (10¹² Ω here) loses digits.
+//! written with ohms, so that 0 Ω needs no exception, and an open conductor (10¹² Ω here) costs no more than nanovolts.
 
 use super::block::{Block, add_unit, apply, difference, inverse, product, sum};
 use super::engine::{Attached, Engine, Node, across, row};
 use super::law::admittance;
-use super::model::{Law, Load, Network};
+use super::model::{Law, Network};
 
 /// A load whose volts changed by more than this share in a step is linearised by its chord. The tangent of a constant-power load
 /// far from the solution points away from it.
 const FAR: f64 = 0.2;
 
+/// How loads are linearised.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Slope {
+    /// By their tangents; loads far from the solution may take the chord.
+    Tangent,
+    /// By their chords.
+    Chord,
+}
+
 impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
-    /// One Newton step, and the largest change of a load's volts.
-    pub fn step(&mut self, network: &Network) -> f64 {
-        self.linearise(network);
+    /// One step, Newton's with tangents, and the largest change of a load's volts.
+    pub fn step(&mut self, network: &Network, slope: Slope) -> f64 {
+        self.linearise(network, slope);
         self.sum_up();
         self.run_down();
         self.move_loads()
     }
 
     /// D and c of every node from its own loads and electrode.
-    fn linearise(&mut self, network: &Network) {
+    fn linearise(&mut self, network: &Network, slope: Slope) {
         let neutral = row::<PARTS>(3);
         self.is_transposed = false;
         for node in &mut self.nodes {
@@ -43,7 +52,10 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
         }
         for (attached, load) in self.loads.iter_mut().zip(&network.loads) {
             attached.y = admittance(load, attached.square());
-            attached.stamp(load, &mut self.nodes[attached.node]);
+            if slope == Slope::Chord || (attached.far && matches!(load.law, Law::Electronic { .. })) {
+                attached.y.bend = 0.0;
+            }
+            attached.stamp(&mut self.nodes[attached.node]);
         }
     }
 
@@ -143,9 +155,8 @@ impl<const PARTS: usize> Attached<PARTS> {
     }
 
     /// Adds its linearisation I ≈ g·v + (I₀ − g·v₀) to its node.
-    fn stamp<const N: usize>(&self, load: &Load, node: &mut Node<N>) {
-        let is_chord = self.far && matches!(load.law, Law::Electronic { .. });
-        let bend = if is_chord { 0.0 } else { self.y.bend };
+    fn stamp<const N: usize>(&self, node: &mut Node<N>) {
+        let bend = self.y.bend;
         let (turned, square) = (self.turned(), self.square());
         let (a, b) = self.rows;
         for p in 0..PARTS {
