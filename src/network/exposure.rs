@@ -6,9 +6,10 @@
 //! it the network can rest. The range over all resting points is what is given, stable or not, since nobody can say which it is.
 
 use super::build::{NetworkSettings, build};
-use super::model::{Network, Observed};
+use super::model::{Law, Network, Observed};
 use super::several;
-use super::solve::{SolveOutcome, SolveSettings, Workspace};
+use super::solve::{SolveOutcome, SolveSettings};
+use super::workspace::Workspace;
 use crate::quantity::{Volts, Watts};
 use crate::results::{ExposedLeg, Exposure};
 use crate::visit::{Conductor, Leg, Quantity, Tree, Visit};
@@ -17,11 +18,11 @@ use crate::visit::{Conductor, Leg, Quantity, Tree, Visit};
 const SAME: f64 = 0.5;
 
 /// Imposed volts tried, evenly spaced, before each resting point is closed in on.
-const POINTS: u32 = 96;
+const POINTS: u32 = 48;
 
-/// Runs times opened neutrals, at most: a list of ten thousand multiwire runs in a chain would take hours. Real ones stay far
-/// below it; beyond it the neutrals nearest the source are opened, which expose the most.
-const MOST_WORK: usize = 400_000;
+/// Runs times solutions, at most, a second or so: a list of ten thousand multiwire runs in a chain would take hours. Real ones
+/// stay far below it; beyond it the neutrals nearest the source are opened, which expose the most.
+const MOST_WORK: usize = 1_000_000;
 
 /// Opens every shared neutral, those of the service included, one after the other. Legs without a load below the opening are
 /// given too, at 0 W: whatever is plugged in there sees those volts.
@@ -29,13 +30,7 @@ const MOST_WORK: usize = 400_000;
 pub fn exposure(visit: &Visit, settings: &NetworkSettings) -> Vec<Exposure> {
     let network = build(visit, settings).network;
     let Ok(mut workspace) = Workspace::new(&network) else { return Vec::new() };
-    let most = MOST_WORK / network.spans.len().max(1);
-    let shared = |run: &usize| {
-        let ohms = &network.spans[*run].ohms;
-        ohms[3].is_some() && ohms[..3].iter().flatten().count() > 1
-    };
-    let runs: Vec<usize> = visit.tree.order.iter().copied().filter(shared).take(most.max(1)).collect();
-    let mut exposures: Vec<Exposure> = runs
+    let mut exposures: Vec<Exposure> = shared_neutrals(&network, &visit.tree)
         .into_iter()
         .map(|run| {
             let mut places = Places::below(&network, &visit.tree, run);
@@ -45,6 +40,24 @@ pub fn exposure(visit: &Visit, settings: &NetworkSettings) -> Vec<Exposure> {
         .collect();
     exposures.sort_by_key(|e| e.run);
     exposures
+}
+
+/// Runs with a neutral that several legs share, those nearest the source first, as many as there is time for.
+fn shared_neutrals(network: &Network, tree: &Tree) -> Vec<usize> {
+    let mut depth = vec![0usize; network.spans.len()];
+    for &run in &tree.order {
+        depth[run] = tree.parent[run].map_or(0, |p| depth[p] + 1);
+    }
+    let is_shared = |run: &usize| {
+        let ohms = &network.spans[*run].ohms;
+        ohms[3].is_some() && ohms[..3].iter().flatten().count() > 1
+    };
+    let mut runs: Vec<usize> = tree.order.iter().copied().filter(is_shared).collect();
+    runs.sort_by_key(|run| depth[*run]);
+    let may_scan = network.loads.iter().any(|l| matches!(l.law, Law::Electronic { .. }));
+    let solutions = if may_scan { POINTS as usize } else { 1 };
+    runs.truncate((MOST_WORK / (network.spans.len() * solutions).max(1)).max(1));
+    runs
 }
 
 /// A place at which a leg's volts are watched.
@@ -158,13 +171,13 @@ fn rest_in_phase(workspace: &mut Workspace, network: &Network, run: usize, place
             last = None;
             continue;
         };
-        if let Some(before) = last.filter(|b| (b.1 < 0.0) != (amperes < 0.0)) {
-            if let Some(rest) = close_in(before, (volts, amperes), |v| current(workspace, v)) {
-                if current(workspace, rest).is_some() {
-                    places.note(workspace);
-                }
-                current(workspace, volts);
+        let before = last.filter(|b| (b.1 < 0.0) != (amperes < 0.0));
+        if let Some(rest) = before.and_then(|b| close_in(b, (volts, amperes), |v| current(workspace, v))) {
+            if current(workspace, rest).is_some() {
+                places.note(workspace);
             }
+            // The next point is followed from this one.
+            current(workspace, volts);
         }
         last = Some((volts, amperes));
     }
