@@ -14,6 +14,7 @@ pub mod balance;
 pub mod diag;
 pub mod electrics;
 pub mod intake;
+pub mod network;
 pub mod quantity;
 pub mod render;
 pub mod report;

@@ -1,0 +1,63 @@
+//! The text of a cell in OpenDocument: paragraphs, with blanks, tabs and line breaks written as elements.
+
+use super::super::bounds::{MOST_TOKEN, megabytes};
+use super::super::xml::{Node, Xml};
+use crate::intake::Refusal;
+
+/// Appends the text of the `text:p` that was just opened; a paragraph after another begins a new line.
+///
+/// Runs of white space in the XML are one blank and those that lead are none (ODF 1.3 part 3, 6.1.2). Comments, notes and drawings
+/// within the paragraph are not its text.
+///
+/// # Errors
+/// The part is broken, or the text beyond a bound.
+pub fn append(xml: &mut Xml, text: &mut String, first: bool) -> Result<(), Refusal> {
+    if !first {
+        text.push('\n');
+    }
+    let mut depth = 1;
+    let mut after_blank = true;
+    while depth > 0 {
+        match xml.next()? {
+            Node::Open(tag) => {
+                depth += 1;
+                match tag.name() {
+                    b"s" => blanks(tag.get("c")?.map_or(1, |count| count.parse().unwrap_or(1)), text)?,
+                    b"tab" => text.push('\t'),
+                    b"line-break" => text.push('\n'),
+                    b"span" | b"a" => continue,
+                    _ => {
+                        depth -= 1;
+                        xml.skip()?;
+                    }
+                }
+                after_blank = false;
+            }
+            Node::Close => depth -= 1,
+            Node::Text(piece) => collapse(&piece, text, &mut after_blank),
+            Node::End => break,
+        }
+        if text.len() > MOST_TOKEN {
+            return Err(megabytes("a cell holds more than", MOST_TOKEN, "of text"));
+        }
+    }
+    Ok(())
+}
+
+fn blanks(count: usize, text: &mut String) -> Result<(), Refusal> {
+    if count > MOST_TOKEN {
+        return Err(megabytes("a cell holds more than", MOST_TOKEN, "of text"));
+    }
+    text.extend(std::iter::repeat_n(' ', count));
+    Ok(())
+}
+
+fn collapse(piece: &str, text: &mut String, after_blank: &mut bool) {
+    for c in piece.chars() {
+        let blank = matches!(c, ' ' | '\t' | '\n' | '\r');
+        if !(blank && *after_blank) {
+            text.push(if blank { ' ' } else { c });
+        }
+        *after_blank = blank;
+    }
+}
