@@ -4,4 +4,5 @@ mod contrast;
 mod text;
 
 pub mod html;
+pub mod pdf;
 pub mod xlsx;
