@@ -132,7 +132,8 @@ impl Flow<'_> {
     /// Lines of a cell with how far they are moved to the right in it.
     fn place(&self, entry: Entry, grid: &Grid, column: usize, width: f32) -> (Vec<Line>, Vec<Span>, f32) {
         let k = grid.columns.scale;
-        let room = (width - PADDING).max(1.0) / k;
+        // A hair more than the widths say, so that rounding breaks no line.
+        let room = (width - PADDING + 0.05).max(1.0) / k;
         match entry.content {
             Content::Empty => (Vec::new(), Vec::new(), 0.0),
             Content::Text(shaped) => (shaped.lines(room).into_iter().map(|l| scaled(l, k)).collect(), entry.spans, 0.0),

@@ -7,6 +7,9 @@ use crate::report::document::{Cell, Column, ColumnKind, Number, Row, Table};
 use crate::report::drawing::Colour;
 use crate::results::Verdict;
 
+/// A heading's word is given at most this much, in points.
+const MOST_HEAD: f32 = 90.0;
+
 /// A cell.
 pub(super) struct Entry {
     /// Its text in spans.
@@ -49,7 +52,12 @@ impl Flow<'_> {
         if let Some(unit) = column.unit.map(crate::quantity::Unit::symbol).filter(|u| !u.is_empty()) {
             spans.push(Span::new(&format!(" ({unit})"), self.colour(Colour::Quiet)));
         }
-        Entry::text(spans, column.kind == ColumnKind::Number)
+        let words = spans.iter().flat_map(|s| s.text.split_whitespace().map(|w| shape::width(w, BASE, s.bold)));
+        let longest = words.fold(0.0, f32::max);
+        let mut entry = Entry::text(spans, column.kind == ColumnKind::Number);
+        // A heading is broken at blanks alone: `L1-N` stays whole.
+        entry.widths.0 = entry.widths.0.max(longest).min(MOST_HEAD);
+        entry
     }
 
     /// The cells of a row.
