@@ -98,10 +98,13 @@ impl Context {
     fn sheet(&self, archive: &Archive, part: &str, entry: &Entry, budget: &mut Budget) -> Result<Sheet, Refusal> {
         let mut draft = Draft::new(&entry.name, entry.hidden);
         let (mut row, mut next) = (0, 0);
+        let mut in_cells = false;
         Records::each(archive, part, |record| {
             let data = record.data;
             match record.kind {
-                record::ROW => {
+                record::BEGIN_CELLS => in_cells = true,
+                record::END_CELLS => in_cells = false,
+                record::ROW if in_cells => {
                     (row, next) = (data.u32(0)?, 0);
                     if data.u8(11)? & 0x10 != 0 {
                         draft.hide_rows(row, row)?;
@@ -111,13 +114,14 @@ impl Context {
                 record::MERGED => {
                     draft.merge(Area { top: data.u32(0)?, bottom: data.u32(4)?, left: data.u32(8)?, right: data.u32(12)? })?;
                 }
-                _ => {
+                _ if in_cells => {
                     if let Some(cell) = record.cell()? {
                         let col = cell.col.unwrap_or(next);
                         next = col.saturating_add(1);
                         draft.put(row, col, self.value(&cell)?, budget)?;
                     }
                 }
+                _ => {}
             }
             Ok(())
         })?;
