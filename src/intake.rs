@@ -3,8 +3,12 @@
 //! Bytes become a grid (`workbook`, the only place that knows file formats), the grid's tables are found by their headers
 //! (`header`, with the words of `synonyms.toml`), and each sheet's rows become values (`sheets`, one file a sheet).
 
+mod cell;
 mod grid;
+mod header;
+mod sheets;
 mod workbook;
+mod words;
 
 use crate::diag::Output;
 use crate::visit::Visit;
@@ -84,6 +88,7 @@ pub enum Refusal {
 ///
 /// # Errors
 /// It could not be used at all; problems of single cells are in the output instead.
-pub fn read(_input: &Input, _options: &Options) -> Result<Output<Visit>, Refusal> {
-    todo!("merged from the two halves of the intake")
+pub fn read(input: &Input, options: &Options) -> Result<Output<Visit>, Refusal> {
+    let grid = workbook::read(&input.content)?;
+    sheets::assemble(grid, options)
 }
