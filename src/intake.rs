@@ -7,8 +7,8 @@ mod cell;
 mod grid;
 mod header;
 mod sheets;
-mod workbook;
 mod words;
+mod workbook;
 
 use crate::diag::Output;
 use crate::visit::Visit;

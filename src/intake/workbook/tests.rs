@@ -1,42 +1,38 @@
 //! Workbooks of other writers, read cell by cell; and files made to break a reader.
 
-use super::*;
+mod formats;
+mod hostile;
+mod package;
 
-#[test]
-fn dump() {
-    for f in [
-        "kinds.xlsx",
-        "kinds.xlsm",
-        "kinds.ods",
-        "kinds.xls",
-        "from-1904.xlsx",
-        "from-1904.xls",
-        "plain.xls",
-        "plain.xlsb",
-        "hand.ods",
-        "locked.xlsx",
-    ] {
-        let bytes = std::fs::read(format!("tests/data/formats/{f}")).unwrap();
-        match read(&Content::File(&bytes)) {
-            Err(e) => println!("## {f} {e}"),
-            Ok(book) => {
-                for s in &book.value.sheets {
-                    println!("== {f} {} {} {:?} {:?} {:?} {}", s.name, s.hidden, s.hidden_rows, s.hidden_columns, s.merged, s.cells.len());
-                    for c in s.cells.iter().take(64) {
-                        println!("  {},{} {:?}", c.row, c.col, c.value);
-                    }
-                }
-            }
-        }
-    }
-    for f in ["csv-plain", "csv-office"] {
-        let files: Vec<_> = std::fs::read_dir(format!("tests/data/formats/{f}"))
-            .unwrap()
-            .map(|e| {
-                let p = e.unwrap().path();
-                (p.file_name().unwrap().to_str().unwrap().to_owned(), std::fs::read(&p).unwrap())
-            })
-            .collect();
-        println!("## {f} {:#?}", read(&Content::Folder(&files)));
-    }
+use super::*;
+use crate::diag::column_letters;
+use crate::intake::grid::{Sheet, Value};
+
+/// A file of tests/data/formats, which `tests/tools/make_formats.py` writes.
+macro_rules! made {
+    ($name:literal) => {
+        include_bytes!(concat!(env!("CARGO_MANIFEST_DIR"), "/tests/data/formats/", $name)).as_slice()
+    };
+}
+use made;
+
+fn book(bytes: &[u8]) -> Workbook {
+    read(&Content::File(bytes)).unwrap().value
+}
+
+fn refusal(bytes: &[u8]) -> String {
+    read(&Content::File(bytes)).map(|output| output.value).unwrap_err().to_string()
+}
+
+/// The cells of a sheet, each in a few words.
+fn shown(sheet: &Sheet) -> Vec<String> {
+    let value = |value: &Value| match value {
+        Value::Text(text) => format!("{text:?}"),
+        Value::Number(number) => number.to_string(),
+        Value::DateTime(days) => format!("day {days:.4}"),
+        Value::Logical(logical) => logical.to_string(),
+        Value::Error(error) => format!("error {error}"),
+        Value::NoResult(formula) => format!("no result of {formula}"),
+    };
+    sheet.cells.iter().map(|c| format!("{}{} {}", column_letters(c.col), c.row + 1, value(&c.value))).collect()
 }

@@ -161,16 +161,10 @@ impl Head {
 
     /// The value, given the text shown. A formula that was never computed shows none, one whose result is no text an empty one.
     fn into_value(self, text: Option<String>) -> Option<Value> {
-        let Some(text) = text else {
-            return match (self.kind.as_str(), self.formula) {
-                ("" | "void", formula) => formula.map(Value::NoResult),
-                (_, formula) => Self { formula, ..self }.typed(String::new()),
-            };
-        };
-        self.typed(text)
-    }
-
-    fn typed(self, text: String) -> Option<Value> {
+        if text.is_none() && matches!(self.kind.as_str(), "" | "void") {
+            return self.formula.map(Value::NoResult);
+        }
+        let text = text.unwrap_or_default();
         if self.is_error || (self.formula.is_some() && is_error(&text)) {
             return Some(Value::Error(text));
         }
