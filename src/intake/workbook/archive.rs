@@ -5,7 +5,7 @@
 //! directory is believed, its entries are looked at and nothing is copied; a part is inflated as it is read, never held, and all
 //! that was inflated is counted against one bound. Sizes and checksums are held against what really came.
 
-use super::bounds::{MOST_INFLATED, MOST_PARTS, at_most};
+use super::bounds::{MOST_INFLATED, MOST_PARTS, MOST_STEPS, at_most};
 use super::bytes::{u16_at, u32_at};
 use crate::intake::Refusal;
 use flate2::Crc;
@@ -26,7 +26,26 @@ const END_LENGTH: usize = 22;
 pub struct Archive<'a> {
     bytes: &'a [u8],
     entries: BTreeMap<String, Entry>,
-    left: Cell<u64>,
+    allowance: Allowance,
+}
+
+/// What may still be read of a package, over all its parts.
+#[derive(Debug)]
+pub struct Allowance {
+    bytes: Cell<u64>,
+    steps: Cell<u32>,
+}
+
+impl Allowance {
+    /// Takes one step through a part.
+    ///
+    /// # Errors
+    /// There were too many.
+    pub fn step(&self) -> Result<(), Refusal> {
+        let left = self.steps.get().checked_sub(1);
+        self.steps.set(left.ok_or_else(|| Refusal::TooLarge(format!("its parts hold more than {MOST_STEPS} pieces")))?);
+        Ok(())
+    }
 }
 
 #[derive(Clone, Copy, Debug)]
@@ -55,7 +74,7 @@ impl<'a> Archive<'a> {
             entries.insert(name, entry);
             at = next;
         }
-        Ok(Self { bytes, entries, left: Cell::new(MOST_INFLATED) })
+        Ok(Self { bytes, entries, allowance: Allowance { bytes: Cell::new(MOST_INFLATED), steps: Cell::new(MOST_STEPS) } })
     }
 
     /// Whether there is such a part. Names are compared as the formats ask: without regard to case.
@@ -83,7 +102,7 @@ impl<'a> Archive<'a> {
             8 => Source::Deflated(Box::new(DeflateDecoder::new(packed))),
             other => return Err(damaged(&format!("{name} is compressed by method {other}, which no workbook uses"))),
         };
-        Ok(Some(Part { source, crc: Crc::new(), entry: *entry, came: 0, left: &self.left }))
+        Ok(Some(Part { source, crc: Crc::new(), entry: *entry, came: 0, allowance: &self.allowance }))
     }
 
     /// A small part as a whole.
@@ -105,7 +124,14 @@ pub struct Part<'a> {
     crc: Crc,
     entry: Entry,
     came: u64,
-    left: &'a Cell<u64>,
+    allowance: &'a Allowance,
+}
+
+impl<'a> Part<'a> {
+    /// What may still be read.
+    pub fn allowance(&self) -> &'a Allowance {
+        self.allowance
+    }
 }
 
 enum Source<'a> {
@@ -121,8 +147,8 @@ impl Read for Part<'_> {
         };
         self.came += n as u64;
         self.crc.update(&buffer[..n]);
-        let left = self.left.get().checked_sub(n as u64).ok_or_else(|| io::Error::from(io::ErrorKind::QuotaExceeded))?;
-        self.left.set(left);
+        let left = self.allowance.bytes.get().checked_sub(n as u64);
+        self.allowance.bytes.set(left.ok_or(io::ErrorKind::QuotaExceeded)?);
         let size = u64::from(self.entry.size);
         if self.came > size || (n == 0 && !buffer.is_empty() && self.came < size) {
             return Err(io::Error::new(io::ErrorKind::InvalidData, "its length is not the one stated"));

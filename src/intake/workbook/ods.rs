@@ -4,7 +4,7 @@ mod paragraph;
 mod table;
 
 use super::archive::Archive;
-use super::bounds::{Budget, MOST_ENTRIES, MOST_SHEETS, at_most};
+use super::bounds::{Budget, MOST_NAMED, MOST_SHEETS, at_most};
 use super::xml::{Node, Xml};
 use crate::intake::Refusal;
 use crate::intake::grid::Workbook;
@@ -32,7 +32,7 @@ pub fn read(archive: &Archive, budget: &mut Budget) -> Result<Workbook, Refusal>
                 b"style" => style = tag.get("name")?.unwrap_or_default(),
                 b"table-properties" if tag.get("display")?.as_deref() == Some("false") => {
                     hidden.insert(std::mem::take(&mut style));
-                    at_most(hidden.len(), MOST_ENTRIES, "styles")?;
+                    at_most(hidden.len(), MOST_NAMED, "styles that hide a sheet")?;
                 }
                 // Changes kept for review, and copies of other workbooks' tables, hold tables that are none of this workbook's.
                 b"tracked-changes" | b"dde-links" => xml.skip()?,

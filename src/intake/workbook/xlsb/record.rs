@@ -56,7 +56,9 @@ impl Records<'_> {
     pub fn each(archive: &Archive, name: &str, mut take: impl FnMut(&Record) -> Result<(), Refusal>) -> Result<(), Refusal> {
         let part = archive.part(name)?.ok_or_else(|| Refusal::Damaged(format!("{name} is missing")))?;
         let mut records = Records { part: BufReader::with_capacity(1 << 16, part), buffer: Vec::new() };
+        let allowance = records.part.get_ref().allowance();
         while !records.part.fill_buf().map_err(|e| damage(name, &e))?.is_empty() {
+            allowance.step()?;
             let [kind, length] = [2, 4].map(|most| records.variable(most));
             let (kind, length) = (kind.map_err(|e| damage(name, &e))?, length.map_err(|e| damage(name, &e))? as usize);
             if length > MOST_TOKEN {
