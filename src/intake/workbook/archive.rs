@@ -178,12 +178,12 @@ fn key(name: &str) -> String {
     name.trim_start_matches(['/', '\\']).replace('\\', "/").to_lowercase()
 }
 
-/// Where the end record begins: the one whose comment ends with the file, the last if there are several.
+/// Where the end record begins: the last whose comment fits in the file. Bytes after it do no harm; mail and storage pad files.
 fn end_record(bytes: &[u8]) -> Option<usize> {
     let last = bytes.len().checked_sub(END_LENGTH)?;
     let first = last.saturating_sub(usize::from(u16::MAX));
-    let ends_with_file = |at: &usize| u16_at(bytes, at + 20).is_some_and(|comment| at + END_LENGTH + usize::from(comment) == bytes.len());
-    (first..=last).rev().filter(|at| u32_at(bytes, *at) == Some(END)).find(ends_with_file)
+    let fits = |at: &usize| u16_at(bytes, at + 20).is_some_and(|comment| at + END_LENGTH + usize::from(comment) <= bytes.len());
+    (first..=last).rev().filter(|at| u32_at(bytes, *at) == Some(END)).find(fits)
 }
 
 /// The entry of the directory at an offset, and where the next one begins.
@@ -194,7 +194,7 @@ fn entry(bytes: &[u8], at: usize) -> Option<(String, Entry, usize)> {
     let [name, extra, comment] = [28, 30, 32].map(|field| u16_at(bytes, at + field).map(usize::from));
     let start = at + 46;
     let text = bytes.get(start..start + name?)?;
-    let entry = Entry {
+    let mut entry = Entry {
         locked: u16_at(bytes, at + 8)? & 1 != 0,
         method: u16_at(bytes, at + 10)?,
         crc: u32_at(bytes, at + 16)?,
@@ -202,7 +202,23 @@ fn entry(bytes: &[u8], at: usize) -> Option<(String, Entry, usize)> {
         size: u32_at(bytes, at + 24)?,
         offset: u32_at(bytes, at + 42)?,
     };
+    entry.widen(bytes.get(start + name?..start + name? + extra?)?);
     Some((key(&String::from_utf8_lossy(text)), entry, start + name? + extra? + comment?))
+}
+
+impl Entry {
+    /// Takes the fields that some writers keep in eight bytes behind the name, which then hold all ones (APPNOTE 4.5.3). No part that
+    /// is read needs more than four of them.
+    fn widen(&mut self, mut extra: &[u8]) {
+        while let (Some(kind), Some(length)) = (u16_at(extra, 0), u16_at(extra, 2)) {
+            let mut at = 4;
+            for field in [&mut self.size, &mut self.packed, &mut self.offset].into_iter().filter(|f| kind == 1 && **f == u32::MAX) {
+                *field = u32_at(extra, at).unwrap_or(u32::MAX);
+                at += 8;
+            }
+            extra = extra.get(4 + usize::from(length)..).unwrap_or_default();
+        }
+    }
 }
 
 /// The packed bytes of an entry. The lengths before them are those of the local header, which may differ from the directory's.

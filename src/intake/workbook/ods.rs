@@ -10,8 +10,10 @@ use crate::intake::Refusal;
 use crate::intake::grid::Workbook;
 use std::collections::BTreeSet;
 
-const CONTENT: &str = "content.xml";
-const MANIFEST: &str = "META-INF/manifest.xml";
+/// The part with the cells.
+pub const CONTENT: &str = "content.xml";
+/// The part that lists the others.
+pub const MANIFEST: &str = "META-INF/manifest.xml";
 
 /// Reads a workbook.
 ///

@@ -72,6 +72,8 @@ fn entities_and_document_types_are_refused() {
     let attribute = r#"<workbook><sheets><sheet name="&d;" r:id="rId1"/></sheets></workbook>"#;
     let said = refusal(&xlsx(&sheet(""), &[("xl/workbook.xml", attribute)]));
     assert!(said.contains("&d;"), "{said}");
+    let long = format!("<worksheet>&{};</worksheet>", "n".repeat(10_000));
+    assert!(refusal(&xlsx(&long, &[])).len() < 300);
 }
 
 #[test]
@@ -109,13 +111,15 @@ fn repetitions_cost_what_they_hold() {
     assert!(said.contains("a cell holds more than 1 MB of text"), "{said}");
 }
 
+const DOCUMENT: &[u8] = br#"<Relationships><Relationship Id="r" Type="a/officeDocument" Target="word/document.xml"/></Relationships>"#;
+
 #[test]
 fn what_is_no_workbook_is_named() {
     for (bytes, says) in [
         (b"".to_vec(), "the file is empty"),
         (b"%PDF-1.7 ...".to_vec(), "a PDF document"),
         (zip(&[("notes.txt", b"119.6")]), "a zip archive without a workbook in it"),
-        (zip(&[("word/document.xml", b"<w/>")]), "a word processor document"),
+        (zip(&[("_rels/.rels", DOCUMENT), ("word/document.xml", b"<w:document/>")]), "a word processor document"),
         (zip(&[("mimetype", b"application/vnd.oasis.opendocument.text")]), "application/vnd.oasis.opendocument.text"),
         (vec![b' '; 49 << 20], "more than 48 MB"),
     ] {
@@ -236,4 +240,18 @@ fn spoiled_parts_never_panic() {
             survives(&zip(&parts.collect::<Vec<_>>()));
         }
     }
+}
+
+/// Directory entries with their lengths in eight bytes, and bytes after the end, as some writers and mail systems leave them.
+#[test]
+fn honest_oddities_of_packages_are_read() {
+    let mut bytes = xlsx(&sheet("<row><c><v>1</v></c></row>"), &[]);
+    let last = bytes.windows(4).rposition(|w| w == b"PK\x01\x02").unwrap();
+    let end = bytes.windows(4).rposition(|w| w == b"PK\x05\x06").unwrap();
+    let [packed, size] = [20, 24].map(|at| bytes[last + at..last + at + 4].to_vec());
+    bytes[last + 20..last + 28].fill(0xff);
+    bytes[last + 30] = 20;
+    bytes.splice(end..end, [&[1, 0, 16, 0], &size[..], &[0; 4], &packed[..], &[0; 4]].concat());
+    bytes.extend([0; 100]);
+    assert_eq!(shown(&book(&bytes).sheets[0]), ["A1 1"]);
 }

@@ -99,7 +99,7 @@ pub struct CellRecord<'b> {
 }
 
 impl<'b> Record<'b> {
-    /// The record as that of a cell, if it is one: column, format and flags, value (MS-XLSB 2.5.9); or without the column.
+    /// The record as that of a cell, if it is one: column, format and flags, value; or without the column.
     pub fn cell(&self) -> Result<Option<CellRecord<'b>>, Short> {
         let (kind, col, rest) = match self.kind {
             BLANK..=FORMULA_ERROR | RICH_LABEL => (self.kind, Some(self.data.u32(0)?), self.data.after(4)?),
