@@ -8,6 +8,9 @@ mod grid;
 mod header;
 mod sheets;
 mod words;
+
+#[cfg(test)]
+mod tests;
 mod workbook;
 
 use crate::diag::Output;

@@ -271,11 +271,21 @@ pub(super) fn normal(text: &str) -> String {
 
 /// Names nearer than this are worth suggesting (Jaro-Winkler).
 const ALIKE: f64 = 0.86;
+const ALIKE_NAMES: f64 = 0.8;
 /// A longer text is no misspelt name.
 const LONGEST: usize = 64;
 
 /// The candidate nearest to a text, where one is near; the first of several that are as near.
 pub(super) fn nearest<'a>(text: &str, candidates: impl Iterator<Item = &'a str>) -> Option<&'a str> {
+    nearest_beyond(ALIKE, text, candidates)
+}
+
+/// As [`nearest`], for names of circuits and instruments, which are short and differ in a digit.
+pub(super) fn nearest_name<'a>(text: &str, candidates: impl Iterator<Item = &'a str>) -> Option<&'a str> {
+    nearest_beyond(ALIKE_NAMES, text, candidates)
+}
+
+fn nearest_beyond<'a>(alike_from: f64, text: &str, candidates: impl Iterator<Item = &'a str>) -> Option<&'a str> {
     if text.is_empty() || text.len() > LONGEST {
         return None;
     }
@@ -283,7 +293,7 @@ pub(super) fn nearest<'a>(text: &str, candidates: impl Iterator<Item = &'a str>)
     for candidate in candidates {
         let alike = strsim::jaro_winkler(text, candidate);
         let better = best.is_none_or(|(b, name)| alike > b || (alike == b && candidate < name));
-        if alike >= ALIKE && better {
+        if alike >= alike_from && better {
             best = Some((alike, candidate));
         }
     }

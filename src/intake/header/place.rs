@@ -157,6 +157,11 @@ pub(super) fn place(words: &Words, kind: Kind, text: &str) -> Option<(What, Opti
     if let Some(column) = columns.get(text) {
         return Some((What::Named(column), unit_word(text)));
     }
+    if let Some((base, unit)) = without_unit_word(text)
+        && let Some(what) = columns.get(&base).map(What::Named).or_else(|| by_head(&base, Some(unit)))
+    {
+        return Some((what, Some(unit)));
+    }
     if let Some(what) = by_head(text, None) {
         return Some((what, None));
     }
@@ -178,6 +183,20 @@ fn without_size_unit(text: &str) -> Option<(String, bool)> {
     let units =
         [("mm\u{b2}", true), ("mm2", true), ("mm^2", true), ("sq mm", true), ("sq. mm", true), ("awg/kcmil", false), ("awg", false)];
     units.iter().find(|(unit, _)| lower.contains(unit)).map(|(unit, metric)| (lower.replace(unit, " "), *metric))
+}
+
+/// The header without a word of it that is a unit and can't be anything else: `Load kW L1`, `L1-N volts`.
+fn without_unit_word(text: &str) -> Option<(String, Scale)> {
+    let plain = |word: &str| word.trim_matches(['(', ')', '[', ']', ',', ':']).to_owned();
+    let is_unit = |word: &str| {
+        let word = plain(word);
+        let letter = word.len() == 1 && !matches!(word.as_str(), "V" | "v" | "W" | "w" | "%");
+        if letter || word.eq_ignore_ascii_case("in") { None } else { unit_word(&word) }
+    };
+    let words: Vec<&str> = text.split_whitespace().collect();
+    let (at, unit) = words.iter().enumerate().find_map(|(i, word)| is_unit(word).map(|unit| (i, unit)))?;
+    let base: Vec<&str> = words.iter().enumerate().filter(|(i, _)| *i != at).map(|(_, word)| *word).collect();
+    (!base.is_empty()).then(|| (base.join(" "), unit))
 }
 
 /// The header without the unit beside it: in brackets anywhere, behind a comma, or its last word.

@@ -76,7 +76,12 @@ fn skipped(row: &Row<'_>, mentioned: &HashSet<String>, reader: &mut Reader<'_>) 
         reader.warning(total, Sentence::new("intake.total-row"));
         return true;
     }
-    row.filled() == 1 && (row.is_note() || !name.is_empty())
+    row.filled() == 1 && !(row.is_note() && is_name(&name, reader))
+}
+
+/// A text alone in its row that can be a circuit's name rather than a note or the title of what follows.
+fn is_name(text: &str, reader: &Reader<'_>) -> bool {
+    (1..=2).contains(&text.split_whitespace().count()) && reader.words.sheet(text).is_none()
 }
 
 fn run<'a>(row: &Row<'a>, system: &System, reader: &mut Reader<'a>, circuits: &mut Circuits) {
