@@ -97,7 +97,9 @@ fn headers(sheet: &Sheet, row: u32, below: Option<u32>, words: &Words) -> Vec<Fo
         found.iter().map(columns).sum()
     };
     let [alone, grouped] = [false, true].map(|grouped| split(sheet, words, &joined(sheet, row, below, words, grouped), (row, below)));
-    let two = if score(&grouped) > score(&alone) { grouped } else { alone };
+    // Of equals, the one that takes the header for fewer tables.
+    let rank = |found: &[Found]| (score(found), std::cmp::Reverse(found.iter().map(|f| f.layouts.len()).sum::<usize>()));
+    let two = if rank(&grouped) > rank(&alone) { grouped } else { alone };
     let units_alone = texts(sheet, below).values().all(|text| unit_text(text));
     let lower = split(sheet, words, &texts(sheet, below), (below, below));
     let (a, b, c) = (score(&one), score(&two), score(&lower));
