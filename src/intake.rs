@@ -8,6 +8,7 @@ mod grid;
 mod header;
 mod sheets;
 mod words;
+mod workbook;
 
 #[cfg(test)]
 mod tests;

@@ -6,13 +6,19 @@
 //! a stored result, the difference between a moment and an elapsed time.
 
 mod archive;
+mod binary;
 mod bounds;
 mod bytes;
+mod compound;
+mod csv;
 mod draft;
 mod kind;
 mod ods;
 mod relations;
 mod serial;
+mod texts;
+mod xls;
+mod xlsb;
 mod xlsx;
 mod xml;
 
@@ -24,6 +30,7 @@ use super::{Content, Refusal};
 use crate::diag::Output;
 use archive::Archive;
 use bounds::{Budget, MOST_BYTES, megabytes};
+use compound::Compound;
 use kind::Kind;
 
 /// Reads an input into plain cells.
@@ -39,7 +46,7 @@ pub(super) fn read(content: &Content) -> Result<Output<Workbook>, Refusal> {
         _ if size == 0 => Err(Refusal::Empty),
         _ if size > MOST_BYTES => Err(megabytes("it is more than", MOST_BYTES, "long")),
         Content::File(bytes) => file(bytes).map(|value| Output { value, problems: Vec::new() }),
-        Content::Folder(_) => todo!(),
+        Content::Folder(files) => csv::read(files, &mut Budget::new()),
     }
 }
 
@@ -47,7 +54,7 @@ fn file(bytes: &[u8]) -> Result<Workbook, Refusal> {
     let mut budget = Budget::new();
     match kind::of(bytes).map_err(|what| Refusal::NotAWorkbook(what.to_owned()))? {
         Kind::Package => package(&Archive::open(bytes)?, &mut budget),
-        Kind::Compound => todo!(),
+        Kind::Compound => xls::read(&Compound::open(bytes)?, &mut budget),
     }
 }
 
@@ -63,7 +70,8 @@ fn package(archive: &Archive, budget: &mut Budget) -> Result<Workbook, Refusal> 
     let relations = relations::of(archive, "")?;
     let main = relations.iter().find(|r| r.kind == "officeDocument").map_or("xl/workbook.xml", |r| r.target.as_str());
     match main.rsplit_once('.') {
-        Some((folder, "xml")) if folder.ends_with("workbook") && archive.has(main) => xlsx::read(archive, main, budget),
+        Some((_, "bin")) if archive.has(main) => xlsb::read(archive, main, budget),
+        Some((_, "xml")) if archive.has(main) && !archive.has("word/document.xml") => xlsx::read(archive, main, budget),
         _ => Err(Refusal::NotAWorkbook(unlike(archive).to_owned())),
     }
 }

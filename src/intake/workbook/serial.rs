@@ -55,9 +55,10 @@ impl Kind {
         kind
     }
 
-    /// A number with this format, in a workbook of either date system.
+    /// A number with this format, in a workbook of either date system. What is no number is an error, as spreadsheets show it.
     pub fn value(self, number: f64, from_1904: bool) -> Value {
         match self {
+            _ if !number.is_finite() => Value::Error("#NUM!".to_owned()),
             Self::Plain => Value::Number(number),
             // A time of day without a date is the same in both systems.
             Self::Moment if from_1904 && number >= 1.0 => Value::DateTime(number + EPOCH_1904),

@@ -4,17 +4,18 @@ use super::super::bounds::{MOST_TOKEN, megabytes};
 use super::super::xml::{Node, Xml};
 use crate::intake::Refusal;
 
-/// Appends the text of the `text:p` that was just opened; a paragraph after another begins a new line.
+/// Adds the text of the `text:p` that was just opened; a paragraph after another begins a new line.
 ///
 /// Runs of white space in the XML are one blank and those that lead are none (ODF 1.3 part 3, 6.1.2). Comments, notes and drawings
 /// within the paragraph are not its text.
 ///
 /// # Errors
 /// The part is broken, or the text beyond a bound.
-pub fn append(xml: &mut Xml, text: &mut String, first: bool) -> Result<(), Refusal> {
-    if !first {
-        text.push('\n');
+pub fn append(xml: &mut Xml, text: &mut Option<String>) -> Result<(), Refusal> {
+    if let Some(before) = text {
+        before.push('\n');
     }
+    let text = text.get_or_insert_default();
     let mut depth = 1;
     let mut after_blank = true;
     while depth > 0 {

@@ -4,8 +4,9 @@ use super::super::archive::Archive;
 use super::super::bounds::{Budget, MOST_ENTRIES, at_most};
 use super::super::draft::Draft;
 use super::super::serial::{self, Kind};
+use super::super::texts::Texts;
 use super::super::xml::{Node, Tag, Xml};
-use super::strings::{Strings, rich, unescape};
+use super::strings::{rich, unescape};
 use super::{Entry, is_true};
 use crate::intake::Refusal;
 use crate::intake::grid::{Area, Sheet, Value};
@@ -16,7 +17,7 @@ pub struct Context<'a> {
     /// Kind of number of each cell format.
     pub kinds: &'a [Kind],
     /// Shared texts.
-    pub strings: &'a Strings,
+    pub texts: &'a Texts,
     /// The workbook counts days from 1904.
     pub from_1904: bool,
 }
@@ -193,8 +194,8 @@ impl Reading<'_> {
     fn value(&self, head: &Head, mut text: String) -> Result<Value, Refusal> {
         Ok(match head.kind {
             Type::Shared => {
-                let shared = text.trim().parse().ok().and_then(|index| self.context.strings.get(index));
-                Value::Text(shared.ok_or_else(|| damaged(self.part, "a cell with the shared text", &text))?.to_owned())
+                let number = text.trim().parse().map_err(|_| damaged(self.part, "a cell with the shared text", &text))?;
+                Value::Text(self.context.texts.get(number)?.to_owned())
             }
             Type::Text => {
                 unescape(&mut text);

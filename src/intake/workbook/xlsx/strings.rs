@@ -1,53 +1,26 @@
 //! Text in Office Open XML: the table of shared texts, runs of rich text, and characters written as `_x000D_`.
 
 use super::super::archive::Archive;
-use super::super::bounds::{MOST_CELLS, MOST_SHARED, at_most, megabytes};
+use super::super::texts::Texts;
 use super::super::xml::{Node, Xml};
 use crate::intake::Refusal;
-
-/// The table of shared texts, kept as one text, so that a table of millions of empty entries costs next to nothing.
-#[derive(Default)]
-pub struct Strings {
-    text: String,
-    ends: Vec<u32>,
-}
-
-impl Strings {
-    /// The text at an index.
-    pub fn get(&self, index: usize) -> Option<&str> {
-        let end = *self.ends.get(index)? as usize;
-        let start = index.checked_sub(1).map_or(0, |before| self.ends[before] as usize);
-        self.text.get(start..end)
-    }
-
-    /// Adds a text.
-    ///
-    /// # Errors
-    /// The table is beyond a bound.
-    pub fn push(&mut self, text: &str) -> Result<(), Refusal> {
-        self.text.push_str(text);
-        let end = u32::try_from(self.text.len()).ok().filter(|end| *end as usize <= MOST_SHARED);
-        self.ends.push(end.ok_or_else(|| megabytes("its shared texts are more than", MOST_SHARED, ""))?);
-        at_most(self.ends.len(), MOST_CELLS, "shared texts")
-    }
-}
 
 /// Reads the table.
 ///
 /// # Errors
 /// The part is broken or beyond a bound.
-pub fn read(archive: &Archive, name: &str) -> Result<Strings, Refusal> {
+pub fn read(archive: &Archive, name: &str) -> Result<Texts, Refusal> {
     let mut xml = super::open(archive, name)?;
-    let mut strings = Strings::default();
+    let mut texts = Texts::default();
     let mut text = String::new();
     loop {
         match xml.next()? {
             Node::Open(tag) if tag.name() == b"si" => {
                 text.clear();
                 rich(&mut xml, &mut text)?;
-                strings.push(&text)?;
+                texts.push(&text)?;
             }
-            Node::End => return Ok(strings),
+            Node::End => return Ok(texts),
             _ => {}
         }
     }
