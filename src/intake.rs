@@ -7,12 +7,11 @@ mod cell;
 mod grid;
 mod header;
 mod sheets;
-mod words;
 mod workbook;
+mod words;
 
 #[cfg(test)]
 mod tests;
-mod workbook;
 
 use crate::diag::Output;
 use crate::visit::Visit;
