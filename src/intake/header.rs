@@ -7,7 +7,7 @@ pub(super) mod heads;
 mod place;
 mod table;
 
-pub(super) use place::What;
+pub(super) use place::{What, place};
 pub(super) use table::{Field, Row, Table};
 
 use super::grid::{Area, Sheet, Value};
@@ -42,7 +42,7 @@ impl Found {
 }
 
 /// The tables of a sheet, downwards.
-pub(super) fn tables<'a>(sheet: &'a Sheet, words: &Words) -> Vec<Table<'a>> {
+pub(super) fn tables<'a>(sheet: &'a Sheet, words: &'a Words) -> Vec<Table<'a>> {
     let mut found: Vec<Found> = Vec::new();
     let filled: Vec<u32> = sheet.rows().map(|(row, _)| row).collect();
     let mut last_header = None;
@@ -63,7 +63,7 @@ pub(super) fn tables<'a>(sheet: &'a Sheet, words: &Words) -> Vec<Table<'a>> {
         let overlaps = |c: (u32, u32)| c.0 <= header.columns.1 && header.columns.0 <= c.1;
         let next = starts.iter().skip(i + 1).find(|(rows, columns)| rows.0 > header.rows.1 && overlaps(*columns));
         let rows = (header.rows.1 + 1, next.map_or(end, |(rows, _)| rows.0));
-        tables.extend(header.layouts.into_iter().map(|layout| Table::new(sheet, layout, header.rows, header.columns, rows)));
+        tables.extend(header.layouts.into_iter().map(|layout| Table::new(sheet, words, layout, header.rows, header.columns, rows)));
     }
     tables
 }
@@ -129,7 +129,7 @@ fn joined(sheet: &Sheet, upper: u32, lower: u32, words: &Words, grouped: bool) -
     for (&col, text) in &below {
         let own = above.get(&col).or_else(|| above.get(&area(col)?.left));
         let group = || above.range(..col).next_back().map(|(_, head)| head).filter(|_| area(col).is_none());
-        let placed = |text: &str| Kind::ALL.iter().any(|&kind| place::place(words, kind, text).is_some());
+        let placed = |text: &str| Kind::ALL.iter().any(|&kind| place(words, kind, text).is_some());
         let text = match (own, own.is_none().then(group).flatten()) {
             (Some(head), _) if unit_text(text) => format!("{head} ({})", text.trim_matches(['(', ')', '[', ']'])),
             (Some(head), _) => format!("{head} {text}"),
@@ -160,7 +160,7 @@ fn split(sheet: &Sheet, words: &Words, texts: &BTreeMap<u32, String>, rows: (u32
         last = Some(col);
     }
     let found = |part: &BTreeMap<u32, String>| {
-        let layouts = place::layouts(words, part, words.sheet(&sheet.name));
+        let layouts = place::layouts(words, part, &sheet.name);
         let columns = (*part.first_key_value()?.0, *part.last_key_value()?.0);
         (!layouts.is_empty()).then_some(Found { rows, columns, layouts })
     };

@@ -3,6 +3,7 @@
 mod book;
 mod circuits;
 mod layouts;
+mod mapping;
 mod others;
 mod samples;
 mod scale;

@@ -40,7 +40,7 @@ pub(super) fn read<'a>(
 ) -> Circuits {
     let mut circuits = Circuits { runs: Vec::new(), pending: Pending::default() };
     for table in tables.of(Kind::Circuits) {
-        if table.column(Column::FedFrom).is_none() {
+        if table.column(Column::FedFrom).is_none() && reader.words.fixed.column(Kind::Circuits, Column::FedFrom).is_none() {
             let message = Sentence::new("intake.no-fed-from");
             reader.problems.push(crate::diag::Problem::in_sheet(Severity::Warning, &table.sheet.name, "", message));
         }

@@ -5,7 +5,7 @@
 
 use crate::diag::{Output, Problem};
 use crate::intake::grid::{Area, Cell, Sheet, Value, Workbook};
-use crate::intake::{Beside, BesideError, Options, Refusal, sheets};
+use crate::intake::{Beside, BesideError, Mapping, Options, Refusal, sheets};
 use crate::quantity::Measured;
 use crate::visit::{ReadingRow, Visit};
 use crate::wording::Language;
@@ -65,7 +65,11 @@ impl Book {
     }
 
     pub fn read(self) -> Result<Output<Visit>, Refusal> {
-        sheets::assemble(Output { value: self.0, problems: Vec::new() }, &Options { beside: &Folder })
+        self.read_with(None)
+    }
+
+    pub fn read_with(self, mapping: Option<&Mapping>) -> Result<Output<Visit>, Refusal> {
+        sheets::assemble(Output { value: self.0, problems: Vec::new() }, &Options { beside: &Folder, mapping })
     }
 
     /// What was read, of a workbook that can be.

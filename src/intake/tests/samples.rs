@@ -6,7 +6,7 @@ use crate::intake::{Content, Input, Options, read};
 fn sample(name: &str) -> crate::diag::Output<crate::visit::Visit> {
     let path = format!("{}/samples/{name}", env!("CARGO_MANIFEST_DIR"));
     let bytes = std::fs::read(&path).expect("a sample");
-    read(&Input { name, content: Content::File(&bytes) }, &Options { beside: &Folder }).expect("a workbook with readings")
+    read(&Input { name, content: Content::File(&bytes) }, &Options { beside: &Folder, mapping: None }).expect("a workbook with readings")
 }
 
 #[test]
