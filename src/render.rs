@@ -6,3 +6,4 @@ mod text;
 pub mod html;
 pub mod pdf;
 pub mod xlsx;
+pub mod svg;

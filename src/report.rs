@@ -5,6 +5,7 @@
 
 pub mod document;
 pub mod drawing;
+pub mod figures;
 
 mod facts;
 mod figures;
