@@ -5,5 +5,5 @@ mod text;
 
 pub mod html;
 pub mod pdf;
-pub mod xlsx;
 pub mod svg;
+pub mod xlsx;

@@ -5,7 +5,6 @@
 
 pub mod document;
 pub mod drawing;
-pub mod figures;
 
 mod facts;
 mod figures;

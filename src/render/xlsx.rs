@@ -7,11 +7,14 @@ mod cell;
 mod chart;
 mod formula;
 mod grid;
+mod marked;
 mod name;
 mod page;
 mod sheet;
 mod style;
 mod width;
+
+pub use marked::{Marked, MarkedProblem, MarkedSheet, MarkedValue, MarkedWords, marked};
 
 use super::text::visible;
 use crate::report::document::{Document, Meta, Sheet};
@@ -32,7 +35,7 @@ pub struct XlsxError(#[from] rust_xlsxwriter::XlsxError);
 /// A sheet with more rows than a worksheet holds goes on in a second one.
 ///
 /// # Errors
-/// The workbook does not fit the file format: more facts above a table than a worksheet has rows.
+/// The document does not fit the file format: more facts above a table than a worksheet has rows.
 pub fn write(document: &Document) -> Result<Vec<u8>, XlsxError> {
     let meta = &document.meta;
     let styles = Styles::new(meta.accent);

@@ -3,6 +3,7 @@
 use super::inline::{self, identifier};
 use super::markup::Markup;
 use super::{data, mark, table};
+use crate::render::svg;
 use crate::report::document::{Block, CaptionedImage, Inline, Meta};
 use crate::report::drawing::Drawing;
 use crate::results::Signal;
@@ -94,15 +95,12 @@ impl<'a> Blocks<'a> {
     }
 
     fn figure(&mut self, page: &mut Markup, caption: &[Inline], drawing: &Drawing) {
+        let accent = self.meta.accent;
         page.element("figure", &[("class", "drawing")], |page| {
-            draw(page, drawing);
+            page.raw(&svg::write(drawing, accent));
             page.element("figcaption", &[], |page| inline::write(page, caption));
         });
     }
-}
-
-fn draw(page: &mut Markup, drawing: &Drawing) {
-    page.element("p", &[], |page| page.text(&drawing.alt));
 }
 
 fn photo(page: &mut Markup, photo: &CaptionedImage) {

@@ -7,12 +7,19 @@ use std::borrow::Cow;
 
 /// Longest text of a cell, in UTF-16 units as the format counts.
 const LONGEST: usize = 32_767;
+/// The library counts a rich string's markup as text. Escaped, a byte takes at most five of it, and the fonts of a run 300.
+const MARKUP_PER_BYTE: usize = 5;
+const MARKUP_PER_RUN: usize = 300;
 
 /// Writes a text. One that ends too late is cut and ends in `…`.
 pub(super) fn write(sheet: &mut Worksheet, row: u32, col: u16, text: &str, format: &Format) -> Result<(), XlsxError> {
     let text = limited(visible(text));
     if text.starts_with("<r>") && text.ends_with("</r>") {
-        // The library takes such a string for markup of its own unless it is a rich one.
+        // The library takes such a string for markup of its own unless it is a rich one, or has a blank behind it.
+        if !fits_rich(&text, 1) {
+            sheet.write_string_with_format(row, col, cut(&text, LONGEST - 1) + " ", format)?;
+            return Ok(());
+        }
         sheet.write_rich_string_with_format(row, col, &[(&Format::default(), &escaped(&text))], format)?;
     } else {
         sheet.write_string_with_format(row, col, text, format)?;
@@ -25,7 +32,7 @@ pub(super) fn write_rich(sheet: &mut Worksheet, row: u32, col: u16, text: &[Inli
     let mut runs = Vec::new();
     collect(text, Face::default(), &mut runs);
     let plain = plain(text);
-    if runs.iter().all(|(face, _)| *face == Face::default()) || plain.encode_utf16().count() > LONGEST {
+    if runs.iter().all(|(face, _)| *face == Face::default()) || !fits_rich(&plain, runs.len()) {
         return write(sheet, row, col, &plain, format);
     }
     let runs: Vec<(Format, String)> = runs.into_iter().map(|(face, text)| (face.format(), escaped(&visible(&text)))).collect();
@@ -81,22 +88,27 @@ fn push(text: &str, face: Face, runs: &mut Vec<(Face, String)>) {
     }
 }
 
+fn fits_rich(text: &str, runs: usize) -> bool {
+    text.len() * MARKUP_PER_BYTE + runs * MARKUP_PER_RUN <= LONGEST
+}
+
 /// The text, cut to what a cell holds.
 fn limited(text: Cow<'_, str>) -> Cow<'_, str> {
     // A UTF-16 unit is at least one byte of UTF-8.
     if text.len() <= LONGEST || text.encode_utf16().count() <= LONGEST {
         return text;
     }
-    let mut units = 1;
-    let mut cut: String = text
-        .chars()
-        .take_while(|c| {
-            units += c.len_utf16();
-            units <= LONGEST
-        })
-        .collect();
-    cut.push('…');
-    Cow::Owned(cut)
+    Cow::Owned(cut(&text, LONGEST - 1) + "…")
+}
+
+/// The beginning of a text, at most so many UTF-16 units.
+pub(super) fn cut(text: &str, most: usize) -> String {
+    let mut units = 0;
+    let fits = |c: &char| {
+        units += c.len_utf16();
+        units <= most
+    };
+    text.chars().take_while(fits).collect()
 }
 
 /// `_x0041_` is the format's escape for a character; where a text says so itself, its underscore is escaped. The library does

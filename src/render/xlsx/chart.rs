@@ -24,10 +24,13 @@ pub(super) struct Place<'a> {
     pub title: u32,
 }
 
-/// The chart; `None` where its table lacks a column it names.
+/// The chart; `None` where it has no values or its table lacks a column it names.
 pub(super) fn column(wanted: &document::Chart, place: &Place, accent: [u8; 3]) -> Option<Chart> {
     let range = |key: &str| place.grid.find(key).map(|p| (place.sheet, place.rows.0, p.at, place.rows.1, p.at));
     let categories = range(&wanted.category)?;
+    if wanted.values.is_empty() {
+        return None;
+    }
     let mut chart = Chart::new_column();
     for (n, key) in wanted.values.iter().enumerate() {
         let values = range(key)?;

@@ -1,5 +1,6 @@
 //! Sheet names as the format allows them: 1 to 31 characters, some forbidden, unique without regard to case.
 
+use super::cell::cut;
 use crate::render::text::visible;
 use std::collections::BTreeSet;
 
@@ -43,17 +44,6 @@ fn legal(wanted: &str) -> String {
         name if name.eq_ignore_ascii_case("history") => format!("{name}-"),
         name => name.to_owned(),
     }
-}
-
-/// The beginning of a text, at most so many UTF-16 units.
-fn cut(text: &str, most: usize) -> String {
-    let mut units = 0;
-    text.chars()
-        .take_while(|c| {
-            units += c.len_utf16();
-            units <= most
-        })
-        .collect()
 }
 
 #[cfg(test)]

@@ -68,7 +68,10 @@ impl Styles {
 
     /// A number with its decimals, as it was judged; `uncertain` where its uncertainty may stand right of it.
     pub(super) fn number(&self, number: &Number, uncertain: bool) -> Format {
-        let format = spaced(self.number.clone(), uncertain).set_num_format(pattern(number.decimals));
+        let pattern = pattern(number.decimals);
+        let unsigned = number.formula.is_none() && number.value < 0.0 && !shows_a_digit(number);
+        let pattern = if unsigned { format!("{pattern};{pattern}") } else { pattern };
+        let format = spaced(self.number.clone(), uncertain).set_num_format(pattern);
         match number.verdict {
             Some(verdict @ (Verdict::Fail | Verdict::Undecided)) => format.merge(&judged(verdict)),
             Some(Verdict::Pass) | None => format,
@@ -123,6 +126,11 @@ fn pattern(decimals: u8) -> String {
         0 => "0".to_owned(),
         n => format!("0.{}", "0".repeat(n)),
     }
+}
+
+/// Whether rounding to its decimals leaves the number anything but zeros: a spreadsheet would show the others as `-0.0`.
+fn shows_a_digit(number: &Number) -> bool {
+    format!("{:.1$}", number.value, usize::from(number.decimals)).bytes().any(|b| matches!(b, b'1'..=b'9'))
 }
 
 /// A colour in the library's form.

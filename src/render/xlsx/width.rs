@@ -37,7 +37,7 @@ pub(super) fn columns(page: &Page) -> Vec<f64> {
 }
 
 /// Width of the widest line of a text.
-fn widest_line(text: &str) -> usize {
+pub(super) fn widest_line(text: &str) -> usize {
     text.lines().map(UnicodeWidthStr::width).max().unwrap_or(0)
 }
 
@@ -136,6 +136,6 @@ fn digits(value: f64, decimals: u8) -> usize {
 }
 
 /// A width that shows so many characters with room at both sides; the format allows 255.
-fn characters(n: usize) -> f64 {
+pub(super) fn characters(n: usize) -> f64 {
     f64::from(u8::try_from(n).unwrap_or(200).min(200)) * 1.05 + 1.6
 }

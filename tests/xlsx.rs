@@ -1,4 +1,0 @@
-//! The XLSX renderer, read back.
-
-#[path = "render/specimen.rs"]
-mod specimen;
