@@ -1,8 +1,8 @@
 //! Volts under an open neutral, from visits.
 
-use super::support::near;
+use super::support::{N, near, solved, volts};
 use midwire::diag::{CellRef, Located};
-use midwire::network::{NetworkSettings, exposure};
+use midwire::network::{NetworkSettings, build, exposure};
 use midwire::quantity::{Metres, Ohms, Watts};
 use midwire::results::{ExposedLeg, Exposure};
 use midwire::visit::{Between, Leg, Legs, Load, LoadKind, Run, Site, System, Tree, Visit};
@@ -136,4 +136,31 @@ fn names_change_nothing() {
     loose.runs.push(row("lost", "nowhere", &PAIR, &[(Leg::L1, 500.0)], LoadKind::Resistive));
     loose.tree = Tree::new(&loose.runs);
     assert_eq!(of(&named("5/7"), 1), of(&loose, 1));
+}
+
+/// A branch taken out of its network sees what it sees within it, where other loads and long wires share the way from the source.
+#[test]
+fn a_branch_agrees_with_the_whole() {
+    let long = |mut r: Run, metres: f64| {
+        r.length = r.length.map(|l| l.map(|_| Metres(metres)));
+        r
+    };
+    let lamp = LoadKind::Filament;
+    let runs = vec![
+        long(row("SVC", "", &PAIR, &[(Leg::L1, 2500.0), (Leg::L2, 900.0)], LoadKind::Resistive), 40.0),
+        long(row("SP1", "SVC", &PAIR, &[(Leg::L2, 1500.0)], LoadKind::Resistive), 50.0),
+        long(row("5/7", "SP1", &PAIR, &[(Leg::L1, 800.0)], LoadKind::Resistive), 30.0),
+        long(row("5/7a", "5/7", &PAIR, &[(Leg::L1, 60.0), (Leg::L2, 200.0)], lamp), 10.0),
+        long(row("9", "SP1", &PAIR[..1], &[(Leg::L1, 1000.0)], LoadKind::Resistive), 20.0),
+    ];
+    let visit = visit("120/240", runs);
+    let settings = NetworkSettings::default();
+    for exposure in exposure(&visit, &settings) {
+        let mut whole = build(&visit, &settings).network;
+        whole.spans[exposure.run].ohms[N] = Some(f64::INFINITY);
+        let solution = solved(&whole);
+        for leg in &exposure.legs {
+            near(leg.volts.0, volts(&solution, leg.at, leg.leg.index(), N), 0.02);
+        }
+    }
 }
