@@ -20,12 +20,15 @@ use branch::{Branch, Whole};
 /// Ends of a range closer than this, in volts, are one value.
 const SAME: f64 = 0.5;
 
+/// A leg without loads that strays from nominal by less than this share is left out.
+const UNCHANGED: f64 = 0.05;
+
 /// Runs solved, at most; a second or so. A list of ten thousand multiwire runs in a chain would take hours. Real ones stay far
 /// below it; beyond it the neutrals nearest the source are opened, which expose the most.
 const MOST_WORK: usize = 700_000;
 
-/// Opens every shared neutral, those of the service included, one after the other. Legs without a load below the opening are
-/// given too, at 0 W: whatever is plugged in there sees those volts.
+/// Opens every shared neutral, those of the service included, one after the other. A leg without a load below the opening is
+/// given too, at 0 W, where its volts change: whatever is plugged in there sees them.
 #[must_use]
 pub fn exposure(visit: &Visit, settings: &NetworkSettings) -> Vec<Exposure> {
     let network = build(visit, settings).network;
@@ -131,6 +134,9 @@ impl Places {
         let loads: f64 = of_leg().map(|p| p.watts).sum();
         let loaded = of_leg().filter(|p| p.watts > 0.0 || loads == 0.0);
         let worst = loaded.reduce(|a, b| if strays(b) > strays(a) { b } else { a })?;
+        if loads == 0.0 && strays(worst) < UNCHANGED * nominal {
+            return None;
+        }
         Some(ExposedLeg {
             leg,
             volts: Volts(worst.high),
