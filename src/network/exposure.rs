@@ -37,6 +37,7 @@ pub fn exposure(visit: &Visit, settings: &NetworkSettings) -> Vec<Exposure> {
     let mut whole = Whole::new(&network, &visit.tree, sound);
     let runs = shared_neutrals(&network, &visit.tree);
     let mut exposures: Vec<Exposure> = runs.into_iter().map(|run| open(&whole.branch(run), run, &visit.system)).collect();
+    exposures.retain(|e| !e.legs.is_empty());
     exposures.sort_by_key(|e| e.run);
     exposures
 }
