@@ -1,0 +1,273 @@
+//! From unknowns to readings: residuals and their derivatives.
+
+use super::observation::Observations;
+use super::parameter::{Parameter, Target};
+use super::reduce::Reduced;
+use super::settings::{ADDED, EXPONENT_RANGE};
+use crate::network::{Gradient, Law, Network, SolveSettings, Workspace};
+use crate::quantity::math;
+
+/// Ohms of an open conductor.
+pub(super) const OPEN: f64 = 1e6;
+
+/// Resistance added in one conductor of a span.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Added {
+    /// The span.
+    pub span: usize,
+    /// The conductor.
+    pub slot: usize,
+    /// How much; `None`: an unknown of the fit.
+    pub ohms: Option<f64>,
+}
+
+/// What a hypothesis changes.
+#[derive(Clone, Debug, PartialEq, Default)]
+pub(super) struct Task {
+    /// Added resistances, at most one of them an unknown.
+    pub added: Vec<Added>,
+    /// A reading that is left out as misread.
+    pub misread: Option<usize>,
+    /// Prior of the supply, where it is another one: mean and spread.
+    pub supply: Option<(f64, f64)>,
+}
+
+impl Task {
+    /// The same with one more added resistance.
+    pub fn with(&self, added: Added) -> Self {
+        let mut task = self.clone();
+        task.added.push(added);
+        task
+    }
+
+    fn has_unknown(&self) -> bool {
+        self.added.iter().any(|a| a.ohms.is_none())
+    }
+}
+
+/// Prior of the logarithm of added ohms where they are an unknown: over the range of [`ADDED`] nearly even.
+pub(super) fn added_prior() -> (f64, f64) {
+    let (low, high) = (math::ln(ADDED.0), math::ln(ADDED.1));
+    ((low + high) / 2.0, (high - low) / 3.0)
+}
+
+/// A site ready to be fitted. Unknowns are whitened: z has a standard normal prior.
+#[derive(Clone, Debug)]
+pub(super) struct Model<'a> {
+    reduced: &'a Reduced,
+    /// The observations.
+    pub observations: &'a Observations,
+    parameters: &'a [Parameter],
+    network: Network,
+    spaces: Vec<Workspace>,
+    gradient: Gradient,
+    unknowns: Vec<f64>,
+    predicted: Vec<f64>,
+    /// (predicted − read)/σ, one a reading; 0 for one left out.
+    pub residuals: Vec<f64>,
+    /// Their derivatives by z, a row a reading.
+    pub jacobian: Vec<f64>,
+    /// Unknowns of the present task.
+    pub width: usize,
+    added_share: f64,
+}
+
+impl<'a> Model<'a> {
+    /// Storage for a site; `None` where its network is none.
+    pub fn new(reduced: &'a Reduced, observations: &'a Observations, parameters: &'a [Parameter]) -> Option<Self> {
+        let space = Workspace::new(&reduced.network).ok()?;
+        let m = observations.list.len();
+        Some(Self {
+            reduced,
+            observations,
+            parameters,
+            network: reduced.network.clone(),
+            spaces: vec![space; observations.states.len()],
+            gradient: Gradient::of(&reduced.network),
+            unknowns: Vec::new(),
+            predicted: vec![0.0; m],
+            residuals: vec![0.0; m],
+            jacobian: Vec::new(),
+            width: 0,
+            added_share: 0.0,
+        })
+    }
+
+    /// The unknowns before any reading.
+    pub fn start(&self) -> Vec<f64> {
+        vec![0.0; self.parameters.len()]
+    }
+
+    /// Forgets the last solutions, as after a jump.
+    pub fn restart(&mut self) {
+        self.spaces.iter_mut().for_each(Workspace::restart);
+    }
+
+    /// Mean and spread of an unknown under a task.
+    pub fn prior(&self, task: &Task, k: usize) -> (f64, f64) {
+        match (self.parameters.get(k), task.supply) {
+            (Some(p), Some(supply)) if p.target == Target::Supply => supply,
+            (Some(p), _) => (p.mean, p.spread),
+            (None, _) => added_prior(),
+        }
+    }
+
+    /// An unknown's position.
+    pub fn position(&self, target: Target) -> Option<usize> {
+        self.parameters.iter().position(|p| p.target == target)
+    }
+
+    /// Computes the residuals; returns their sum of squares, `None` where the network was not solved.
+    pub fn residuals(&mut self, task: &Task, z: &[f64]) -> Option<f64> {
+        self.width = self.parameters.len() + usize::from(task.has_unknown());
+        self.unknowns.clear();
+        for (k, z) in z.iter().enumerate().take(self.width) {
+            let (mean, spread) = self.prior(task, k);
+            self.unknowns.push(mean + spread * z);
+        }
+        let mut squares = 0.0;
+        for state in 0..self.spaces.len() {
+            self.take(task, state);
+            self.spaces[state].follow(&self.network, &SOLVE).ok()?;
+            for (k, o) in self.observations.list.iter().enumerate().filter(|(_, o)| o.state == state) {
+                self.predicted[k] = self.spaces[state].value(o.observed)?;
+                let scale = 1.0 + self.error_of(o.row, o.gain);
+                let r = if task.misread == Some(k) { 0.0 } else { (self.predicted[k].abs() * scale - o.value) / o.sigma };
+                self.residuals[k] = r;
+                squares += r * r;
+            }
+        }
+        squares.is_finite().then_some(squares)
+    }
+
+    /// Drift and gain together.
+    fn error_of(&self, row: usize, gain: usize) -> f64 {
+        let n = self.parameters.len();
+        let drifts = n - self.observations.rows;
+        let gains = drifts - self.observations.gains.len();
+        self.unknowns[drifts + row] + self.unknowns[gains + gain]
+    }
+
+    /// Volts or amperes of each observation at the last residuals, signed in phase.
+    pub fn predicted(&self) -> &[f64] {
+        &self.predicted
+    }
+
+    /// Puts the unknowns into the network.
+    fn take(&mut self, task: &Task, state: usize) {
+        let nominal = &self.reduced.network;
+        self.network.source.volts = nominal.source.volts;
+        self.added_share = 0.0;
+        let mut supply = 0.0;
+        for (p, x) in self.parameters.iter().zip(&self.unknowns) {
+            match p.target {
+                Target::Supply => supply = *x,
+                Target::Leg(l) => self.network.source.volts[l] = nominal.source.volts[l] * math::exp(supply + x),
+                Target::Electrode => {
+                    for (span, base) in self.network.spans.iter_mut().zip(&nominal.spans) {
+                        span.electrode = base.electrode.map(|r| r * math::exp(*x));
+                    }
+                }
+                Target::Span(s) => {
+                    let factor = math::exp(*x);
+                    self.network.spans[s].ohms = nominal.spans[s].ohms.map(|o| o.map(|r| r * factor));
+                    self.network.spans[s].reactance = nominal.spans[s].reactance.map(|r| r * factor);
+                }
+                Target::Watts(l) => {
+                    let is_on = self.reduced.loads[l].state.is_none_or(|s| s == state);
+                    self.network.loads[l].watts = if is_on { nominal.loads[l].watts * math::exp(*x) } else { 0.0 };
+                }
+                Target::Exponent(l) => {
+                    self.network.loads[l].law = Law::Power { exponent: x.clamp(EXPONENT_RANGE.0, EXPONENT_RANGE.1) };
+                }
+                Target::Gain(_) | Target::Drift(_) | Target::Added => {}
+            }
+        }
+        for a in &task.added {
+            let ohms = a.ohms.unwrap_or_else(|| math::exp(self.unknowns.last().copied().unwrap_or_default()));
+            if let Some(r) = self.network.spans[a.span].ohms[a.slot].as_mut() {
+                *r += ohms;
+            }
+        }
+    }
+
+    /// Computes the derivatives at the last residuals.
+    pub fn derivatives(&mut self, task: &Task, z: &[f64]) -> Option<()> {
+        self.jacobian.clear();
+        self.jacobian.resize(self.observations.list.len() * self.width, 0.0);
+        debug_assert_eq!(z.len(), self.width);
+        for state in 0..self.spaces.len() {
+            self.take(task, state);
+            for k in 0..self.observations.list.len() {
+                if self.observations.list[k].state == state && task.misread != Some(k) {
+                    self.row(task, state, k)?;
+                }
+            }
+        }
+        Some(())
+    }
+
+    fn row(&mut self, task: &Task, state: usize, k: usize) -> Option<()> {
+        let o = &self.observations.list[k];
+        self.spaces[state].gradient(&self.network, o.observed, &mut self.gradient)?;
+        let scale = 1.0 + self.error_of(o.row, o.gain);
+        let by_prediction = self.predicted[k].signum() * scale / o.sigma;
+        let by_error = self.predicted[k].abs() / o.sigma;
+        let row = &mut self.jacobian[k * self.width..][..self.width];
+        let g = &self.gradient;
+        let by_supply: f64 = (0..3).map(|l| g.source[l] * self.network.source.volts[l]).sum();
+        let base = |span: usize, slot: usize| {
+            let added: f64 = task.added.iter().filter(|a| (a.span, a.slot) == (span, slot)).map(|_| 1.0).sum();
+            (added > 0.0).then_some(())
+        };
+        for (j, p) in self.parameters.iter().enumerate() {
+            let d = match p.target {
+                Target::Supply => by_supply,
+                Target::Leg(l) => g.source[l] * self.network.source.volts[l],
+                Target::Electrode => g.electrode,
+                Target::Span(s) => {
+                    let factor = math::exp(self.unknowns[j]);
+                    (0..g.ohms[s].len())
+                        .map(|slot| match base(s, slot) {
+                            None => g.ohms[s][slot],
+                            Some(()) => {
+                                let own = self.reduced.network.spans[s].ohms[slot].unwrap_or_default() * factor;
+                                let sum = self.network.spans[s].ohms[slot].unwrap_or(1.0);
+                                g.ohms[s][slot] * if sum > 0.0 { own / sum } else { 0.0 }
+                            }
+                        })
+                        .sum()
+                }
+                Target::Watts(l) => g.watts[l],
+                Target::Exponent(l) => {
+                    let x = self.unknowns[j];
+                    if x > EXPONENT_RANGE.0 && x < EXPONENT_RANGE.1 { g.exponent[l] } else { 0.0 }
+                }
+                Target::Gain(gain) => {
+                    if gain == o.gain {
+                        row[j] = by_error * p.spread;
+                    }
+                    continue;
+                }
+                Target::Drift(r) => {
+                    if r == o.row {
+                        row[j] = by_error * p.spread;
+                    }
+                    continue;
+                }
+                Target::Added => 0.0,
+            };
+            let spread = if p.target == Target::Supply { task.supply.map_or(p.spread, |s| s.1) } else { p.spread };
+            row[j] = d * by_prediction * spread;
+        }
+        if let Some(a) = task.added.iter().find(|a| a.ohms.is_none()) {
+            let ohms = math::exp(self.unknowns[self.width - 1]);
+            let sum = self.network.spans[a.span].ohms[a.slot].unwrap_or(1.0);
+            row[self.width - 1] = g.ohms[a.span][a.slot] * ohms / sum * by_prediction * added_prior().1;
+        }
+        Some(())
+    }
+}
+
+/// Tolerances well below any meter's width.
+const SOLVE: SolveSettings = SolveSettings { tolerance: 1e-5, iterations: 40 };
