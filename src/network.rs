@@ -8,11 +8,17 @@
 //! Reference of all voltages is the transformer's centre tap (the star point on a wye). Quantities inside are bare numbers in V,
 //! A, Ω, W.
 
+mod adjoint;
+mod block;
 mod build;
+mod engine;
+mod law;
 mod model;
 mod sensitivity;
+mod several;
 mod solution;
 mod solve;
+mod sweep;
 
 pub use build::{Assumption, Built, NetworkSettings, build};
 pub use model::{Fault, Law, Load, Network, Observed, Phasor, SLOTS, Source, Span, Terminal, slot};

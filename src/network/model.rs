@@ -1,6 +1,7 @@
 //! The network as plain numbers.
 
-use crate::visit::{Conductor, Leg, Quantity};
+use crate::quantity::math;
+use crate::visit::{Between, Conductor, Quantity};
 
 /// Conductors a node can have: L1, L2, L3, N, in this order.
 pub const SLOTS: usize = 4;
@@ -22,6 +23,34 @@ pub struct Phasor {
     pub re: f64,
     /// Imaginary part.
     pub im: f64,
+}
+
+impl Phasor {
+    /// Its length.
+    #[must_use]
+    pub fn magnitude(self) -> f64 {
+        math::hypot(self.re, self.im)
+    }
+
+    /// Its angle in radians.
+    #[must_use]
+    pub fn angle(self) -> f64 {
+        math::atan2(self.im, self.re)
+    }
+}
+
+impl std::ops::Sub for Phasor {
+    type Output = Self;
+    fn sub(self, o: Self) -> Self {
+        Self { re: self.re - o.re, im: self.im - o.im }
+    }
+}
+
+impl std::ops::Add for Phasor {
+    type Output = Self;
+    fn add(self, o: Self) -> Self {
+        Self { re: self.re + o.re, im: self.im + o.im }
+    }
 }
 
 /// A service and what hangs on it. Numbers may be changed freely between two solutions; the shape (who feeds whom, which
@@ -156,13 +185,45 @@ pub enum Fault {
 }
 
 impl Network {
+    /// Everything is in phase: real numbers do. So it is where no leg, load or impedance is reactive.
+    #[must_use]
+    pub fn is_in_phase(&self) -> bool {
+        let source = &self.source;
+        let legs = source.volts[2] == 0.0 && source.direction.iter().all(|d| d.im == 0.0);
+        let spans = self.spans.iter().all(|s| s.ohms[2].is_none() && s.reactance == [0.0; SLOTS]);
+        legs && spans && source.own.im == 0.0 && source.shared.im == 0.0 && self.loads.iter().all(|l| l.power_factor == 1.0)
+    }
+
+    /// A run has a conductor; a grounding conductor every run has.
+    #[must_use]
+    pub fn has(&self, run: usize, conductor: Conductor) -> bool {
+        self.spans.get(run).is_some_and(|s| slot(conductor).is_none_or(|slot| s.ohms[slot].is_some()))
+    }
+
     /// The quantity of the Readings sheet at the far end of a run, with the sign that makes it positive in a sound split phase:
     /// L1-N, L2-N, L1-L2; leg currents away from the source; the neutral current towards it, so positive where leg 1 carries
     /// more. N-G is the neutral against the bonded neutral of its service. `None` for conductors the run lacks, and for the
     /// grounding conductor's current.
     #[must_use]
     pub fn observed(&self, run: usize, quantity: Quantity) -> Option<Observed> {
-        let _ = (run, quantity, Leg::ALL);
-        todo!()
+        let line = Conductor::Line;
+        let voltage = |a: Conductor, b: Conductor| {
+            let at = |c| Terminal::At(run, c);
+            let is_reversed = matches!(a, Conductor::Line(leg) if self.source.direction[leg.index()].re < 0.0);
+            let (plus, minus) = if is_reversed { (b, a) } else { (a, b) };
+            (self.has(run, a) && self.has(run, b)).then_some(Observed::Voltage { plus: at(plus), minus: at(minus) })
+        };
+        let current = |conductor, towards_source| {
+            self.has(run, conductor).then_some(Observed::Current { run, conductor, towards_source })
+        };
+        match quantity {
+            Quantity::Voltage(Between::LineNeutral(leg)) => voltage(line(leg), Conductor::Neutral),
+            Quantity::Voltage(Between::LineLine(a, b)) => voltage(line(a), line(b)),
+            Quantity::NeutralGround => voltage(Conductor::Neutral, Conductor::Ground),
+            Quantity::LineGround(leg) => voltage(line(leg), Conductor::Ground),
+            Quantity::LineCurrent(leg) => current(line(leg), self.source.direction[leg.index()].re < 0.0),
+            Quantity::NeutralCurrent => current(Conductor::Neutral, true),
+            Quantity::GroundCurrent => None,
+        }
     }
 }

@@ -1,6 +1,7 @@
 //! What a solved network says.
 
-use super::model::{Observed, Phasor, SLOTS, Terminal};
+use super::model::{Observed, Phasor, SLOTS, Terminal, slot};
+use crate::visit::Conductor;
 
 /// Voltages and currents of a network.
 #[derive(Clone, Debug, PartialEq)]
@@ -13,24 +14,44 @@ pub struct Solution {
     pub loads: Vec<Phasor>,
     /// Volts across each load, first conductor against second.
     pub load_volts: Vec<Phasor>,
-    /// Amperes from the bonded neutrals through the electrodes into the earth.
-    pub earth: Phasor,
+    /// Amperes from each run's neutral through its electrode into the earth.
+    pub earth: Vec<Phasor>,
+    /// The service run each run descends from.
+    pub service: Vec<usize>,
+    /// Everything is in phase: values have signs.
+    pub is_in_phase: bool,
     /// Newton steps it took.
     pub iterations: usize,
 }
 
 impl Solution {
+    /// Volts of a terminal against the centre tap; `None` where there is no such conductor.
+    #[must_use]
+    pub fn potential(&self, terminal: Terminal) -> Option<Phasor> {
+        match terminal {
+            Terminal::Tap => Some(Phasor::default()),
+            Terminal::At(run, conductor) => match slot(conductor) {
+                Some(slot) => self.volts.get(run)?[slot],
+                None => self.potential(Terminal::At(*self.service.get(run)?, Conductor::Neutral)),
+            },
+        }
+    }
+
     /// Volts between two terminals; `None` where there is no such conductor.
     #[must_use]
     pub fn voltage(&self, plus: Terminal, minus: Terminal) -> Option<Phasor> {
-        let _ = (plus, minus);
-        todo!()
+        Some(self.potential(plus)? - self.potential(minus)?)
     }
 
     /// Value of a quantity, signed in phase, a magnitude elsewhere.
     #[must_use]
     pub fn value(&self, observed: Observed) -> Option<f64> {
-        let _ = observed;
-        todo!()
+        let (phasor, sign) = match observed {
+            Observed::Voltage { plus, minus } => (self.voltage(plus, minus)?, 1.0),
+            Observed::Current { run, conductor, towards_source } => {
+                (self.amperes.get(run)?[slot(conductor)?]?, if towards_source { -1.0 } else { 1.0 })
+            }
+        };
+        Some(if self.is_in_phase { sign * phasor.re } else { phasor.magnitude() })
     }
 }
