@@ -52,6 +52,7 @@ pub(super) fn fit(model: &mut Model, task: &Task, start: &[f64], iterations: usi
             let share = shorten(model, task, &scratch.step);
             let trial: Vec<f64> = z.iter().zip(&scratch.step).map(|(z, d)| z + share * d).collect();
             let new = self::cost(model, task, &trial).unwrap_or(f64::INFINITY);
+            if std::env::var("TRACE").is_ok() { eprintln!("cost {cost:.2} pred {predicted:.2} share {share:.3} damping {damping:.2e} new {new:.2}"); }
             if new < cost + 1e-9 {
                 let is_full = damping == 0.0 && share == 1.0;
                 done = is_full && (cost - new - predicted).abs() < SETTLED;

@@ -112,6 +112,7 @@ impl<'a> Model<'a> {
         }
     }
 
+    pub fn parameter(&self, k: usize) -> Option<&Parameter> { self.parameters.get(k) }
     /// An unknown's position.
     pub fn position(&self, target: Target) -> Option<usize> {
         self.parameters.iter().position(|p| p.target == target)
@@ -132,7 +133,8 @@ impl<'a> Model<'a> {
             for (k, o) in self.observations.list.iter().enumerate().filter(|(_, o)| o.state == state) {
                 self.predicted[k] = self.spaces[state].value(o.observed)?;
                 let scale = 1.0 + self.error_of(o.row, o.gain);
-                let r = if task.misread == Some(k) { 0.0 } else { (self.predicted[k].abs() * scale - o.value) / o.sigma };
+                let size = self.predicted[k] * o.sign.unwrap_or_else(|| self.predicted[k].signum());
+                let r = if task.misread == Some(k) { 0.0 } else { (size * scale - o.value) / o.sigma };
                 self.residuals[k] = r;
                 squares += r * r;
             }
@@ -211,8 +213,9 @@ impl<'a> Model<'a> {
         let o = &self.observations.list[k];
         self.spaces[state].gradient(&self.network, o.observed, &mut self.gradient)?;
         let scale = 1.0 + self.error_of(o.row, o.gain);
-        let by_prediction = self.predicted[k].signum() * scale / o.sigma;
-        let by_error = self.predicted[k].abs() / o.sigma;
+        let sign = o.sign.unwrap_or_else(|| self.predicted[k].signum());
+        let by_prediction = sign * scale / o.sigma;
+        let by_error = sign * self.predicted[k] / o.sigma;
         let row = &mut self.jacobian[k * self.width..][..self.width];
         let g = &self.gradient;
         let by_supply: f64 = (0..3).map(|l| g.source[l] * self.network.source.volts[l]).sum();

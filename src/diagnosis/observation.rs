@@ -5,7 +5,10 @@ use super::settings::{DRIFT, MOST_ROWS, SCATTER};
 use crate::diag::CellRef;
 use crate::network::Observed;
 use crate::quantity::math;
-use crate::visit::{Accuracy, Quantity, ReadingRow, Stage, Visit};
+use crate::visit::{Accuracy, Leg, Quantity, ReadingRow, Stage, Visit};
+
+/// Volts or amperes from which a difference of two readings shows a sign.
+const SHOWS: f64 = 1.0;
 
 /// One reading as the fit sees it.
 #[derive(Clone, Debug)]
@@ -16,10 +19,14 @@ pub(super) struct Observation {
     pub quantity: Quantity,
     /// Where: the run of the visit.
     pub run: usize,
+    /// That is a service run.
+    pub is_service: bool,
     /// What it is in the network.
     pub observed: Observed,
     /// Volts or amperes read.
     pub value: f64,
+    /// Its sign in phase where the other readings of its row show it; a magnitude alone otherwise.
+    pub sign: Option<f64>,
     /// Standard deviation of its own error: counts and scatter.
     pub sigma: f64,
     /// Its row among the rows used.
@@ -75,8 +82,10 @@ pub(super) fn observe(visit: &Visit, rows: &[&ReadingRow], reduced: &Reduced) ->
                 cell: reading.cell.clone(),
                 quantity: reading.quantity,
                 run,
+                is_service: visit.tree.parent[run].is_none(),
                 observed,
                 value: value.abs(),
+                sign: None,
                 sigma: own_error(accuracy, reading.quantity, value),
                 row: k,
                 state,
@@ -85,10 +94,41 @@ pub(super) fn observe(visit: &Visit, rows: &[&ReadingRow], reduced: &Reduced) ->
         }
     }
     all.rows = rows.len();
+    if reduced.network.is_in_phase() {
+        all.find_signs();
+    }
     all
 }
 
 impl Observations {
+    /// A neutral's current is that of leg 1 less that of leg 2; its voltage to ground is half of what leg 2 reads over leg 1,
+    /// over what it does at the service. Where these are read, and well apart, they give the sign that the meter does not.
+    fn find_signs(&mut self) {
+        let at_service = (0..self.list.len()).find_map(|k| self.difference(k).filter(|_| self.list[k].is_service));
+        for k in 0..self.list.len() {
+            let o = &self.list[k];
+            let shown = match o.quantity {
+                Quantity::NeutralCurrent => self.pair(k, Quantity::LineCurrent).map(|(a, b)| a - b),
+                Quantity::NeutralGround => self.difference(k).zip(at_service).map(|(here, there)| (here - there) / 2.0),
+                _ => None,
+            };
+            let agrees = |d: &f64| d.abs() > SHOWS && (d.abs() - o.value).abs() < 0.4 * o.value && o.value > 5.0 * o.sigma;
+            self.list[k].sign = shown.filter(agrees).map(f64::signum);
+        }
+    }
+
+    /// Readings of both legs in the row of an observation.
+    fn pair(&self, k: usize, quantity: fn(Leg) -> Quantity) -> Option<(f64, f64)> {
+        let row = self.list[k].row;
+        let read = |leg| self.list.iter().find(|o| o.row == row && o.quantity == quantity(leg)).map(|o| o.value);
+        read(Leg::L1).zip(read(Leg::L2))
+    }
+
+    /// Volts that leg 2 reads over leg 1.
+    fn difference(&self, k: usize) -> Option<f64> {
+        self.pair(k, Quantity::line_neutral).map(|(a, b)| b - a)
+    }
+
     /// The gain a reading shares with the others of its instrument; the last one for readings of an instrument not listed.
     fn gain(&mut self, visit: &Visit, row: &ReadingRow, quantity: Quantity, accuracy: Accuracy, known: &mut Vec<Option<usize>>) -> usize {
         let instrument = visit.instrument_of(row, quantity);

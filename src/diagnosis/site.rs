@@ -1,0 +1,67 @@
+//! Everything a fit of one stage needs: reduced network, observations, unknowns.
+
+use super::observation::{Observations, observe, usable_rows};
+use super::parameter::{Parameter, parameters};
+use super::reduce::{Reduced, reduce};
+use super::settings::{self, DiagnosisSettings, Trust};
+use crate::network::{Law, SLOTS};
+use crate::visit::{Conductor, Stage, Visit};
+
+/// A site at one stage and one level of trust.
+#[derive(Clone, Debug)]
+pub(super) struct Site {
+    /// The reduced network.
+    pub reduced: Reduced,
+    /// The readings.
+    pub observations: Observations,
+    /// The unknowns.
+    pub parameters: Vec<Parameter>,
+    /// How many runs have a neutral.
+    pub neutrals: usize,
+    /// How many line conductors there are.
+    pub hots: usize,
+}
+
+impl Site {
+    /// The site, or `None` where fewer than two readings can be used or the list makes no network.
+    pub fn new(visit: &Visit, stage: Stage, settings: &DiagnosisSettings, trust: &Trust) -> Option<Self> {
+        let rows = usable_rows(visit, stage);
+        let mut measured = vec![false; visit.runs.len()];
+        for run in rows.iter().filter_map(|r| r.run) {
+            measured[run] = true;
+        }
+        let mut reduced = reduce(visit, &measured, settings)?;
+        let observations = observe(visit, &rows, &reduced);
+        if observations.list.len() < 2 {
+            return None;
+        }
+        add_switched(&mut reduced, &observations);
+        if let Some(extra) = trust.extra {
+            add_extra(&mut reduced, extra);
+        }
+        let parameters = parameters(&reduced, &observations, trust);
+        let fed = || visit.tree.order.iter().filter_map(|r| visit.runs.get(*r));
+        let neutrals = fed().filter(|r| r.has_neutral()).count();
+        let hots = fed().filter_map(|r| r.legs.as_ref()).map(|l| l.value.count()).sum();
+        Some(Self { reduced, observations, parameters, neutrals, hots })
+    }
+}
+
+/// In every state but the first something is switched: a load on either leg at the panel, or at the location the state names.
+fn add_switched(reduced: &mut Reduced, observations: &Observations) {
+    let Some(panel) = reduced.network.spans.iter().position(|s| s.fed_from.is_none()) else { return };
+    for state in 1..observations.states.len() {
+        for leg in 0..SLOTS - 1 {
+            reduced.add_unlisted(panel, leg, Law::Power { exponent: 1.0 }, settings::SWITCHED, Some(state));
+        }
+    }
+}
+
+/// Loads nobody wrote down, on every leg of every place with a neutral.
+fn add_extra(reduced: &mut Reduced, extra: (f64, f64)) {
+    for span in reduced.with(Conductor::Neutral) {
+        for leg in 0..SLOTS - 1 {
+            reduced.add_unlisted(span, leg, Law::Power { exponent: 1.0 }, extra, None);
+        }
+    }
+}
