@@ -19,6 +19,10 @@ const LONGEST_STEP: f64 = 1.5;
 /// Agreement between predicted and actual decrease of the cost at which the fit is done: a twentieth of an e-fold of evidence.
 const SETTLED: f64 = 0.1;
 const MOST_DAMPING: f64 = 1e6;
+/// Mean square residual above which the descent begins damped.
+const STIFF: f64 = 100.0;
+/// Signs changed in one fit, at most.
+const MOST_FLIPS: usize = 4;
 
 /// Where a fit ended.
 #[derive(Clone, Debug)]
@@ -32,10 +36,33 @@ pub(super) struct Fit {
 }
 
 /// Fits a task from a start, in so many iterations at most. `None` where the network is not solved at the start.
+///
+/// A neutral's current and its volts to ground are read without a sign. Each is taken with the sign it has at the start; where
+/// the fit ends far from one, the other sign is tried and kept if it fits better.
 pub(super) fn fit(model: &mut Model, task: &Task, start: &[f64], iterations: usize) -> Option<Fit> {
+    model.residuals(task, start)?;
+    model.take_signs();
+    let mut best = descend(model, task, start, iterations)?;
+    for _ in 0..MOST_FLIPS {
+        model.residuals(task, &best.z)?;
+        let Some(doubtful) = model.doubtful() else { break };
+        model.flip(doubtful);
+        match descend(model, task, &best.z, iterations) {
+            Some(other) if other.cost < best.cost - SETTLED => best = other,
+            _ => {
+                model.flip(doubtful);
+                break;
+            }
+        }
+    }
+    Some(best)
+}
+
+fn descend(model: &mut Model, task: &Task, start: &[f64], iterations: usize) -> Option<Fit> {
     let mut z = start.to_vec();
     let mut cost = cost(model, task, &z)?;
-    let mut damping = 0.0;
+    let stiff = cost / (STIFF * model.residuals.len() as f64);
+    let mut damping = if stiff > 1.0 { stiff.sqrt() } else { 0.0 };
     let mut determinant = f64::NAN;
     let mut scratch = Scratch::default();
     for _ in 0..iterations {
@@ -49,15 +76,20 @@ pub(super) fn fit(model: &mut Model, task: &Task, start: &[f64], iterations: usi
                 scratch.normal.factor(&scratch.products, a)?;
             }
             let predicted = scratch.step(model, a);
-            let share = shorten(model, task, &scratch.step);
-            let trial: Vec<f64> = z.iter().zip(&scratch.step).map(|(z, d)| z + share * d).collect();
+            let is_whole = shorten(model, task, &mut scratch.step);
+            let trial: Vec<f64> = z.iter().zip(&scratch.step).map(|(z, d)| z + d).collect();
             let new = self::cost(model, task, &trial).unwrap_or(f64::INFINITY);
-            if std::env::var("TRACE").is_ok() { eprintln!("cost {cost:.2} pred {predicted:.2} share {share:.3} damping {damping:.2e} new {new:.2}"); }
+            if std::env::var("TRACE").is_ok() { eprintln!("cost {cost:.2} pred {predicted:.2} whole {is_whole} damping {damping:.2e} new {new:.2}"); }
             if new < cost + 1e-9 {
-                let is_full = damping == 0.0 && share == 1.0;
+                let is_full = damping == 0.0 && is_whole;
                 done = is_full && (cost - new - predicted).abs() < SETTLED;
                 (z, cost) = (trial, new);
                 damping = if damping > 0.01 { damping / 8.0 } else { 0.0 };
+                break;
+            }
+            if predicted < SETTLED && damping == 0.0 {
+                done = true;
+                cost_again(model, task, &z);
                 break;
             }
             damping = if damping == 0.0 { 0.3 } else { damping * 8.0 };
@@ -112,10 +144,17 @@ fn cost_again(model: &mut Model, task: &Task, z: &[f64]) {
     let _ = model.residuals(task, z);
 }
 
-/// Share of a step that keeps every unknown's change in bounds.
-fn shorten(model: &Model, task: &Task, step: &[f64]) -> f64 {
-    let longest = step.iter().enumerate().map(|(k, d)| (d * model.prior(task, k).1).abs()).fold(0.0, f64::max);
-    if longest > LONGEST_STEP { LONGEST_STEP / longest } else { 1.0 }
+/// Keeps every unknown's change in bounds; whether it was so already.
+fn shorten(model: &Model, task: &Task, step: &mut [f64]) -> bool {
+    let mut is_whole = true;
+    for (k, d) in step.iter_mut().enumerate() {
+        let most = LONGEST_STEP / model.prior(task, k).1;
+        if d.abs() > most {
+            *d = d.clamp(-most, most);
+            is_whole = false;
+        }
+    }
+    is_whole
 }
 
 #[derive(Default)]

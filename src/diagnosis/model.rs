@@ -63,6 +63,8 @@ pub(super) struct Model<'a> {
     gradient: Gradient,
     unknowns: Vec<f64>,
     predicted: Vec<f64>,
+    /// Sign each reading is taken with, where its own is not known.
+    signs: Vec<f64>,
     /// (predicted − read)/σ, one a reading; 0 for one left out.
     pub residuals: Vec<f64>,
     /// Their derivatives by z, a row a reading.
@@ -86,6 +88,7 @@ impl<'a> Model<'a> {
             gradient: Gradient::of(&reduced.network),
             unknowns: Vec::new(),
             predicted: vec![0.0; m],
+            signs: vec![1.0; m],
             residuals: vec![0.0; m],
             jacobian: Vec::new(),
             width: 0,
@@ -133,7 +136,7 @@ impl<'a> Model<'a> {
             for (k, o) in self.observations.list.iter().enumerate().filter(|(_, o)| o.state == state) {
                 self.predicted[k] = self.spaces[state].value(o.observed)?;
                 let scale = 1.0 + self.error_of(o.row, o.gain);
-                let size = self.predicted[k] * o.sign.unwrap_or_else(|| self.predicted[k].signum());
+                let size = self.predicted[k] * self.signs[k];
                 let r = if task.misread == Some(k) { 0.0 } else { (size * scale - o.value) / o.sigma };
                 self.residuals[k] = r;
                 squares += r * r;
@@ -148,6 +151,27 @@ impl<'a> Model<'a> {
         let drifts = n - self.observations.rows;
         let gains = drifts - self.observations.gains.len();
         self.unknowns[drifts + row] + self.unknowns[gains + gain]
+    }
+
+    /// Takes each reading with its own sign, where it is not known with that of the last prediction.
+    pub fn take_signs(&mut self) {
+        for (k, o) in self.observations.list.iter().enumerate() {
+            self.signs[k] = o.sign.unwrap_or_else(|| self.predicted[k].signum());
+        }
+    }
+
+    /// A reading without a sign of its own that the last prediction is far from, and might be nearer with the other one.
+    pub fn doubtful(&self) -> Option<usize> {
+        let far = |k: &usize| {
+            let o = &self.observations.list[*k];
+            o.sign.is_none() && self.residuals[*k] < -DOUBT
+        };
+        (0..self.residuals.len()).filter(far).min_by(|&a, &b| self.residuals[a].total_cmp(&self.residuals[b]))
+    }
+
+    /// Takes a reading with the other sign.
+    pub fn flip(&mut self, k: usize) {
+        self.signs[k] = -self.signs[k];
     }
 
     /// Volts or amperes of each observation at the last residuals, signed in phase.
@@ -213,7 +237,7 @@ impl<'a> Model<'a> {
         let o = &self.observations.list[k];
         self.spaces[state].gradient(&self.network, o.observed, &mut self.gradient)?;
         let scale = 1.0 + self.error_of(o.row, o.gain);
-        let sign = o.sign.unwrap_or_else(|| self.predicted[k].signum());
+        let sign = self.signs[k];
         let by_prediction = sign * scale / o.sigma;
         let by_error = sign * self.predicted[k] / o.sigma;
         let row = &mut self.jacobian[k * self.width..][..self.width];
@@ -271,6 +295,9 @@ impl<'a> Model<'a> {
         Some(())
     }
 }
+
+/// Standard deviations by which a reading falls short before its other sign is tried.
+const DOUBT: f64 = 3.0;
 
 /// Tolerances well below any meter's width.
 const SOLVE: SolveSettings = SolveSettings { tolerance: 1e-5, iterations: 40 };

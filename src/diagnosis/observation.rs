@@ -112,7 +112,8 @@ impl Observations {
                 Quantity::NeutralGround => self.difference(k).zip(at_service).map(|(here, there)| (here - there) / 2.0),
                 _ => None,
             };
-            let agrees = |d: &f64| d.abs() > SHOWS && (d.abs() - o.value).abs() < 0.4 * o.value && o.value > 5.0 * o.sigma;
+            let least = if o.quantity.is_voltage() { SHOWS } else { 5.0 * o.sigma };
+            let agrees = |d: &f64| d.abs() > least && (d.abs() - o.value).abs() < 0.4 * o.value && o.value > 5.0 * o.sigma;
             self.list[k].sign = shown.filter(agrees).map(f64::signum);
         }
     }

@@ -270,6 +270,11 @@ impl Reduced {
         (0..self.network.spans.len()).filter(|&k| self.network.spans[k].ohms[s].is_some()).collect()
     }
 
+    /// Two legs or more share the neutral of a span.
+    pub(super) fn is_shared(&self, span: usize) -> bool {
+        self.network.spans[span].ohms[..SLOTS - 1].iter().filter(|o| o.is_some()).count() > 1
+    }
+
     fn name_classes(&mut self, measured: &[bool]) {
         let n = self.network.spans.len();
         let (mut fed, mut only) = (vec![0usize; n], vec![0usize; n]);

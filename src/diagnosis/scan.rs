@@ -55,7 +55,8 @@ impl Scan<'_> {
     pub fn run(&self, model: &mut Model, from: &Fit) -> Curve {
         let mut curve = Curve::default();
         let last = self.upwards(model, from, &mut curve);
-        self.downwards(model, &[&last, &from.z], &mut curve);
+        let prior = vec![0.0; from.z.len()];
+        self.downwards(model, &[&last, &from.z, &prior], &mut curve);
         curve
     }
 

@@ -73,10 +73,14 @@ pub(super) const OPEN_NEUTRAL: f64 = 0.35;
 /// Likewise of a hot leg.
 pub(super) const OPEN_HOT: f64 = 0.04;
 
+/// How much more often resistance grows in the hot leg of a two-wire circuit than in its neutral: breaker, switch and device
+/// contacts all lie in the leg, the neutral has splices and a bar.
+pub(super) const TWO_WIRE: f64 = 5.0;
+
 /// Probability of each kind of cause before any reading. A diagnosis is asked for where something was noticed; what is noticed
 /// with lights that brighten and dim is a neutral more often than all else together, and one visit in three finds nothing.
 pub(super) const PRIOR_SOUND: f64 = 0.30;
-/// Of a neutral, over all runs with one.
+/// Of a neutral that legs share, over all runs with one.
 pub(super) const PRIOR_NEUTRAL: f64 = 0.42;
 /// Of a hot leg, over all of them.
 pub(super) const PRIOR_HOT: f64 = 0.12;

@@ -16,7 +16,7 @@ pub(super) struct Site {
     pub observations: Observations,
     /// The unknowns.
     pub parameters: Vec<Parameter>,
-    /// How many runs have a neutral.
+    /// How many runs have a neutral that legs share.
     pub neutrals: usize,
     /// How many line conductors there are.
     pub hots: usize,
@@ -41,7 +41,7 @@ impl Site {
         }
         let parameters = parameters(&reduced, &observations, trust);
         let fed = || visit.tree.order.iter().filter_map(|r| visit.runs.get(*r));
-        let neutrals = fed().filter(|r| r.has_neutral()).count();
+        let neutrals = fed().filter(|r| r.shares_neutral()).count();
         let hots = fed().filter_map(|r| r.legs.as_ref()).map(|l| l.value.count()).sum();
         Some(Self { reduced, observations, parameters, neutrals, hots })
     }
