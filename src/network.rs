@@ -12,7 +12,9 @@ mod adjoint;
 mod block;
 mod build;
 mod engine;
+mod exposure;
 mod law;
+mod load_steps;
 mod model;
 mod sensitivity;
 mod several;
@@ -21,6 +23,8 @@ mod solve;
 mod sweep;
 
 pub use build::{Assumption, Built, NetworkSettings, build};
+pub use exposure::exposure;
+pub use load_steps::load_steps;
 pub use model::{Fault, Law, Load, Network, Observed, Phasor, SLOTS, Source, Span, Terminal, slot};
 pub use sensitivity::Gradient;
 pub use solution::Solution;

@@ -213,9 +213,7 @@ impl Network {
             let (plus, minus) = if is_reversed { (b, a) } else { (a, b) };
             (self.has(run, a) && self.has(run, b)).then_some(Observed::Voltage { plus: at(plus), minus: at(minus) })
         };
-        let current = |conductor, towards_source| {
-            self.has(run, conductor).then_some(Observed::Current { run, conductor, towards_source })
-        };
+        let current = |conductor, towards_source| self.has(run, conductor).then_some(Observed::Current { run, conductor, towards_source });
         match quantity {
             Quantity::Voltage(Between::LineNeutral(leg)) => voltage(line(leg), Conductor::Neutral),
             Quantity::Voltage(Between::LineLine(a, b)) => voltage(line(a), line(b)),

@@ -66,8 +66,14 @@ fn loops(network: &Network) -> Vec<[f64; 4]> {
     ohms
 }
 
-/// All solutions found, the first one included, by rising volts of the first load.
-pub(super) fn others(workspace: &mut Workspace, network: &Network, settings: &SolveSettings, first: Solution) -> Vec<Solution> {
+/// All solutions found, the first one included, by rising volts of the first load; each further one is shown to `note`.
+pub(super) fn others(
+    workspace: &mut Workspace,
+    network: &Network,
+    settings: &SolveSettings,
+    first: Solution,
+    mut note: impl FnMut(&Workspace),
+) -> Vec<Solution> {
     let mut found = vec![first];
     for start in STARTS {
         workspace.start_from(network, start);
@@ -76,6 +82,7 @@ pub(super) fn others(workspace: &mut Workspace, network: &Network, settings: &So
         }
         let next = workspace.solution(network);
         if !found.iter().any(|s| is_same(s, &next)) {
+            note(workspace);
             found.push(next);
         }
     }

@@ -55,7 +55,7 @@ pub fn solve(network: &Network, settings: &SolveSettings) -> Result<Solution, So
     if several::is_stiff(network) {
         return Ok(first);
     }
-    let mut all = several::others(&mut workspace, network, settings, first);
+    let mut all = several::others(&mut workspace, network, settings, first, |_| ());
     match all.len() {
         1 => Ok(all.remove(0)),
         _ => Err(SolveOutcome::Several(all)),
@@ -110,6 +110,16 @@ impl Workspace {
                 attached.v = attached.v.map(|v| v * factors[leg]);
             }
         });
+    }
+
+    /// Drives so many volts into a conductor of a run, away from the source. In phase only.
+    pub(super) fn insert(&mut self, run: usize, slot: usize, volts: f64) {
+        either!(&mut self.form, e => e.insert(run, slot, volts));
+    }
+
+    /// Takes the inserted volts out.
+    pub(super) fn remove(&mut self) {
+        either!(&mut self.form, e => e.inserted = None);
     }
 
     /// Solves, starting from the last solution. Follows one solution and does not look for others.
@@ -200,6 +210,12 @@ fn phasor<const PARTS: usize>(v: &[f64]) -> Phasor {
 }
 
 impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
+    fn insert(&mut self, run: usize, slot: usize, volts: f64) {
+        let mut inserted = [0.0; N];
+        inserted[row::<PARTS>(slot)] = volts;
+        self.inserted = self.place.get(run).map(|node| (*node, inserted));
+    }
+
     /// Node and first row of a terminal; the centre tap has none.
     fn find(&self, terminal: Terminal) -> Option<Option<(usize, usize)>> {
         let Terminal::At(run, conductor) = terminal else { return Some(None) };
