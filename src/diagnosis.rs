@@ -15,8 +15,7 @@ pub use settings::DiagnosisSettings;
 
 use crate::results::Diagnosis;
 use crate::visit::{Stage, Visit};
-use evidence::{Level, rank};
-use model::Model;
+use evidence::rank;
 use site::Site;
 
 /// Diagnoses a visit.
@@ -29,11 +28,7 @@ pub fn diagnose(visit: &Visit, settings: &DiagnosisSettings) -> Option<Diagnosis
             sites.push((trust.prior, Site::new(visit, Stage::AsFound, settings, trust)?));
         }
     }
-    let mut levels = Vec::new();
-    for (prior, site) in &sites {
-        let model = Model::new(&site.reduced, &site.observations, &site.parameters)?;
-        levels.push(Level { site, prior: *prior, all: hypotheses::evaluate(site, model)? });
-    }
+    let levels = hypotheses::evaluate(&sites)?;
     if std::env::var("DEBUG").is_ok() {
         for level in &levels {
             for e in &level.all {

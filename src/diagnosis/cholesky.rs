@@ -37,13 +37,19 @@ impl Cholesky {
         Some(log)
     }
 
-    /// Solves A·x = b in place.
-    pub fn solve(&self, x: &mut [f64]) {
+    /// Solves L·x = b in place: |x|² is then bᵀ·A⁻¹·b.
+    pub fn solve_lower(&self, x: &mut [f64]) {
         let m = self.m;
         for i in 0..m {
             let row = &self.l[i * m..][..=i];
             x[i] = (x[i] - dot(&row[..i], &x[..i])) / row[i];
         }
+    }
+
+    /// Solves A·x = b in place.
+    pub fn solve(&self, x: &mut [f64]) {
+        let m = self.m;
+        self.solve_lower(x);
         for i in (0..m).rev() {
             let row = &self.l[i * m..][..=i];
             x[i] /= row[i];

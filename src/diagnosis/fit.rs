@@ -1,9 +1,10 @@
 //! The most probable unknowns of a hypothesis, and its evidence.
 //!
-//! With r the residuals, J their derivatives and z the whitened unknowns, minimise |r|² + |z|² (twice the negative logarithm of
-//! likelihood times prior). Damped Gauss–Newton: the step d solves (JᵀJ + a·1)·d = −(Jᵀr + z) with a = 1 plus the damping. There
-//! are more unknowns than readings, so it is solved in the space of the readings,
-//! d = −(g − Jᵀ·(J·Jᵀ + a·1)⁻¹·J·g)/a. The evidence is Laplace's: ln E = −½·(|r|² + |z|²) − ½·ln det(1 + J·Jᵀ) − Σ ln σ.
+//! With r the residuals, J their derivatives and z the whitened unknowns, minimise |r|²/T + |z|² (twice the negative logarithm of
+//! likelihood times prior, at the temperature T = 1). Damped Gauss–Newton: with a = 1 plus the damping, the step d solves
+//! (JᵀJ/T + a·1)·d = −g, g = Jᵀr/T + z. There are more unknowns than readings, so it is solved in the space of the readings,
+//! d = −(g − Jᵀ·(J·Jᵀ + aT·1)⁻¹·J·g)/a. A descent from afar begins hot, where the prior holds the unknowns together, and cools
+//! with every step. The evidence is Laplace's: ln E = −½·(|r|² + |z|²) − ½·ln det(1 + J·Jᵀ) − Σ ln σ√2π.
 //!
 //! Preconditions: none; a network that can't be solved at a trial step counts as a bad step. Iterations are capped; the fit that
 //! stands then is returned, for the continuation along added ohms mends it. Reference: MacKay, *Information Theory, Inference,
@@ -12,6 +13,7 @@
 use super::cholesky::Cholesky;
 use super::model::{Model, Task};
 use super::settings::MISREAD;
+use crate::network::SLOTS;
 use crate::quantity::math;
 
 /// Largest change of an unknown in one step, in its own unit (logarithms, exponents).
@@ -19,8 +21,10 @@ const LONGEST_STEP: f64 = 1.5;
 /// Agreement between predicted and actual decrease of the cost at which the fit is done: a twentieth of an e-fold of evidence.
 const SETTLED: f64 = 0.1;
 const MOST_DAMPING: f64 = 1e6;
-/// Mean square residual above which the descent begins damped.
-const STIFF: f64 = 100.0;
+/// Mean square residual at which a descent begins above the temperature 1.
+const STIFF: f64 = 20.0;
+/// Fall of the temperature with every step.
+const COOLING: f64 = 8.0;
 /// Signs changed in one fit, at most.
 const MOST_FLIPS: usize = 4;
 
@@ -58,44 +62,55 @@ pub(super) fn fit(model: &mut Model, task: &Task, start: &[f64], iterations: usi
     Some(best)
 }
 
+/// Fits at a fixed temperature, without evidence: what a network that does not explain the readings comes closest to.
+pub(super) fn fit_hot(model: &mut Model, task: &Task, start: &[f64], iterations: usize, temperature: f64) -> Option<Fit> {
+    model.residuals(task, start)?;
+    model.take_signs();
+    descend_from(model, task, start, iterations, (temperature, temperature))
+}
+
 fn descend(model: &mut Model, task: &Task, start: &[f64], iterations: usize) -> Option<Fit> {
+    descend_from(model, task, start, iterations, (f64::INFINITY, 1.0))
+}
+
+/// Descends from a temperature (at most what the start's misfit asks for) to another.
+fn descend_from(model: &mut Model, task: &Task, start: &[f64], iterations: usize, (hot, cold): (f64, f64)) -> Option<Fit> {
     let mut z = start.to_vec();
-    let mut cost = cost(model, task, &z)?;
-    let stiff = cost / (STIFF * model.residuals.len() as f64);
-    let mut damping = if stiff > 1.0 { stiff.sqrt() } else { 0.0 };
+    let mut squares = model.residuals(task, &z)?;
+    let mut temperature = (squares / (STIFF * model.residuals.len() as f64)).clamp(cold, hot.max(cold));
+    let mut damping = 0.0;
     let mut determinant = f64::NAN;
     let mut scratch = Scratch::default();
     for _ in 0..iterations {
         model.derivatives(task, &z)?;
-        scratch.prepare(model, &z);
-        determinant = scratch.normal.factor(&scratch.products, 1.0)?;
+        scratch.prepare(model, &z, temperature);
+        determinant = scratch.normal.factor(&scratch.products, temperature)? - model.residuals.len() as f64 * math::ln(temperature);
+        let cost = squares / temperature + norm(&z);
         let mut done = false;
         loop {
             let a = 1.0 + damping;
             if damping > 0.0 {
-                scratch.normal.factor(&scratch.products, a)?;
+                scratch.normal.factor(&scratch.products, a * temperature)?;
             }
             let predicted = scratch.step(model, a);
             let is_whole = shorten(model, task, &mut scratch.step);
             let trial: Vec<f64> = z.iter().zip(&scratch.step).map(|(z, d)| z + d).collect();
-            let new = self::cost(model, task, &trial).unwrap_or(f64::INFINITY);
-            if std::env::var("TRACE").is_ok() { eprintln!("cost {cost:.2} pred {predicted:.2} whole {is_whole} damping {damping:.2e} new {new:.2}"); }
-            if new < cost + 1e-9 {
-                let is_full = damping == 0.0 && is_whole;
-                done = is_full && (cost - new - predicted).abs() < SETTLED;
-                (z, cost) = (trial, new);
+            let new = model.residuals(task, &trial).unwrap_or(f64::INFINITY);
+            let new_cost = new / temperature + norm(&trial);
+            if std::env::var("TRACE").is_ok() { eprintln!("T {temperature:.1} cost {cost:.2} pred {predicted:.2} whole {is_whole} damping {damping:.2e} new {new_cost:.2}"); }
+            if new_cost < cost + 1e-9 {
+                done = damping == 0.0 && is_whole && temperature == cold && (cost - new_cost - predicted).abs() < SETTLED;
+                (z, squares) = (trial, new);
                 damping = if damping > 0.01 { damping / 8.0 } else { 0.0 };
-                break;
-            }
-            if predicted < SETTLED && damping == 0.0 {
-                done = true;
-                cost_again(model, task, &z);
+                temperature = (temperature / COOLING).max(cold);
                 break;
             }
             damping = if damping == 0.0 { 0.3 } else { damping * 8.0 };
-            if damping > MOST_DAMPING {
-                cost_again(model, task, &z);
-                done = true;
+            if predicted < SETTLED || damping > MOST_DAMPING {
+                squares = model.residuals(task, &z)?;
+                done = temperature == cold;
+                temperature = (temperature / COOLING).max(cold);
+                damping = 0.0;
                 break;
             }
         }
@@ -103,20 +118,68 @@ fn descend(model: &mut Model, task: &Task, start: &[f64], iterations: usize) -> 
             break;
         }
     }
+    let cost = squares + norm(&z);
     let own: f64 = model.observations.list.iter().map(|o| math::ln(o.sigma) + HALF_LN_2_PI).sum();
     let misread = task.misread.map_or(0.0, |k| math::ln(model.observations.list[k].sigma) + HALF_LN_2_PI - math::ln(2.0 * MISREAD));
     Some(Fit { z, cost, evidence: -0.5 * (cost + determinant) - own + misread })
 }
 
-/// ln evidence of a fitted task without each reading in turn, to first order about the fit: with S = 1 + J·Jᵀ and e the residuals
-/// at the prior, reading k given the others is normal with precision S⁻¹ₖₖ and off by (S⁻¹e)ₖ/S⁻¹ₖₖ.
-pub(super) fn without(model: &mut Model, task: &Task, fit: &Fit) -> Option<Vec<f64>> {
+fn norm(z: &[f64]) -> f64 {
+    z.iter().map(|z| z * z).sum()
+}
+
+/// What a first-order test says of resistance added in a conductor.
+#[derive(Clone, Copy, Debug, Default)]
+pub(super) struct Score {
+    /// Slope of ln evidence per ohm.
+    pub slope: f64,
+    /// Its variance: ln evidence bends by so much per ohm squared.
+    pub bend: f64,
+}
+
+impl Score {
+    /// Most that added ohms could gain, of either sign: which leg carries more may be fitted wrong.
+    pub fn gain(self) -> f64 {
+        if self.bend > 0.0 { 0.5 * self.slope * self.slope / self.bend } else { 0.0 }
+    }
+}
+
+/// Tests resistance added in each conductor about a fit at a temperature. Span by span, slot by slot.
+pub(super) fn scores(model: &mut Model, task: &Task, fit: &Fit, temperature: f64) -> Option<Vec<[Score; SLOTS]>> {
+    model.residuals(task, &fit.z)?;
+    model.derivatives(task, &fit.z)?;
+    let by_ohms = model.by_ohms()?;
+    let (m, n) = (model.residuals.len(), model.width);
+    let mut scratch = Scratch::default();
+    scratch.prepare(model, &fit.z, temperature);
+    scratch.normal.factor(&scratch.products, temperature)?;
+    let mut e: Vec<f64> = (0..m).map(|k| model.residuals[k] - dot(&model.jacobian[k * n..][..n], &fit.z)).collect();
+    scratch.normal.solve(&mut e);
+    let spans = by_ohms.first().map_or(0, Vec::len);
+    let mut all = vec![[Score::default(); SLOTS]; spans];
+    let mut d = vec![0.0; m];
+    for (span, scores) in all.iter_mut().enumerate() {
+        for (slot, score) in scores.iter_mut().enumerate() {
+            (0..m).for_each(|k| d[k] = by_ohms[k][span][slot]);
+            let slope = -dot(&d, &e);
+            if slope != 0.0 {
+                scratch.normal.solve_lower(&mut d);
+                *score = Score { slope, bend: dot(&d, &d) };
+            }
+        }
+    }
+    Some(all)
+}
+
+/// Gain of ln evidence by taking each reading in turn for misread, to first order about a fit at a temperature: with S = T + J·Jᵀ
+/// and e the residuals at the prior, reading k given the others is normal with precision S⁻¹ₖₖ and off by (S⁻¹e)ₖ/S⁻¹ₖₖ.
+pub(super) fn without(model: &mut Model, task: &Task, fit: &Fit, temperature: f64) -> Option<Vec<f64>> {
     model.residuals(task, &fit.z)?;
     model.derivatives(task, &fit.z)?;
     let (m, n) = (model.residuals.len(), model.width);
     let mut scratch = Scratch::default();
-    scratch.prepare(model, &fit.z);
-    scratch.normal.factor(&scratch.products, 1.0)?;
+    scratch.prepare(model, &fit.z, temperature);
+    scratch.normal.factor(&scratch.products, temperature)?;
     let mut weights: Vec<f64> =
         (0..m).map(|k| model.residuals[k] - dot(&model.jacobian[k * n..][..n], &fit.z)).collect();
     scratch.normal.solve(&mut weights);
@@ -127,22 +190,12 @@ pub(super) fn without(model: &mut Model, task: &Task, fit: &Fit) -> Option<Vec<f
         scratch.normal.solve(&mut unit);
         let (precision, sigma) = (unit[k], model.observations.list[k].sigma);
         let given_others = -0.5 * weights[k] * weights[k] / precision + 0.5 * math::ln(precision) - HALF_LN_2_PI - math::ln(sigma);
-        all.push(fit.evidence - given_others - math::ln(2.0 * MISREAD));
+        all.push(-given_others - math::ln(2.0 * MISREAD));
     }
     Some(all)
 }
 
 const HALF_LN_2_PI: f64 = 0.918_938_533_204_672_7;
-
-fn cost(model: &mut Model, task: &Task, z: &[f64]) -> Option<f64> {
-    let squares = model.residuals(task, z)?;
-    Some(squares + z.iter().map(|z| z * z).sum::<f64>())
-}
-
-/// Brings the model back to an accepted point.
-fn cost_again(model: &mut Model, task: &Task, z: &[f64]) {
-    let _ = model.residuals(task, z);
-}
 
 /// Keeps every unknown's change in bounds; whether it was so already.
 fn shorten(model: &Model, task: &Task, step: &mut [f64]) -> bool {
@@ -167,8 +220,8 @@ struct Scratch {
 }
 
 impl Scratch {
-    /// J·Jᵀ, g = Jᵀr + z and J·g at the present derivatives.
-    fn prepare(&mut self, model: &Model, z: &[f64]) {
+    /// J·Jᵀ, g = Jᵀr/T + z and J·g at the present derivatives.
+    fn prepare(&mut self, model: &Model, z: &[f64], temperature: f64) {
         let (m, n) = (model.residuals.len(), model.width);
         let row = |k: usize| &model.jacobian[k * n..][..n];
         self.products.clear();
@@ -181,13 +234,13 @@ impl Scratch {
         self.gradient.clear();
         self.gradient.extend_from_slice(z);
         for (k, r) in model.residuals.iter().enumerate() {
-            add(&mut self.gradient, row(k), *r);
+            add(&mut self.gradient, row(k), *r / temperature);
         }
         self.along.clear();
         self.along.extend((0..m).map(|k| dot(row(k), &self.gradient)));
     }
 
-    /// The step for a normal matrix J·Jᵀ + a·1 already factored, and the decrease of the cost it predicts.
+    /// The step for a normal matrix J·Jᵀ + aT·1 already factored, and the decrease of the cost it predicts.
     fn step(&mut self, model: &Model, a: f64) -> f64 {
         let n = model.width;
         let mut weights = self.along.clone();

@@ -1,14 +1,14 @@
-//! The causes that are weighed, one file a kind.
+//! The causes that are weighed, one file a kind, and which of them are worth a full fit.
 
-mod hot;
-mod neutral;
+mod added;
 mod reading;
 mod sound;
 mod supply;
 
-use super::fit::Fit;
+use super::evidence::Level;
+use super::fit::{Fit, Score};
 use super::model::{Model, Task};
-use super::scan::{Curve, Scan};
+use super::scan::Curve;
 use super::site::Site;
 use crate::visit::Leg;
 
@@ -44,55 +44,39 @@ pub(super) struct Evaluated {
     pub curve: Curve,
 }
 
-/// What the evaluation of every kind is given.
-pub(super) struct Bench<'a, 's> {
+/// One level of trust at work.
+pub(super) struct Bench<'a> {
     /// The site.
-    pub site: &'s Site,
+    pub site: &'a Site,
     /// Its model.
     pub model: Model<'a>,
+    /// Probability of the level.
+    pub prior: f64,
     /// The sound fit.
     pub sound: Fit,
-    /// Best ln evidence so far.
-    pub best: f64,
+    /// The fit that comes closest to the readings without being pulled far from the list, and its temperature.
+    pub near: (Fit, f64),
+    /// First-order tests of resistance added, about that fit.
+    pub scores: Vec<[Score; crate::network::SLOTS]>,
 }
 
-/// Iterations of a fit from afar, and of a continued one.
+/// Iterations of a fit from afar.
 pub(super) const FAR: usize = 30;
-/// Of a continued one.
-pub(super) const NEAR: usize = 5;
 
-/// Weighs all hypotheses; the sound one first. `None` where the sound network can't be solved.
-pub(super) fn evaluate(site: &Site, model: Model) -> Option<Vec<Evaluated>> {
-    let mut model = model;
-    let sound = sound::evaluate(&mut model)?;
-    let mut bench = Bench { site, best: sound.evidence, sound: sound.fit.clone(), model };
-    let mut all = vec![sound];
-    all.extend(supply::evaluate(&mut bench));
-    all.extend(reading::evaluate(&mut bench));
-    all.extend(neutral::evaluate(&mut bench));
-    all.extend(hot::evaluate(&mut bench));
-    Some(all)
-}
-
-impl Bench<'_, '_> {
-    /// Evaluates resistance added in one conductor.
-    fn added(&mut self, hypothesis: Hypothesis, at: (usize, usize), prior: f64, open: f64) -> Option<Evaluated> {
-        let base = Task::default();
-        let scan = Scan { base: &base, at, best: self.best, iterations: NEAR };
-        let mut curve = scan.run(&mut self.model, &self.sound);
-        if curve.height() > self.best - 8.0 {
-            scan.refine(&mut self.model, &mut curve);
-        }
-        self.best = self.best.max(curve.height());
-        let peak = curve.peak()?;
-        let node = &curve.nodes[peak];
-        Some(Evaluated {
-            hypothesis,
-            prior,
-            evidence: curve.average(open),
-            task: scan.task(node.ohms),
-            fit: node.fit.clone(),
-            curve,
-        })
+/// Weighs all hypotheses at every level of trust. `None` where the sound network can't be solved.
+pub(super) fn evaluate<'a>(sites: &'a [(f64, Site)]) -> Option<Vec<Level<'a>>> {
+    let mut benches = Vec::with_capacity(sites.len());
+    for (prior, site) in sites {
+        let model = Model::new(&site.reduced, &site.observations, &site.parameters)?;
+        benches.push(sound::bench(*prior, site, model)?);
     }
+    let mut levels: Vec<Level> = Vec::with_capacity(benches.len());
+    for bench in &mut benches {
+        let mut all = vec![sound::evaluated(bench)];
+        all.extend(supply::evaluate(bench));
+        all.extend(reading::evaluate(bench));
+        levels.push(Level { site: bench.site, prior: bench.prior, all });
+    }
+    added::evaluate(&mut benches, &mut levels);
+    Some(levels)
 }

@@ -1,20 +1,20 @@
 //! Evidence along added ohms, from none to open.
 //!
-//! The fit is continued from one value to the next, upwards from the sound network and downwards from the open conductor, so that
-//! it follows the readings round mirror images (a neutral voltage is read without its sign) and out of local minima. A direction
-//! is left when the evidence has fallen far below the best known.
+//! From a fit the curve is continued value by value in both directions, each fit beginning where the last ended. So it follows
+//! the readings round mirror images (a neutral's volts are read without their sign) and out of local minima. A direction is left
+//! when the evidence has fallen far below its best.
 
 use super::fit::{Fit, fit};
-use super::model::{Added, Model, OPEN, Task};
+use super::model::{Added, Model, OPEN, Task, added_prior};
 use super::settings::ADDED;
 use crate::quantity::math;
 
-/// Values per octave step: each doubles the last.
+/// Steps of the grid, each doubling the last value.
 const STEPS: usize = 9;
-/// Fall of ln evidence below the best at which a direction is left.
-const HOPELESS: f64 = 18.0;
-/// ln of the likelihood ratio that bounds a 95 % interval: half the 95 % point of χ² with one degree of freedom.
-pub(super) const INTERVAL: f64 = 1.92;
+/// Fall of ln evidence below the curve's best at which a direction is left.
+const FALLEN: f64 = 7.0;
+/// Iterations of a continued fit.
+const NEAR: usize = 4;
 
 /// One value along the curve.
 #[derive(Clone, Debug)]
@@ -39,10 +39,6 @@ pub(super) struct Scan<'t> {
     pub base: &'t Task,
     /// Span and slot of the conductor.
     pub at: (usize, usize),
-    /// Best evidence known of any hypothesis.
-    pub best: f64,
-    /// Iterations a value.
-    pub iterations: usize,
 }
 
 impl Scan<'_> {
@@ -51,83 +47,111 @@ impl Scan<'_> {
         self.base.with(Added { span: self.at.0, slot: self.at.1, ohms: Some(ohms) })
     }
 
-    /// Follows the curve from the fit without the added ohms.
-    pub fn run(&self, model: &mut Model, from: &Fit) -> Curve {
+    /// Follows the curve up from the fit without added ohms, until it has fallen.
+    pub fn from_none(&self, model: &mut Model, from: &Fit) -> Curve {
         let mut curve = Curve::default();
-        let last = self.upwards(model, from, &mut curve);
-        let prior = vec![0.0; from.z.len()];
-        self.downwards(model, &[&last, &from.z, &prior], &mut curve);
+        self.follow(model, &mut curve, from, true, from.evidence);
         curve
     }
 
-    fn upwards(&self, model: &mut Model, from: &Fit, curve: &mut Curve) -> Vec<f64> {
-        let mut z = from.z.clone();
-        for ohms in grid() {
-            let Some(fit) = fit(model, &self.task(ohms), &z, self.iterations) else { break };
-            z.clone_from(&fit.z);
-            let is_hopeless = fit.evidence < self.best - HOPELESS;
-            let falls = curve.nodes.last().is_some_and(|n| n.fit.evidence > fit.evidence + 1.0);
-            curve.nodes.push(Node { ohms, fit });
-            if is_hopeless && falls {
-                break;
+    /// Follows the curve both ways from its peak, looked for from several starts.
+    pub fn about_peak(&self, model: &mut Model, starts: &[&[f64]], iterations: usize) -> Curve {
+        let mut curve = Curve::default();
+        let mut best: Option<(f64, Fit)> = None;
+        let mut consider = |ohms: f64, fit: Fit, best: &mut Option<(f64, Fit)>| {
+            if best.as_ref().is_none_or(|b| fit.evidence > b.1.evidence) {
+                *best = Some((ohms, fit));
+            }
+        };
+        for start in starts {
+            for ohms in [0.8, 8.0] {
+                model.restart();
+                if let Some((ohms, fit)) = self.free(model, start, ohms, iterations) {
+                    consider(ohms, fit, &mut best);
+                }
+            }
+            model.restart();
+            if let Some(fit) = fit(model, &self.task(OPEN), start, iterations) {
+                consider(OPEN, fit.clone(), &mut best);
+                curve.put(OPEN, fit);
             }
         }
-        z
+        let Some((ohms, at)) = best else { return curve };
+        model.restart();
+        curve.put(ohms, at.clone());
+        self.follow_from(model, &mut curve, ohms, &at);
+        self.refine(model, &mut curve);
+        curve
     }
 
-    fn downwards(&self, model: &mut Model, starts: &[&Vec<f64>], curve: &mut Curve) {
-        let mut open: Option<Fit> = None;
-        for start in starts {
-            model.restart();
-            let Some(fit) = fit(model, &self.task(OPEN), start, 2 * self.iterations) else { continue };
-            if open.as_ref().is_none_or(|o| fit.evidence > o.evidence) {
-                open = Some(fit);
+    /// The most probable added ohms from a start, and the fit with them held there.
+    fn free(&self, model: &mut Model, start: &[f64], ohms: f64, iterations: usize) -> Option<(f64, Fit)> {
+        let task = self.base.with(Added { span: self.at.0, slot: self.at.1, ohms: None });
+        let (mean, spread) = added_prior();
+        let mut z = start.to_vec();
+        z.push((math::ln(ohms) - mean) / spread);
+        let found = fit(model, &task, &z, iterations)?;
+        let ohms = math::exp(mean + spread * found.z.last()?).clamp(ADDED.0, ADDED.1);
+        let held = fit(model, &self.task(ohms), &found.z[..start.len()], NEAR)?;
+        Some((ohms, held))
+    }
+
+    fn follow_from(&self, model: &mut Model, curve: &mut Curve, ohms: f64, at: &Fit) {
+        let best = curve.height();
+        let above: Vec<f64> = grid().filter(|g| *g > ohms * 1.001).chain([OPEN]).collect();
+        let below: Vec<f64> = grid().rev().filter(|g| *g < ohms * 0.999).collect();
+        for side in [above, below] {
+            let mut from = at.clone();
+            let mut best = best;
+            for value in side {
+                let Some(fit) = fit(model, &self.task(value), &from.z, NEAR) else { break };
+                from = fit.clone();
+                curve.put(value, fit);
+                best = best.max(from.evidence);
+                if from.evidence < best - FALLEN {
+                    break;
+                }
             }
         }
-        let Some(open) = open else { return };
-        let mut z = open.z.clone();
-        let mut best = open.evidence.max(self.best);
-        let mut hopeless = open.evidence < best - HOPELESS;
-        curve.put(OPEN, open);
-        for ohms in grid().rev() {
-            if hopeless {
-                break;
-            }
-            let Some(fit) = fit(model, &self.task(ohms), &z, self.iterations) else { break };
-            z.clone_from(&fit.z);
-            best = best.max(fit.evidence);
-            hopeless = fit.evidence < best - HOPELESS;
-            if !curve.put(ohms, fit) {
+    }
+
+    fn follow(&self, model: &mut Model, curve: &mut Curve, from: &Fit, _up: bool, best: f64) {
+        let mut from = from.clone();
+        let mut best = best;
+        for value in grid().chain([OPEN]) {
+            let Some(fit) = fit(model, &self.task(value), &from.z, NEAR) else { break };
+            from = fit.clone();
+            curve.put(value, fit);
+            best = best.max(from.evidence);
+            if from.evidence < best - FALLEN {
                 break;
             }
         }
     }
 
     /// Adds values about the peak, where the curve is narrower than the grid.
-    pub fn refine(&self, model: &mut Model, curve: &mut Curve) {
-        for _ in 0..6 {
+    fn refine(&self, model: &mut Model, curve: &mut Curve) {
+        for _ in 0..8 {
             let Some(peak) = curve.peak() else { return };
             if curve.nodes[peak].ohms >= OPEN {
                 return;
             }
-            let neighbours = [peak.checked_sub(1), (peak + 1 < curve.nodes.len()).then_some(peak + 1)];
             let height = curve.nodes[peak].fit.evidence;
-            let steep = neighbours.into_iter().flatten().filter(|&k| curve.nodes[k].ohms < OPEN);
-            let gaps: Vec<(usize, f64)> = steep
-                .filter(|&k| height - curve.nodes[k].fit.evidence > 0.7)
-                .map(|k| (k, math::ln(curve.nodes[k].ohms / curve.nodes[peak].ohms)))
-                .filter(|g| g.1.abs() > 0.01)
-                .collect();
-            if gaps.is_empty() {
-                return;
-            }
-            let (at, start) = (curve.nodes[peak].ohms, curve.nodes[peak].fit.z.clone());
-            for (_, gap) in gaps {
-                let ohms = at * math::exp(gap / 2.0);
-                if let Some(fit) = fit(model, &self.task(ohms), &start, self.iterations) {
-                    curve.put(ohms, fit);
-                }
-            }
+            let neighbours = [peak.checked_sub(1), (peak + 1 < curve.nodes.len()).then_some(peak + 1)];
+            let steepest = neighbours
+                .into_iter()
+                .flatten()
+                .filter(|&k| curve.nodes[k].ohms < OPEN && height - curve.nodes[k].fit.evidence > 1.0)
+                .map(|k| math::ln(curve.nodes[k].ohms / curve.nodes[peak].ohms))
+                .filter(|gap| gap.abs() > 0.02)
+                .max_by(|a, b| a.abs().total_cmp(&b.abs()));
+            let Some(gap) = steepest else { return };
+            let ohms = curve.nodes[peak].ohms * math::exp(gap / 2.0);
+            let start = curve.nodes[peak].fit.z.clone();
+            match fit(model, &self.task(ohms), &start, NEAR) {
+                Some(fit) => curve.put(ohms, fit),
+                None => return,
+            };
         }
     }
 }
@@ -142,7 +166,7 @@ impl Curve {
     fn put(&mut self, ohms: f64, fit: Fit) -> bool {
         let at = self.nodes.partition_point(|n| n.ohms < ohms * (1.0 - 1e-9));
         match self.nodes.get_mut(at).filter(|n| n.ohms <= ohms * (1.0 + 1e-9)) {
-            Some(node) if node.fit.evidence + 0.02 >= fit.evidence => false,
+            Some(node) if node.fit.evidence >= fit.evidence => false,
             Some(node) => {
                 node.fit = fit;
                 true

@@ -1,15 +1,34 @@
 //! Nothing wrong.
 
-use super::super::fit::fit;
+use super::super::fit::{fit, fit_hot, scores};
 use super::super::model::{Model, Task};
 use super::super::settings::PRIOR_SOUND;
-use super::{Evaluated, FAR, Hypothesis};
+use super::super::site::Site;
+use super::{Bench, Evaluated, FAR, Hypothesis};
 use crate::diagnosis::scan::Curve;
 
+/// Mean square residual (with the unknowns' own) above which the sound network does not explain the readings.
+const EXPLAINS: f64 = 2.0;
+
 /// Fits the sound network.
-pub(super) fn evaluate(model: &mut Model) -> Option<Evaluated> {
+pub(super) fn bench<'a>(prior: f64, site: &'a Site, mut model: Model<'a>) -> Option<Bench<'a>> {
     let task = Task::default();
     let start = model.start();
-    let fit = fit(model, &task, &start, FAR)?;
-    Some(Evaluated { hypothesis: Hypothesis::Sound, prior: PRIOR_SOUND, evidence: fit.evidence, task, fit, curve: Curve::default() })
+    let sound = fit(&mut model, &task, &start, FAR)?;
+    let temperature = (sound.cost / (EXPLAINS * site.observations.list.len() as f64)).max(1.0);
+    let near = if temperature > 1.0 { fit_hot(&mut model, &task, &start, 6, temperature)? } else { sound.clone() };
+    let scores = scores(&mut model, &task, &near, temperature)?;
+    Some(Bench { site, model, prior, sound, near: (near, temperature), scores })
+}
+
+/// The sound network as a hypothesis.
+pub(super) fn evaluated(bench: &Bench) -> Evaluated {
+    Evaluated {
+        hypothesis: Hypothesis::Sound,
+        prior: PRIOR_SOUND,
+        evidence: bench.sound.evidence,
+        task: Task::default(),
+        fit: bench.sound.clone(),
+        curve: Curve::default(),
+    }
 }

@@ -1,0 +1,141 @@
+//! Raised resistance of a neutral or of a hot leg.
+//!
+//! All conductors are tested to first order at once; those that could gain most are fitted in full at every level of trust, with
+//! what the readings can't tell from them. Of the others, neutrals are followed from the sound fit (their curves are the
+//! intervals that are reported), hot legs are weighed by the first-order test alone.
+
+use super::super::evidence::Level;
+use super::super::model::{OPEN, Task};
+use super::super::scan::{Curve, Scan, log_sum};
+use super::super::settings::{ADDED, OPEN_HOT, OPEN_NEUTRAL, PRIOR_HOT, PRIOR_NEUTRAL, TWO_WIRE};
+use super::super::site::Site;
+use super::{Bench, Evaluated, FAR, Hypothesis};
+use crate::network::SLOTS;
+use crate::quantity::math;
+use crate::visit::Leg;
+
+/// First-order gain of ln evidence from which a conductor is fitted in full.
+const LIVE: f64 = 1.5;
+/// Share of the greatest gain from which it is.
+const RIVAL: f64 = 0.3;
+/// Sets fitted in full, at most.
+const MOST_LIVE: usize = 6;
+
+/// Conductor: span and slot.
+type At = (usize, usize);
+
+/// Adds the hypotheses of added resistance to every level.
+pub(super) fn evaluate(benches: &mut [Bench], levels: &mut [Level]) {
+    let Some(site) = benches.first().map(|b| b.site) else { return };
+    let live = live(benches);
+    let all: Vec<At> = (0..site.reduced.network.spans.len())
+        .flat_map(|span| (0..SLOTS).map(move |slot| (span, slot)))
+        .filter(|&(span, slot)| site.reduced.network.spans[span].ohms[slot].is_some())
+        .collect();
+    for (bench, level) in benches.iter_mut().zip(&mut *levels) {
+        for &at in all.iter().filter(|at| live.contains(at)) {
+            level.all.extend(in_full(bench, at));
+        }
+    }
+    // Where the sound network does not explain the readings, what does not explain them either needs no weight.
+    let follows = best_level(benches).filter(|&b| benches[b].near.1 <= 1.0);
+    let Some(follows) = follows else { return };
+    for &at in all.iter().filter(|at| !live.contains(at)) {
+        let bench = &mut benches[follows];
+        let one = if at.1 == SLOTS - 1 { followed(bench, at) } else { to_first_order(bench, at) };
+        let Some(one) = one else { continue };
+        let over = one.evidence - bench.sound.evidence;
+        for (bench, level) in benches.iter().zip(&mut *levels) {
+            level.all.push(Evaluated { evidence: bench.sound.evidence + over, ..one.clone() });
+        }
+    }
+}
+
+/// The level of trust that the sound fits speak for.
+fn best_level(benches: &[Bench]) -> Option<usize> {
+    let weight = |b: &Bench| math::ln(b.prior) + b.sound.evidence;
+    (0..benches.len()).max_by(|&a, &b| weight(&benches[a]).total_cmp(&weight(&benches[b])))
+}
+
+/// Conductors to be fitted in full: of the sets that gain most, all.
+fn live(benches: &[Bench]) -> Vec<At> {
+    let mut sets: Vec<(f64, usize, usize)> = Vec::new();
+    for bench in benches {
+        let class = &bench.site.reduced.class;
+        let most = bench.scores.iter().flatten().map(|s| s.gain()).fold(0.0, f64::max);
+        for (span, scores) in bench.scores.iter().enumerate() {
+            for (slot, score) in scores.iter().enumerate() {
+                let gain = score.gain();
+                if gain < LIVE.max(RIVAL * most) {
+                    continue;
+                }
+                match sets.iter_mut().find(|s| (s.1, s.2) == (class[span], slot)) {
+                    Some(set) => set.0 = set.0.max(gain / most),
+                    None => sets.push((gain / most, class[span], slot)),
+                }
+            }
+        }
+    }
+    sets.sort_by(|a, b| b.0.total_cmp(&a.0).then((a.1, a.2).cmp(&(b.1, b.2))));
+    sets.truncate(MOST_LIVE);
+    let Some(site) = benches.first().map(|b| b.site) else { return Vec::new() };
+    let of_set = |&(_, class, slot): &(f64, usize, usize)| {
+        let spans = 0..site.reduced.class.len();
+        spans.filter(move |&s| site.reduced.class[s] == class && site.reduced.network.spans[s].ohms[slot].is_some()).map(move |s| (s, slot))
+    };
+    sets.iter().flat_map(of_set).collect()
+}
+
+fn hypothesis((span, slot): At) -> Hypothesis {
+    Leg::ALL.get(slot).map_or(Hypothesis::Neutral(span), |leg| Hypothesis::Hot(span, *leg))
+}
+
+/// Probability before any reading, and the share of it that is open.
+fn prior(site: &Site, (span, slot): At) -> (f64, f64) {
+    let runs = site.reduced.runs[span].len() as f64;
+    let hot = PRIOR_HOT / site.hots.max(1) as f64;
+    match slot {
+        s if s < SLOTS - 1 => (runs * hot, OPEN_HOT),
+        _ if site.reduced.is_shared(span) => (runs * PRIOR_NEUTRAL / site.neutrals.max(1) as f64, OPEN_NEUTRAL),
+        _ => (runs * hot / TWO_WIRE, OPEN_NEUTRAL),
+    }
+}
+
+/// Fits a conductor from several starts and along the whole curve.
+fn in_full(bench: &mut Bench, at: At) -> Option<Evaluated> {
+    let base = Task::default();
+    let scan = Scan { base: &base, at };
+    let zero = bench.model.start();
+    let near = bench.near.0.z.clone();
+    let curve = scan.about_peak(&mut bench.model, &[&zero, &near], FAR);
+    let node = &curve.nodes[curve.peak()?];
+    let (prior, open) = prior(bench.site, at);
+    let (task, fit) = (scan.task(node.ohms), node.fit.clone());
+    Some(Evaluated { hypothesis: hypothesis(at), prior, evidence: curve.average(open), task, fit, curve })
+}
+
+/// Follows a neutral from the sound fit.
+fn followed(bench: &mut Bench, at: At) -> Option<Evaluated> {
+    let base = Task::default();
+    let scan = Scan { base: &base, at };
+    bench.model.restart();
+    let curve = scan.from_none(&mut bench.model, &bench.sound);
+    let node = &curve.nodes[curve.peak()?];
+    let (prior, open) = prior(bench.site, at);
+    let (task, fit) = (scan.task(node.ohms), node.fit.clone());
+    Some(Evaluated { hypothesis: hypothesis(at), prior, evidence: curve.average(open), task, fit, curve })
+}
+
+/// Weighs a conductor by the first-order test: ln evidence bends along added ohms as a parabola.
+fn to_first_order(bench: &Bench, at: At) -> Option<Evaluated> {
+    const VALUES: usize = 20;
+    let score = bench.scores.get(at.0)?[at.1];
+    let along = |ohms: f64| score.slope * ohms - 0.5 * score.bend * ohms * ohms;
+    let value = |k: usize| ADDED.0 * math::exp(math::ln(ADDED.1 / ADDED.0) * (k as f64 + 0.5) / VALUES as f64);
+    let (prior, open) = prior(bench.site, at);
+    let mut parts: Vec<f64> = (0..VALUES).map(|k| along(value(k)) + math::ln((1.0 - open) / VALUES as f64)).collect();
+    parts.push(along(OPEN) + math::ln(open));
+    let evidence = bench.sound.evidence + log_sum(&parts);
+    let task = Task::default();
+    Some(Evaluated { hypothesis: hypothesis(at), prior, evidence, task, fit: bench.sound.clone(), curve: Curve::default() })
+}
