@@ -3,9 +3,11 @@
 use super::hypotheses::{Evaluated, Hypothesis};
 use super::scan::log_sum;
 use super::site::Site;
+use crate::network::SLOTS;
 use crate::quantity::math;
 use crate::results::{Cause, CauseKind, SupplyDirection};
-use crate::visit::Visit;
+use crate::visit::{Leg, Visit};
+use std::collections::BTreeMap;
 
 /// A cause with the hypotheses it is made of.
 #[derive(Clone, Debug)]
@@ -45,7 +47,8 @@ pub(super) fn rank(visit: &Visit, levels: &[Level]) -> Vec<Weighed> {
             add(kind, class, (l, k), math::ln(level.prior * e.prior) + e.evidence);
         }
     }
-    let total = log_sum(&groups.iter().flat_map(|g| g.3.iter().copied()).collect::<Vec<_>>());
+    let mut hidden = hidden(visit, levels);
+    let total = log_sum(&groups.iter().flat_map(|g| g.3.iter().copied()).chain(hidden.iter().map(|h| h.2)).collect::<Vec<_>>());
     let mut ranked: Vec<Weighed> = groups
         .into_iter()
         .map(|(kind, class, members, weights)| {
@@ -57,9 +60,34 @@ pub(super) fn rank(visit: &Visit, levels: &[Level]) -> Vec<Weighed> {
             Weighed { cause: Cause { kind, runs, probability, ohms: None }, members }
         })
         .collect();
-    let _ = visit;
+    ranked.extend(hidden.drain(..).map(|(kind, runs, weight)| Weighed {
+        cause: Cause { kind, runs, probability: math::exp(weight - total), ohms: None },
+        members: Vec::new(),
+    }));
     ranked.sort_by(|a, b| b.cause.probability.total_cmp(&a.cause.probability));
     ranked
+}
+
+/// Faults that no reading speaks of: in the runs that were cut away, grouped by where they hang. They weigh what the sound network
+/// weighs.
+fn hidden(visit: &Visit, levels: &[Level]) -> Vec<(CauseKind, Vec<usize>, f64)> {
+    let Some(site) = levels.first().map(|l| l.site) else { return Vec::new() };
+    let sound: Vec<f64> = levels.iter().filter_map(|l| Some(math::ln(l.prior) + l.all.first()?.evidence)).collect();
+    let sound = log_sum(&sound);
+    let mut groups: BTreeMap<(usize, usize), (Vec<usize>, f64)> = BTreeMap::new();
+    for &run in &visit.tree.order {
+        let Some(at) = site.reduced.attached[run].filter(|at| *at != run) else { continue };
+        let Some(legs) = visit.runs[run].legs.as_ref().map(|l| l.value) else { continue };
+        let lines = legs.iter().map(|l| (l.index(), site.prior_of_hot()));
+        let neutral = legs.neutral.then(|| (SLOTS - 1, site.prior_of_neutral(legs.count() > 1)));
+        for (slot, prior) in lines.chain(neutral) {
+            let group = groups.entry((at, slot)).or_default();
+            group.0.push(run);
+            group.1 += prior;
+        }
+    }
+    let kind = |slot: usize| Leg::ALL.get(slot).map_or(CauseKind::Neutral, |l| CauseKind::Hot(*l));
+    groups.into_iter().map(|((_, slot), (runs, prior))| (kind(slot), runs, sound + math::ln(prior))).collect()
 }
 
 fn name(site: &Site, hypothesis: Hypothesis) -> (CauseKind, Option<usize>) {
@@ -77,7 +105,7 @@ fn name(site: &Site, hypothesis: Hypothesis) -> (CauseKind, Option<usize>) {
 fn runs_of(site: &Site, kind: &CauseKind, class: usize) -> Vec<usize> {
     let slot = match kind {
         CauseKind::Hot(leg) => leg.index(),
-        _ => crate::network::SLOTS - 1,
+        _ => SLOTS - 1,
     };
     let reduced = &site.reduced;
     let spans = (0..reduced.class.len()).filter(|&s| reduced.class[s] == class && reduced.network.spans[s].ohms[slot].is_some());

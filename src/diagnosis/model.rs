@@ -4,8 +4,9 @@ use super::observation::Observations;
 use super::parameter::{Parameter, Target};
 use super::reduce::Reduced;
 use super::settings::{ADDED, EXPONENT_RANGE};
-use crate::network::{Gradient, Law, Network, SLOTS, SolveSettings, Span, Workspace};
+use crate::network::{Gradient, Law, Network, Observed, SLOTS, SolveSettings, Span, Workspace};
 use crate::quantity::math;
+use crate::visit::Conductor;
 
 /// Ohms of an open conductor.
 pub(super) const OPEN: f64 = 1e6;
@@ -151,6 +152,12 @@ impl<'a> Model<'a> {
         let drifts = n - self.observations.rows;
         let gains = drifts - self.observations.gains.len();
         self.unknowns[drifts + row] + self.unknowns[gains + gain]
+    }
+
+    /// Amperes in the neutral of a span at the last residuals: the most in any state.
+    pub fn neutral_amperes(&self, span: usize) -> Option<f64> {
+        let observed = Observed::Current { run: span, conductor: Conductor::Neutral, towards_source: true };
+        self.spaces.iter().filter_map(|s| s.value(observed)).map(f64::abs).reduce(f64::max)
     }
 
     /// Takes each reading with its own sign, where it is not known with that of the last prediction.

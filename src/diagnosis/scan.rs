@@ -13,6 +13,8 @@ use crate::quantity::math;
 const STEPS: usize = 9;
 /// Fall of ln evidence below the curve's best at which a direction is left.
 const FALLEN: f64 = 7.0;
+/// ln of the likelihood ratio that bounds a 95 % interval: half the 95 % point of χ² with one degree of freedom.
+pub(super) const INTERVAL: f64 = 1.92;
 /// Iterations of a continued fit.
 const NEAR: usize = 4;
 
@@ -181,6 +183,19 @@ impl Curve {
     /// The most probable value.
     pub fn peak(&self) -> Option<usize> {
         (0..self.nodes.len()).max_by(|&a, &b| self.nodes[a].fit.evidence.total_cmp(&self.nodes[b].fit.evidence))
+    }
+
+    /// ln evidence at a value: straight between the nodes over the logarithm of the ohms, nothing outside them.
+    pub fn at(&self, ohms: f64) -> f64 {
+        let above = self.nodes.partition_point(|n| n.ohms < ohms * (1.0 - 1e-9));
+        match (above.checked_sub(1).and_then(|k| self.nodes.get(k)), self.nodes.get(above)) {
+            (_, Some(n)) if n.ohms <= ohms * (1.0 + 1e-9) => n.fit.evidence,
+            (Some(a), Some(b)) if b.ohms < OPEN => {
+                let share = math::ln(ohms / a.ohms) / math::ln(b.ohms / a.ohms);
+                a.fit.evidence + share * (b.fit.evidence - a.fit.evidence)
+            }
+            _ => f64::NEG_INFINITY,
+        }
     }
 
     /// Best ln evidence.

@@ -47,6 +47,18 @@ impl Site {
     }
 }
 
+impl Site {
+    /// Probability before any reading of resistance in one line conductor of one run.
+    pub fn prior_of_hot(&self) -> f64 {
+        settings::PRIOR_HOT / self.hots.max(1) as f64
+    }
+
+    /// Likewise in one run's neutral, shared by legs or not.
+    pub fn prior_of_neutral(&self, is_shared: bool) -> f64 {
+        if is_shared { settings::PRIOR_NEUTRAL / self.neutrals.max(1) as f64 } else { self.prior_of_hot() / settings::TWO_WIRE }
+    }
+}
+
 /// In every state but the first something is switched: a load on either leg at the panel, or at the location the state names.
 fn add_switched(reduced: &mut Reduced, observations: &Observations) {
     let Some(panel) = reduced.network.spans.iter().position(|s| s.fed_from.is_none()) else { return };

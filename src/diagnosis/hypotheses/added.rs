@@ -7,7 +7,7 @@
 use super::super::evidence::Level;
 use super::super::model::{OPEN, Task};
 use super::super::scan::{Curve, Scan, log_sum};
-use super::super::settings::{ADDED, OPEN_HOT, OPEN_NEUTRAL, PRIOR_HOT, PRIOR_NEUTRAL, TWO_WIRE};
+use super::super::settings::{ADDED, OPEN_HOT, OPEN_NEUTRAL};
 use super::super::site::Site;
 use super::{Bench, Evaluated, FAR, Hypothesis};
 use crate::network::SLOTS;
@@ -93,11 +93,9 @@ fn hypothesis((span, slot): At) -> Hypothesis {
 /// Probability before any reading, and the share of it that is open.
 fn prior(site: &Site, (span, slot): At) -> (f64, f64) {
     let runs = site.reduced.runs[span].len() as f64;
-    let hot = PRIOR_HOT / site.hots.max(1) as f64;
     match slot {
-        s if s < SLOTS - 1 => (runs * hot, OPEN_HOT),
-        _ if site.reduced.is_shared(span) => (runs * PRIOR_NEUTRAL / site.neutrals.max(1) as f64, OPEN_NEUTRAL),
-        _ => (runs * hot / TWO_WIRE, OPEN_NEUTRAL),
+        s if s < SLOTS - 1 => (runs * site.prior_of_hot(), OPEN_HOT),
+        _ => (runs * site.prior_of_neutral(site.reduced.is_shared(span)), OPEN_NEUTRAL),
     }
 }
 
