@@ -25,6 +25,8 @@ const MOST_DAMPING: f64 = 1e6;
 const STIFF: f64 = 20.0;
 /// Fall of the temperature with every step.
 const COOLING: f64 = 8.0;
+/// What the next steps together may still gain, over the last one.
+const HOPE: f64 = 2.0;
 /// Signs changed in one fit, at most.
 const MOST_FLIPS: usize = 4;
 
@@ -44,14 +46,19 @@ pub(super) struct Fit {
 /// A neutral's current and its volts to ground are read without a sign. Each is taken with the sign it has at the start; where
 /// the fit ends far from one, the other sign is tried and kept if it fits better.
 pub(super) fn fit(model: &mut Model, task: &Task, start: &[f64], iterations: usize) -> Option<Fit> {
+    fit_above(model, task, start, iterations, f64::NEG_INFINITY)
+}
+
+/// The same, given up (`None`) as soon as ln evidence can't be expected to come above a bound.
+pub(super) fn fit_above(model: &mut Model, task: &Task, start: &[f64], iterations: usize, least: f64) -> Option<Fit> {
     model.residuals(task, start)?;
     model.take_signs();
-    let mut best = descend(model, task, start, iterations)?;
+    let mut best = descend(model, task, start, iterations, least)?;
     for _ in 0..MOST_FLIPS {
         model.residuals(task, &best.z)?;
         let Some(doubtful) = model.doubtful() else { break };
         model.flip(doubtful);
-        match descend(model, task, &best.z, iterations) {
+        match descend(model, task, &best.z, iterations, least) {
             Some(other) if other.cost < best.cost - SETTLED => best = other,
             _ => {
                 model.flip(doubtful);
@@ -66,15 +73,23 @@ pub(super) fn fit(model: &mut Model, task: &Task, start: &[f64], iterations: usi
 pub(super) fn fit_hot(model: &mut Model, task: &Task, start: &[f64], iterations: usize, temperature: f64) -> Option<Fit> {
     model.residuals(task, start)?;
     model.take_signs();
-    descend_from(model, task, start, iterations, (temperature, temperature))
+    descend_from(model, task, start, iterations, (temperature, temperature), f64::NEG_INFINITY)
 }
 
-fn descend(model: &mut Model, task: &Task, start: &[f64], iterations: usize) -> Option<Fit> {
-    descend_from(model, task, start, iterations, (f64::INFINITY, 1.0))
+fn descend(model: &mut Model, task: &Task, start: &[f64], iterations: usize, least: f64) -> Option<Fit> {
+    descend_from(model, task, start, iterations, (f64::INFINITY, 1.0), least)
 }
 
 /// Descends from a temperature (at most what the start's misfit asks for) to another.
-fn descend_from(model: &mut Model, task: &Task, start: &[f64], iterations: usize, (hot, cold): (f64, f64)) -> Option<Fit> {
+fn descend_from(
+    model: &mut Model,
+    task: &Task,
+    start: &[f64],
+    iterations: usize,
+    (hot, cold): (f64, f64),
+    least: f64,
+) -> Option<Fit> {
+    let own: f64 = model.observations.list.iter().map(|o| math::ln(o.sigma) + HALF_LN_2_PI).sum();
     let mut z = start.to_vec();
     let mut squares = model.residuals(task, &z)?;
     let mut temperature = (squares / (STIFF * model.residuals.len() as f64)).clamp(cold, hot.max(cold));
@@ -100,6 +115,10 @@ fn descend_from(model: &mut Model, task: &Task, start: &[f64], iterations: usize
             if std::env::var("TRACE").is_ok() { eprintln!("T {temperature:.1} cost {cost:.2} pred {predicted:.2} whole {is_whole} damping {damping:.2e} new {new_cost:.2}"); }
             if new_cost < cost + 1e-9 {
                 done = damping == 0.0 && is_whole && temperature == cold && (cost - new_cost - predicted).abs() < SETTLED;
+                let hoped = new_cost - HOPE * (cost - new_cost);
+                if temperature == cold && -0.5 * (hoped + determinant) - own < least {
+                    return None;
+                }
                 (z, squares) = (trial, new);
                 damping = if damping > 0.01 { damping / 8.0 } else { 0.0 };
                 temperature = (temperature / COOLING).max(cold);
@@ -119,7 +138,6 @@ fn descend_from(model: &mut Model, task: &Task, start: &[f64], iterations: usize
         }
     }
     let cost = squares + norm(&z);
-    let own: f64 = model.observations.list.iter().map(|o| math::ln(o.sigma) + HALF_LN_2_PI).sum();
     let misread = task.misread.map_or(0.0, |k| math::ln(model.observations.list[k].sigma) + HALF_LN_2_PI - math::ln(2.0 * MISREAD));
     Some(Fit { z, cost, evidence: -0.5 * (cost + determinant) - own + misread })
 }

@@ -58,3 +58,16 @@ pub(super) fn parameters(reduced: &Reduced, observations: &Observations, trust: 
     (0..observations.rows).for_each(|r| add(Target::Drift(r), 0.0, settings::DRIFT));
     all
 }
+
+/// Whitened unknowns of one level of trust as those of another: equal in their own units, unknowns it does not share at their
+/// means.
+pub(super) fn carry(z: &[f64], from: &[Parameter], to: &[Parameter]) -> Vec<f64> {
+    let mut at = 0;
+    let one = |p: &Parameter| {
+        // Both lists are in the same order; either may lack some of the other's.
+        let found = (at..from.len()).find(|&k| from[k].target == p.target)?;
+        at = found + 1;
+        Some((from[found].mean + from[found].spread * z.get(found)? - p.mean) / p.spread)
+    };
+    to.iter().map(one).map(Option::unwrap_or_default).collect()
+}

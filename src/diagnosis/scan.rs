@@ -4,7 +4,7 @@
 //! the readings round mirror images (a neutral's volts are read without their sign) and out of local minima. A direction is left
 //! when the evidence has fallen far below its best.
 
-use super::fit::{Fit, fit};
+use super::fit::{Fit, fit, fit_above};
 use super::model::{Added, Model, OPEN, Task, added_prior};
 use super::settings::ADDED;
 use crate::quantity::math;
@@ -12,11 +12,15 @@ use crate::quantity::math;
 /// Steps of the grid, each doubling the last value.
 const STEPS: usize = 9;
 /// Fall of ln evidence below the curve's best at which a direction is left.
-const FALLEN: f64 = 7.0;
+const FALLEN: f64 = 4.0;
 /// ln of the likelihood ratio that bounds a 95 % interval: half the 95 % point of χ² with one degree of freedom.
 pub(super) const INTERVAL: f64 = 1.92;
+/// Mean square residual (with the unknowns' own) below which the readings are explained.
+pub(super) const EXPLAINS: f64 = 2.0;
 /// Iterations of a continued fit.
 const NEAR: usize = 4;
+/// Iterations of a fit from afar.
+const SEARCH: usize = 15;
 
 /// One value along the curve.
 #[derive(Clone, Debug)]
@@ -56,30 +60,35 @@ impl Scan<'_> {
         curve
     }
 
-    /// Follows the curve both ways from its peak, looked for from several starts.
-    pub fn about_peak(&self, model: &mut Model, starts: &[&[f64]], iterations: usize) -> Curve {
-        let mut curve = Curve::default();
+    /// The most probable added ohms, looked for from several starts until the readings are explained; the fit with them held there.
+    /// Fits that can't come within reach of an evidence are given up.
+    pub fn search(&self, model: &mut Model, starts: &[&[f64]], least: f64) -> Option<(f64, Fit)> {
+        let explained = EXPLAINS * model.residuals.len() as f64;
         let mut best: Option<(f64, Fit)> = None;
-        let mut consider = |ohms: f64, fit: Fit, best: &mut Option<(f64, Fit)>| {
-            if best.as_ref().is_none_or(|b| fit.evidence > b.1.evidence) {
-                *best = Some((ohms, fit));
-            }
-        };
-        for start in starts {
-            for ohms in [0.8, 8.0] {
-                model.restart();
-                if let Some((ohms, fit)) = self.free(model, start, ohms, iterations) {
-                    consider(ohms, fit, &mut best);
-                }
-            }
+        for (start, ohms) in starts.iter().flat_map(|s| [(s, 2.0), (s, OPEN), (s, 16.0)]) {
             model.restart();
-            if let Some(fit) = fit(model, &self.task(OPEN), start, iterations) {
-                consider(OPEN, fit.clone(), &mut best);
-                curve.put(OPEN, fit);
+            let found = if ohms >= OPEN {
+                fit_above(model, &self.task(OPEN), start, SEARCH, least).map(|fit| (OPEN, fit))
+            } else {
+                self.free(model, start, ohms, least)
+            };
+            let Some(found) = found else { continue };
+            if best.as_ref().is_none_or(|b| found.1.evidence > b.1.evidence) {
+                best = Some(found);
+            }
+            if best.as_ref().is_some_and(|b| b.1.cost < explained) {
+                break;
             }
         }
-        let Some((ohms, at)) = best else { return curve };
+        best
+    }
+
+    /// Follows the curve both ways from its peak.
+    pub fn about_peak(&self, model: &mut Model, start: &[f64], ohms: f64) -> Curve {
+        let mut curve = Curve::default();
         model.restart();
+        let found = if ohms >= OPEN { None } else { self.free(model, start, ohms, f64::NEG_INFINITY) };
+        let Some((ohms, at)) = found.or_else(|| Some((ohms, fit(model, &self.task(ohms), start, SEARCH)?))) else { return curve };
         curve.put(ohms, at.clone());
         self.follow_from(model, &mut curve, ohms, &at);
         self.refine(model, &mut curve);
@@ -87,12 +96,12 @@ impl Scan<'_> {
     }
 
     /// The most probable added ohms from a start, and the fit with them held there.
-    fn free(&self, model: &mut Model, start: &[f64], ohms: f64, iterations: usize) -> Option<(f64, Fit)> {
+    fn free(&self, model: &mut Model, start: &[f64], ohms: f64, least: f64) -> Option<(f64, Fit)> {
         let task = self.base.with(Added { span: self.at.0, slot: self.at.1, ohms: None });
         let (mean, spread) = added_prior();
         let mut z = start.to_vec();
         z.push((math::ln(ohms) - mean) / spread);
-        let found = fit(model, &task, &z, iterations)?;
+        let found = fit_above(model, &task, &z, SEARCH, least)?;
         let ohms = math::exp(mean + spread * found.z.last()?).clamp(ADDED.0, ADDED.1);
         let held = fit(model, &self.task(ohms), &found.z[..start.len()], NEAR)?;
         Some((ohms, held))

@@ -9,7 +9,9 @@ use super::super::model::{OPEN, Task};
 use super::super::scan::{Curve, Scan, log_sum};
 use super::super::settings::{ADDED, OPEN_HOT, OPEN_NEUTRAL};
 use super::super::site::Site;
-use super::{Bench, Evaluated, FAR, Hypothesis};
+use super::{Bench, Evaluated, Hypothesis};
+use crate::diagnosis::fit::Fit;
+use crate::diagnosis::parameter::carry;
 use crate::network::SLOTS;
 use crate::quantity::math;
 use crate::visit::Leg;
@@ -21,26 +23,31 @@ const RIVAL: f64 = 0.3;
 /// Sets fitted in full, at most.
 const MOST_LIVE: usize = 6;
 
+/// Fall of ln evidence below the best at which a conductor is out of the question.
+const MARGIN: f64 = 12.0;
+
 /// Conductor: span and slot.
 type At = (usize, usize);
 
 /// Adds the hypotheses of added resistance to every level.
 pub(super) fn evaluate(benches: &mut [Bench], levels: &mut [Level]) {
     let Some(site) = benches.first().map(|b| b.site) else { return };
-    let live = live(benches);
+    let searched_parameters = benches.last().map_or(&[][..], |b| &b.site.parameters[..]);
+    let found = search(benches, levels);
     let all: Vec<At> = (0..site.reduced.network.spans.len())
         .flat_map(|span| (0..SLOTS).map(move |slot| (span, slot)))
         .filter(|&(span, slot)| site.reduced.network.spans[span].ohms[slot].is_some())
         .collect();
-    for (bench, level) in benches.iter_mut().zip(&mut *levels) {
-        for &at in all.iter().filter(|at| live.contains(at)) {
-            level.all.extend(in_full(bench, at));
+    for (at, ohms, fit) in &found {
+        for (bench, level) in benches.iter_mut().zip(&mut *levels) {
+            let from = carry(&fit.z, searched_parameters, &bench.site.parameters);
+            level.all.extend(in_full(bench, *at, *ohms, &from));
         }
     }
     // Where the sound network does not explain the readings, what does not explain them either needs no weight.
     let follows = best_level(benches).filter(|&b| benches[b].near.1 <= 1.0);
     let Some(follows) = follows else { return };
-    for &at in all.iter().filter(|at| !live.contains(at)) {
+    for &at in all.iter().filter(|at| found.iter().all(|f| f.0 != **at)) {
         let bench = &mut benches[follows];
         let one = if at.1 == SLOTS - 1 { followed(bench, at) } else { to_first_order(bench, at) };
         let Some(one) = one else { continue };
@@ -99,13 +106,30 @@ fn prior(site: &Site, (span, slot): At) -> (f64, f64) {
     }
 }
 
-/// Fits a conductor from several starts and along the whole curve.
-fn in_full(bench: &mut Bench, at: At) -> Option<Evaluated> {
+/// Looks for the peak of every live conductor at the loosest level of trust; keeps those that come near the best.
+fn search(benches: &mut [Bench], levels: &[Level]) -> Vec<(At, f64, Fit)> {
+    let live = live(benches);
+    let (Some(bench), Some(level)) = (benches.last_mut(), levels.last()) else { return Vec::new() };
+    let mut best = level.all.iter().map(|e| e.evidence).fold(f64::NEG_INFINITY, f64::max);
+    let base = Task::default();
+    let (zero, near) = (bench.model.start(), bench.near.0.z.clone());
+    let mut found = Vec::new();
+    for at in live {
+        let scan = Scan { base: &base, at };
+        if let Some((ohms, fit)) = scan.search(&mut bench.model, &[&near, &zero], best - MARGIN) {
+            best = best.max(fit.evidence);
+            found.push((at, ohms, fit));
+        }
+    }
+    found.retain(|f: &(At, f64, Fit)| f.2.evidence > best - MARGIN);
+    found
+}
+
+/// Fits a conductor along the whole curve, from where its peak was found.
+fn in_full(bench: &mut Bench, at: At, ohms: f64, start: &[f64]) -> Option<Evaluated> {
     let base = Task::default();
     let scan = Scan { base: &base, at };
-    let zero = bench.model.start();
-    let near = bench.near.0.z.clone();
-    let curve = scan.about_peak(&mut bench.model, &[&zero, &near], FAR);
+    let curve = scan.about_peak(&mut bench.model, start, ohms);
     let node = &curve.nodes[curve.peak()?];
     let (prior, open) = prior(bench.site, at);
     let (task, fit) = (scan.task(node.ohms), node.fit.clone());

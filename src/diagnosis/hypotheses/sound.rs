@@ -5,10 +5,7 @@ use super::super::model::{Model, Task};
 use super::super::settings::PRIOR_SOUND;
 use super::super::site::Site;
 use super::{Bench, Evaluated, FAR, Hypothesis};
-use crate::diagnosis::scan::Curve;
-
-/// Mean square residual (with the unknowns' own) above which the sound network does not explain the readings.
-const EXPLAINS: f64 = 2.0;
+use crate::diagnosis::scan::{Curve, EXPLAINS};
 
 /// Fits the sound network.
 pub(super) fn bench<'a>(prior: f64, site: &'a Site, mut model: Model<'a>) -> Option<Bench<'a>> {
