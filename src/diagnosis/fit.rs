@@ -23,8 +23,14 @@ const SETTLED: f64 = 0.1;
 const MOST_DAMPING: f64 = 1e6;
 /// Mean square residual at which a descent begins above the temperature 1.
 const STIFF: f64 = 20.0;
-/// Fall of the temperature with every step.
-const COOLING: f64 = 8.0;
+/// Least fall of the temperature when it falls.
+const COOLING: f64 = 2.0;
+/// Mean square residual, at the present temperature, below which it falls.
+const COOLS: f64 = 4.0;
+/// Steps at one temperature after which readings that are not explained there are given up.
+const LINGERS: usize = 4;
+/// Steps back to the valley after one step along it, at most.
+const CORRECTIONS: usize = 2;
 /// What the next steps together may still gain, over the last one.
 const HOPE: f64 = 2.0;
 /// Signs changed in one fit, at most.
@@ -39,6 +45,8 @@ pub(super) struct Fit {
     pub cost: f64,
     /// Logarithm of the evidence.
     pub evidence: f64,
+    /// The temperature it ended at: above 1 where the readings could not be explained.
+    pub temperature: f64,
 }
 
 /// Fits a task from a start, in so many iterations at most. `None` where the network is not solved at the start.
@@ -96,8 +104,12 @@ fn descend_from(
     let mut damping = 0.0;
     let mut determinant = f64::NAN;
     let mut scratch = Scratch::default();
+    let readings = model.residuals.len() as f64;
+    let mut lingered = 0;
     for _ in 0..iterations {
-        model.derivatives(task, &z)?;
+        if model.derivatives(task, &z).is_none() {
+            break;
+        }
         scratch.prepare(model, &z, temperature);
         determinant = scratch.normal.factor(&scratch.products, temperature)? - model.residuals.len() as f64 * math::ln(temperature);
         let cost = squares / temperature + norm(&z);
@@ -107,12 +119,29 @@ fn descend_from(
             if damping > 0.0 {
                 scratch.normal.factor(&scratch.products, a * temperature)?;
             }
+            scratch.aim(model, &z, temperature);
             let predicted = scratch.step(model, a);
             let is_whole = shorten(model, task, &mut scratch.step);
-            let trial: Vec<f64> = z.iter().zip(&scratch.step).map(|(z, d)| z + d).collect();
-            let new = model.residuals(task, &trial).unwrap_or(f64::INFINITY);
-            let new_cost = new / temperature + norm(&trial);
-            if std::env::var("TRACE").is_ok() { eprintln!("T {temperature:.1} cost {cost:.2} pred {predicted:.2} whole {is_whole} damping {damping:.2e} new {new_cost:.2}"); }
+            let mut trial: Vec<f64> = z.iter().zip(&scratch.step).map(|(z, d)| z + d).collect();
+            let mut new = model.residuals(task, &trial).unwrap_or(f64::INFINITY);
+            let mut new_cost = new / temperature + norm(&trial);
+            let mut corrections = 0;
+            // The valley bends: from where the step leads too far off it, the same derivatives lead back.
+            while corrections < CORRECTIONS && new_cost.is_finite() && new_cost > cost - 0.5 * predicted {
+                corrections += 1;
+                scratch.aim(model, &trial, temperature);
+                scratch.step(model, a);
+                shorten(model, task, &mut scratch.step);
+                let next: Vec<f64> = trial.iter().zip(&scratch.step).map(|(z, d)| z + d).collect();
+                let squares = model.residuals(task, &next).unwrap_or(f64::INFINITY);
+                let next_cost = squares / temperature + norm(&next);
+                if !(next_cost < new_cost) {
+                    new = model.residuals(task, &trial).unwrap_or(f64::INFINITY);
+                    break;
+                }
+                (trial, new, new_cost) = (next, squares, next_cost);
+            }
+            if std::env::var("TRACE").is_ok() { eprintln!("T {temperature:.1} cost {cost:.2} pred {predicted:.2} whole {is_whole} damping {damping:.2e} new {new_cost:.2} corr {corrections}"); }
             if new_cost < cost + 1e-9 {
                 done = damping == 0.0 && is_whole && temperature == cold && (cost - new_cost - predicted).abs() < SETTLED;
                 let hoped = new_cost - HOPE * (cost - new_cost);
@@ -121,14 +150,13 @@ fn descend_from(
                 }
                 (z, squares) = (trial, new);
                 damping = if damping > 0.01 { damping / 8.0 } else { 0.0 };
-                temperature = (temperature / COOLING).max(cold);
                 break;
             }
+            model.residuals(task, &z)?;
             damping = if damping == 0.0 { 0.3 } else { damping * 8.0 };
             if predicted < SETTLED || damping > MOST_DAMPING {
                 squares = model.residuals(task, &z)?;
                 done = temperature == cold;
-                temperature = (temperature / COOLING).max(cold);
                 damping = 0.0;
                 break;
             }
@@ -136,10 +164,19 @@ fn descend_from(
         if done {
             break;
         }
+        lingered += 1;
+        if temperature > cold {
+            if squares / temperature < COOLS * readings {
+                temperature = (squares / (STIFF * readings)).min(temperature / COOLING).max(cold);
+                lingered = 0;
+            } else if lingered >= LINGERS {
+                break;
+            }
+        }
     }
     let cost = squares + norm(&z);
     let misread = task.misread.map_or(0.0, |k| math::ln(model.observations.list[k].sigma) + HALF_LN_2_PI - math::ln(2.0 * MISREAD));
-    Some(Fit { z, cost, evidence: -0.5 * (cost + determinant) - own + misread })
+    Some(Fit { z, cost, evidence: -0.5 * (cost + determinant) - own + misread, temperature })
 }
 
 fn norm(z: &[f64]) -> f64 {
@@ -238,7 +275,7 @@ struct Scratch {
 }
 
 impl Scratch {
-    /// J·Jᵀ, g = Jᵀr/T + z and J·g at the present derivatives.
+    /// J·Jᵀ at the present derivatives, and what [`Self::aim`] does.
     fn prepare(&mut self, model: &Model, z: &[f64], temperature: f64) {
         let (m, n) = (model.residuals.len(), model.width);
         let row = |k: usize| &model.jacobian[k * n..][..n];
@@ -249,6 +286,13 @@ impl Scratch {
                 self.products[a * m + b] = dot(row(a), row(b));
             }
         }
+        self.aim(model, z, temperature);
+    }
+
+    /// g = Jᵀr/T + z and J·g at the present residuals and the last derivatives.
+    fn aim(&mut self, model: &Model, z: &[f64], temperature: f64) {
+        let (m, n) = (model.residuals.len(), model.width);
+        let row = |k: usize| &model.jacobian[k * n..][..n];
         self.gradient.clear();
         self.gradient.extend_from_slice(z);
         for (k, r) in model.residuals.iter().enumerate() {

@@ -133,7 +133,11 @@ impl<'a> Model<'a> {
         let mut squares = 0.0;
         for state in 0..self.spaces.len() {
             self.take(task, state);
-            self.spaces[state].follow(&self.network, &SOLVE).ok()?;
+            if self.spaces[state].follow(&self.network, &SOLVE).is_err() {
+                // A solution followed too far; from the open circuit there is another way.
+                self.spaces[state].restart();
+                self.spaces[state].follow(&self.network, &SOLVE).ok()?;
+            }
             for (k, o) in self.observations.list.iter().enumerate().filter(|(_, o)| o.state == state) {
                 self.predicted[k] = self.spaces[state].value(o.observed)?;
                 let scale = 1.0 + self.error_of(o.row, o.gain);
@@ -211,7 +215,7 @@ impl<'a> Model<'a> {
                     self.network.loads[l].watts = if is_on { nominal.loads[l].watts * math::exp(*x) } else { 0.0 };
                 }
                 Target::Exponent(l) => {
-                    self.network.loads[l].law = Law::Power { exponent: x.clamp(EXPONENT_RANGE.0, EXPONENT_RANGE.1) };
+                    self.network.loads[l].law = Law::Power { exponent: exponent(*x).0 };
                 }
                 Target::Gain(_) | Target::Drift(_) | Target::Added => {}
             }
@@ -287,10 +291,7 @@ impl<'a> Model<'a> {
                         .sum()
                 }
                 Target::Watts(l) => g.watts[l],
-                Target::Exponent(l) => {
-                    let x = self.unknowns[j];
-                    if x > EXPONENT_RANGE.0 && x < EXPONENT_RANGE.1 { g.exponent[l] } else { 0.0 }
-                }
+                Target::Exponent(l) => g.exponent[l] * exponent(self.unknowns[j]).1,
                 Target::Gain(gain) => {
                     if gain == o.gain {
                         row[j] = by_error * p.spread;
@@ -315,6 +316,13 @@ impl<'a> Model<'a> {
         }
         Some(())
     }
+}
+
+/// Exponent of a load of unknown kind and its derivative: an unknown without bounds, bent into the range of [`EXPONENT_RANGE`].
+pub(super) fn exponent(x: f64) -> (f64, f64) {
+    let share = 1.0 / (1.0 + math::exp(-x));
+    let range = EXPONENT_RANGE.1 - EXPONENT_RANGE.0;
+    (EXPONENT_RANGE.0 + range * share, range * share * (1.0 - share))
 }
 
 /// Standard deviations by which a reading falls short before its other sign is tried.

@@ -5,6 +5,7 @@
 //! no reading, no load and no branch at their far end, are one span with the run they lead to: resistance added in either is the
 //! same to every reading. So the cost of a fit grows with the readings, not with the circuit list.
 
+use super::model::exponent;
 use super::settings::{self, DiagnosisSettings};
 use crate::network::{self, Assumption, Law, Load, Network, SLOTS, Span, slot};
 use crate::quantity::math;
@@ -239,7 +240,7 @@ impl Reduced {
                 continue;
             }
             let (law, rated_volts, power_factor) = lump.law.unwrap_or((Law::Power { exponent: 1.0 }, rated, 1.0));
-            let law = if kind.is_some() && lump.law.is_some() { law } else { Law::Power { exponent: settings::EXPONENT.0 } };
+            let law = if kind.is_some() && lump.law.is_some() { law } else { Law::Power { exponent: exponent(settings::EXPONENT.0).0 } };
             let mut add = |watts: f64, unlisted: Option<f64>| {
                 self.network.loads.push(Load { at, between: (a, b), rated_volts, watts, law, power_factor });
                 self.loads.push(LumpedLoad { unlisted, kind_unknown: kind.is_none() || lump.law.is_none(), state: None });
