@@ -68,15 +68,19 @@ pub(super) fn rank(visit: &Visit, levels: &[Level]) -> Vec<Weighed> {
     ranked
 }
 
-/// Faults that no reading speaks of: in the runs that were cut away, grouped by where they hang. They weigh what the sound network
+/// Faults that no reading speaks of: in the runs that were cut away, a branch at a time. They weigh what the sound network
 /// weighs.
 fn hidden(visit: &Visit, levels: &[Level]) -> Vec<(CauseKind, Vec<usize>, f64)> {
     let Some(site) = levels.first().map(|l| l.site) else { return Vec::new() };
     let sound: Vec<f64> = levels.iter().filter_map(|l| Some(math::ln(l.prior) + l.all.first()?.evidence)).collect();
     let sound = log_sum(&sound);
     let mut groups: BTreeMap<(usize, usize), (Vec<usize>, f64)> = BTreeMap::new();
+    let mut top = vec![None; visit.runs.len()];
+    for &run in visit.tree.order.iter().filter(|r| site.reduced.attached[**r] != Some(**r)) {
+        top[run] = visit.tree.parent[run].and_then(|p| top[p]).or(Some(run));
+    }
     for &run in &visit.tree.order {
-        let Some(at) = site.reduced.attached[run].filter(|at| *at != run) else { continue };
+        let Some(at) = top[run] else { continue };
         let Some(legs) = visit.runs[run].legs.as_ref().map(|l| l.value) else { continue };
         let lines = legs.iter().map(|l| (l.index(), site.prior_of_hot()));
         let neutral = legs.neutral.then(|| (SLOTS - 1, site.prior_of_neutral(legs.count() > 1)));

@@ -61,15 +61,15 @@ pub(super) fn fit(model: &mut Model, task: &Task, start: &[f64], iterations: usi
 pub(super) fn fit_above(model: &mut Model, task: &Task, start: &[f64], iterations: usize, least: f64) -> Option<Fit> {
     model.residuals(task, start)?;
     model.take_signs();
-    let mut best = descend(model, task, start, iterations, least)?;
+    let (mut best, mut turned) = descend(model, task, start, iterations, least)?;
     for _ in 0..MOST_FLIPS {
         model.residuals(task, &best.z)?;
-        let Some(doubtful) = model.doubtful() else { break };
-        model.flip(doubtful);
+        let Some(flipped) = turned.or_else(|| model.doubtful()) else { break };
+        model.flip(flipped);
         match descend(model, task, &best.z, iterations, least) {
-            Some(other) if other.cost < best.cost - SETTLED => best = other,
+            Some((other, next)) if other.evidence > best.evidence + SETTLED => (best, turned) = (other, next),
             _ => {
-                model.flip(doubtful);
+                model.flip(flipped);
                 break;
             }
         }
@@ -81,14 +81,15 @@ pub(super) fn fit_above(model: &mut Model, task: &Task, start: &[f64], iteration
 pub(super) fn fit_hot(model: &mut Model, task: &Task, start: &[f64], iterations: usize, temperature: f64) -> Option<Fit> {
     model.residuals(task, start)?;
     model.take_signs();
-    descend_from(model, task, start, iterations, (temperature, temperature), f64::NEG_INFINITY)
+    descend_from(model, task, start, iterations, (temperature, temperature), f64::NEG_INFINITY).map(|found| found.0)
 }
 
-fn descend(model: &mut Model, task: &Task, start: &[f64], iterations: usize, least: f64) -> Option<Fit> {
+fn descend(model: &mut Model, task: &Task, start: &[f64], iterations: usize, least: f64) -> Option<(Fit, Option<usize>)> {
     descend_from(model, task, start, iterations, (f64::INFINITY, 1.0), least)
 }
 
-/// Descends from a temperature (at most what the start's misfit asks for) to another.
+/// Descends from a temperature (at most what the start's misfit asks for) to another. Also returns the reading without a sign of
+/// its own that all others would rather see with the other one.
 fn descend_from(
     model: &mut Model,
     task: &Task,
@@ -96,7 +97,7 @@ fn descend_from(
     iterations: usize,
     (hot, cold): (f64, f64),
     least: f64,
-) -> Option<Fit> {
+) -> Option<(Fit, Option<usize>)> {
     let own: f64 = model.observations.list.iter().map(|o| math::ln(o.sigma) + HALF_LN_2_PI).sum();
     let mut z = start.to_vec();
     let mut squares = model.residuals(task, &z)?;
@@ -176,7 +177,9 @@ fn descend_from(
     }
     let cost = squares + norm(&z);
     let misread = task.misread.map_or(0.0, |k| math::ln(model.observations.list[k].sigma) + HALF_LN_2_PI - math::ln(2.0 * MISREAD));
-    Some(Fit { z, cost, evidence: -0.5 * (cost + determinant) - own + misread, temperature })
+    let (either, turned) = if temperature > 1.0 { (0.0, None) } else { scratch.either_sign(model, &z) };
+    let evidence = -0.5 * (cost + determinant) - own + misread + either;
+    Some((Fit { z, cost, evidence, temperature }, turned))
 }
 
 fn norm(z: &[f64]) -> f64 {
@@ -300,6 +303,35 @@ impl Scratch {
         }
         self.along.clear();
         self.along.extend((0..m).map(|k| dot(row(k), &self.gradient)));
+    }
+
+    /// What readings without a sign gain by having been either: ln(1 + p₋/p₊) each, with the probabilities of the reading with its
+    /// present and the other sign given all others, to first order. And the one whose other sign is the most probable.
+    fn either_sign(&mut self, model: &Model, z: &[f64]) -> (f64, Option<usize>) {
+        let unsigned: Vec<usize> = model.unsigned().collect();
+        if unsigned.is_empty() || self.normal.factor(&self.products, 1.0).is_none() {
+            return (0.0, None);
+        }
+        let (m, n) = (model.residuals.len(), model.width);
+        let mut weights: Vec<f64> = (0..m).map(|k| model.residuals[k] - dot(&model.jacobian[k * n..][..n], z)).collect();
+        self.normal.solve(&mut weights);
+        let (mut gain, mut turned) = (0.0, (0.0, None));
+        let mut unit = vec![0.0; m];
+        for k in unsigned {
+            unit.fill(0.0);
+            unit[k] = 1.0;
+            self.normal.solve_lower(&mut unit);
+            let precision = dot(&unit, &unit);
+            let read = model.observations.list[k].value / model.observations.list[k].sigma;
+            let expected = read + weights[k] / precision;
+            let odds = -2.0 * read * expected * precision;
+            gain += if odds < 30.0 { math::ln_1p(math::exp(odds)) } else { odds };
+            if odds > turned.0 + SETTLED {
+                turned = (odds, Some(k));
+            }
+        }
+        // Until it has been turned, the sign that is the more probable is not credited: the fit is not at it.
+        (if turned.1.is_some() { 0.0 } else { gain }, turned.1)
     }
 
     /// The step for a normal matrix J·Jᵀ + aT·1 already factored, and the decrease of the cost it predicts.

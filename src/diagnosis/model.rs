@@ -6,7 +6,7 @@ use super::reduce::Reduced;
 use super::settings::{ADDED, EXPONENT_RANGE};
 use crate::network::{Gradient, Law, Network, Observed, SLOTS, SolveSettings, Span, Workspace};
 use crate::quantity::math;
-use crate::visit::Conductor;
+use crate::visit::{Conductor, Quantity};
 
 /// Ohms of an open conductor.
 pub(super) const OPEN: f64 = 1e6;
@@ -169,6 +169,12 @@ impl<'a> Model<'a> {
         for (k, o) in self.observations.list.iter().enumerate() {
             self.signs[k] = o.sign.unwrap_or_else(|| self.predicted[k].signum());
         }
+    }
+
+    /// Readings without a sign of their own.
+    pub fn unsigned(&self) -> impl Iterator<Item = usize> + '_ {
+        let list = self.observations.list.iter().enumerate();
+        list.filter(|(_, o)| o.sign.is_none() && matches!(o.quantity, Quantity::NeutralGround | Quantity::NeutralCurrent)).map(|(k, _)| k)
     }
 
     /// A reading without a sign of its own that the last prediction is far from, and might be nearer with the other one.
