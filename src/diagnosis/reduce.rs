@@ -1,6 +1,7 @@
 //! The network cut down to what the readings can see.
 //!
-//! Runs with a measured location at or below them are kept, the service runs always. What hangs unmeasured on a kept run becomes
+//! Runs with a measured location at or below them are kept, the service runs always, and runs with a stated load beyond the last
+//! measured location of a branch circuit: without it the drop on the way there would be another. What else hangs unmeasured on a kept run becomes
 //! load at its far end (the drop along it is lost: a per cent or two of the load's current). Kept runs that only lead on, with
 //! no reading, no load and no branch at their far end, are one span with the run they lead to: resistance added in either is the
 //! same to every reading. So the cost of a fit grows with the readings, not with the circuit list.
@@ -83,12 +84,24 @@ impl Kept {
                 children[parent] += 1;
             }
         }
+        for &run in &tree.order {
+            let is_branch = |p: &usize| is_kept[*p] && tree.parent[*p].is_some() && !is_feeder(visit, *p);
+            if let Some(parent) = tree.parent[run].filter(is_branch).filter(|_| !is_kept[run] && !visit.runs[run].loads.is_empty()) {
+                is_kept[run] = true;
+                children[parent] += 1;
+            }
+        }
         let mut attached = vec![None; n];
         for &run in &tree.order {
             attached[run] = if is_kept[run] { Some(run) } else { tree.parent[run].and_then(|p| attached[p]) };
         }
         Self { is_kept, children, attached }
     }
+}
+
+/// It feeds circuits with breakers of their own.
+fn is_feeder(visit: &Visit, run: usize) -> bool {
+    visit.tree.children[run].iter().any(|c| visit.runs[*c].breaker.is_some())
 }
 
 /// Loads that share node, conductors and kind, as one: the watts add. For stated ones the sum alone matters; the sum of loads of
