@@ -1,6 +1,7 @@
 //! From evidence to probabilities of causes.
 
 use super::hypotheses::{Evaluated, Hypothesis};
+use super::model::Model;
 use super::scan::log_sum;
 use super::site::Site;
 use crate::network::SLOTS;
@@ -22,6 +23,8 @@ pub(super) struct Weighed {
 pub(super) struct Level<'a> {
     /// The site at that level.
     pub site: &'a Site,
+    /// Its model.
+    pub model: Model<'a>,
     /// Probability of the level before any reading.
     pub prior: f64,
     /// Its hypotheses, the sound one first.

@@ -70,13 +70,14 @@ pub(super) fn evaluate<'a>(sites: &'a [(f64, Site)]) -> Option<Vec<Level<'a>>> {
         let model = Model::new(&site.reduced, &site.observations, &site.parameters)?;
         benches.push(sound::bench(*prior, site, model)?);
     }
-    let mut levels: Vec<Level> = Vec::with_capacity(benches.len());
+    let mut found: Vec<Vec<Evaluated>> = Vec::with_capacity(benches.len());
     for bench in &mut benches {
         let mut all = vec![sound::evaluated(bench)];
         all.extend(supply::evaluate(bench));
         all.extend(reading::evaluate(bench));
-        levels.push(Level { site: bench.site, prior: bench.prior, all });
+        found.push(all);
     }
-    added::evaluate(&mut benches, &mut levels);
-    Some(levels)
+    added::evaluate(&mut benches, &mut found);
+    let level = |(bench, all): (Bench<'a>, Vec<Evaluated>)| Level { site: bench.site, model: bench.model, prior: bench.prior, all };
+    Some(benches.into_iter().zip(found).map(level).collect())
 }

@@ -12,7 +12,7 @@ use super::model::{Added, Model, OPEN, Task, added_prior};
 use super::scan::{Curve, INTERVAL, Scan, log_sum};
 use crate::network::SLOTS;
 use crate::quantity::{Ohms, math};
-use crate::results::{AddedOhms, CauseKind, NeutralInterval};
+use crate::results::{AddedOhms, Cause, CauseKind};
 
 /// Ends of an interval of added ohms; no high end where an open conductor lies within.
 pub(super) type Ends = (f64, Option<f64>);
@@ -69,32 +69,89 @@ fn pool(levels: &[Level], hypothesis: Hypothesis) -> Option<Vec<(f64, f64)>> {
     (!ohms.is_empty()).then(|| ohms.iter().map(|&r| (r, at(r))).collect())
 }
 
-/// What the readings allow in the neutral of every span, with the neutral's current as fitted.
-pub(super) fn neutrals(levels: &[Level], models: &mut [Model], ranked: &[Weighed]) -> Vec<Option<(Ends, f64)>> {
-    let Some(top) = ranked.first() else { return Vec::new() };
-    let Some(&(level, best)) = top.members.first() else { return Vec::new() };
-    let site = levels[level].site;
-    let base = &levels[level].all[best];
-    let suspected = (top.cause.kind == CauseKind::Neutral).then(|| class_of(levels, top)).flatten();
-    let model = &mut models[level];
-    let Some((task, from)) = freed(model, base) else { return Vec::new() };
-    let mut all = Vec::new();
-    for span in 0..site.reduced.network.spans.len() {
-        if site.reduced.network.spans[span].ohms[SLOTS - 1].is_none() {
-            all.push(None);
-            continue;
-        }
-        let ends = if suspected == Some(site.reduced.class[span]) {
-            suspected_ends(levels, ranked, top, span)
-        } else if base.hypothesis == Hypothesis::Sound {
-            beside_sound(&levels[level], span).unwrap_or((0.0, None))
-        } else {
-            beside(model, &task, &from, span)
-        };
-        let amperes = model.residuals(&task, &from.z).and_then(|_| model.neutral_amperes(span)).unwrap_or(0.0);
-        all.push(Some((ends, amperes)));
+/// What the readings allow besides the suspected cause.
+pub(super) struct Bounds<'l, 'a> {
+    levels: &'l mut [Level<'a>],
+    ranked: &'l [Weighed],
+    top: &'l Weighed,
+    level: usize,
+    base: Evaluated,
+    task: Task,
+    from: Fit,
+}
+
+impl<'l, 'a> Bounds<'l, 'a> {
+    /// Prepares to bound resistances besides the most probable cause that the readings speak of.
+    pub fn new(levels: &'l mut [Level<'a>], ranked: &'l [Weighed]) -> Option<Self> {
+        let top = ranked.iter().find(|w| !w.members.is_empty())?;
+        let &(level, best) = top.members.first()?;
+        let base = levels.get(level)?.all.get(best)?.clone();
+        let (task, from) = freed(&mut levels[level].model, &base)?;
+        Some(Self { levels, ranked, top, level, base, task, from })
     }
-    all
+
+    /// The neutral of every span, with its current as fitted.
+    pub fn neutrals(&mut self) -> Vec<Option<(Ends, f64)>> {
+        let suspected = (self.top.cause.kind == CauseKind::Neutral).then(|| class_of(self.levels, self.top)).flatten();
+        let site = self.levels[self.level].site;
+        let mut all = Vec::with_capacity(site.reduced.network.spans.len());
+        for span in 0..site.reduced.network.spans.len() {
+            if site.reduced.network.spans[span].ohms[SLOTS - 1].is_none() {
+                all.push(None);
+                continue;
+            }
+            let ends = if suspected == Some(site.reduced.class[span]) {
+                suspected_ends(self.levels, self.ranked, self.top, span)
+            } else {
+                self.beside((span, SLOTS - 1))
+            };
+            all.push(Some((ends, 0.0)));
+        }
+        let model = &mut self.levels[self.level].model;
+        if model.residuals(&self.task, &self.from.z).is_some() {
+            for (span, known) in all.iter_mut().enumerate() {
+                if let Some((_, amperes)) = known {
+                    *amperes = model.neutral_amperes(span).unwrap_or(0.0);
+                }
+            }
+        }
+        all
+    }
+
+    /// The resistance another cause is about, wherever among its runs it allows most.
+    pub fn of(&mut self, cause: &Cause) -> Option<Ends> {
+        let slot = match cause.kind {
+            CauseKind::Neutral => SLOTS - 1,
+            CauseKind::Hot(leg) => leg.index(),
+            _ => return None,
+        };
+        let reduced = &self.levels[self.level].site.reduced;
+        let is_asked = |s: &usize| reduced.network.spans[*s].ohms[slot].is_some() && reduced.runs[*s].iter().any(|r| cause.runs.contains(r));
+        let spans: Vec<usize> = (0..reduced.runs.len()).filter(is_asked).collect();
+        let runs: usize = spans.iter().map(|s| reduced.runs[*s].len()).sum();
+        if runs < cause.runs.len() || spans.is_empty() {
+            return None;
+        }
+        let ends: Vec<Ends> = spans.into_iter().map(|s| self.beside((s, slot))).collect();
+        let low = ends.iter().map(|e| e.0).fold(f64::INFINITY, f64::min);
+        Some((low, ends.iter().map(|e| e.1).try_fold(0.0, |most, high| high.map(|h| h.max(most)))))
+    }
+
+    /// A conductor beside the suspected cause; beside the sound network the curve of its own hypothesis, where it has one.
+    fn beside(&mut self, at: (usize, usize)) -> Ends {
+        let level = &mut self.levels[self.level];
+        let own = (self.base.hypothesis == Hypothesis::Sound && at.1 == SLOTS - 1)
+            .then(|| level.all.iter().find(|e| e.hypothesis == Hypothesis::Neutral(at.0)))
+            .flatten()
+            .filter(|e| !e.curve.nodes.is_empty());
+        let points = |curve: &Curve| curve.nodes.iter().map(|n| (n.ohms, n.fit.evidence)).collect::<Vec<_>>();
+        if let Some(own) = own {
+            return ends(&points(&own.curve), level.all[0].evidence);
+        }
+        level.model.restart();
+        let curve = Scan { base: &self.task, at }.from_none(&mut level.model, &self.from);
+        ends(&points(&curve), self.from.evidence)
+    }
 }
 
 fn class_of(levels: &[Level], weighed: &Weighed) -> Option<usize> {
@@ -117,22 +174,6 @@ fn suspected_ends(levels: &[Level], ranked: &[Weighed], top: &Weighed, span: usi
         .collect();
     let scale: f64 = math::ln(super::settings::PRIOR_SOUND);
     ends(&curve, log_sum(&others) - scale)
-}
-
-/// Of a span beside the sound network: the curve of its own hypothesis.
-fn beside_sound(level: &Level, span: usize) -> Option<Ends> {
-    let own = level.all.iter().find(|e| e.hypothesis == Hypothesis::Neutral(span))?;
-    let curve: Vec<(f64, f64)> = own.curve.nodes.iter().map(|n| (n.ohms, n.fit.evidence)).collect();
-    (!curve.is_empty()).then(|| ends(&curve, level.all[0].evidence))
-}
-
-/// Of a span beside another cause.
-fn beside(model: &mut Model, task: &Task, from: &Fit, span: usize) -> Ends {
-    model.restart();
-    let scan = Scan { base: task, at: (span, SLOTS - 1) };
-    let curve = scan.from_none(model, from);
-    let points: Vec<(f64, f64)> = curve.nodes.iter().map(|n| (n.ohms, n.fit.evidence)).collect();
-    ends(&points, from.evidence)
 }
 
 /// A hypothesis with its added ohms left free, unless open.

@@ -5,7 +5,8 @@ use super::parameter::{Parameter, parameters};
 use super::reduce::{Reduced, reduce};
 use super::settings::{self, DiagnosisSettings, Trust};
 use crate::network::{Law, SLOTS};
-use crate::visit::{Conductor, Stage, Visit};
+use crate::quantity::math;
+use crate::visit::{Between, Conductor, Leg, Stage, Visit};
 
 /// A site at one stage and one level of trust.
 #[derive(Clone, Debug)]
@@ -20,6 +21,7 @@ pub(super) struct Site {
     pub neutrals: usize,
     /// How many line conductors there are.
     pub hots: usize,
+    listed: Vec<f64>,
 }
 
 impl Site {
@@ -43,11 +45,16 @@ impl Site {
         let fed = || visit.tree.order.iter().filter_map(|r| visit.runs.get(*r));
         let neutrals = fed().filter(|r| r.shares_neutral()).count();
         let hots = fed().filter_map(|r| r.legs.as_ref()).map(|l| l.value.count()).sum();
-        Some(Self { reduced, observations, parameters, neutrals, hots })
+        Some(Self { reduced, observations, parameters, neutrals, hots, listed: listed_neutral(visit) })
     }
 }
 
 impl Site {
+    /// Amperes in the neutral of a run by the watts of the circuit list alone, none where the list is silent.
+    pub fn listed_neutral_amperes(&self, run: usize) -> f64 {
+        self.listed.get(run).copied().unwrap_or_default()
+    }
+
     /// Probability before any reading of resistance in one line conductor of one run.
     pub fn prior_of_hot(&self) -> f64 {
         settings::PRIOR_HOT / self.hots.max(1) as f64
@@ -76,4 +83,26 @@ fn add_extra(reduced: &mut Reduced, extra: (f64, f64)) {
             reduced.add_unlisted(span, leg, Law::Power { exponent: 1.0 }, extra, None);
         }
     }
+}
+
+/// Neutral current of every run by the watts of the circuit list: the difference of its legs' currents at rated volts, at least.
+fn listed_neutral(visit: &Visit) -> Vec<f64> {
+    let volts = visit.system.line_to_neutral.0;
+    let mut watts = vec![[0.0f64; 3]; visit.runs.len()];
+    for &run in visit.tree.order.iter().rev() {
+        for load in &visit.runs[run].loads {
+            if let Between::LineNeutral(leg) = load.between {
+                watts[run][leg.index()] += load.watts.value.0;
+            }
+        }
+        if let Some(parent) = visit.tree.parent[run] {
+            (0..3).for_each(|l| watts[parent][l] += watts[run][l]);
+        }
+    }
+    let phasor = |l: usize| visit.system.phasor(Leg::ALL[l]);
+    let current = |w: &[f64; 3]| {
+        let sum = (0..3).map(|l| (w[l] * phasor(l).0, w[l] * phasor(l).1)).fold((0.0, 0.0), |a, b| (a.0 + b.0, a.1 + b.1));
+        math::hypot(sum.0, sum.1) / (volts * volts)
+    };
+    watts.iter().map(current).collect()
 }

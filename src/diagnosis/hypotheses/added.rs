@@ -4,7 +4,6 @@
 //! what the readings can't tell from them. Of the others, neutrals are followed from the sound fit (their curves are the
 //! intervals that are reported), hot legs are weighed by the first-order test alone.
 
-use super::super::evidence::Level;
 use super::super::model::{OPEN, Task};
 use super::super::scan::{Curve, Scan, log_sum};
 use super::super::settings::{ADDED, OPEN_HOT, OPEN_NEUTRAL};
@@ -30,7 +29,7 @@ const MARGIN: f64 = 12.0;
 type At = (usize, usize);
 
 /// Adds the hypotheses of added resistance to every level.
-pub(super) fn evaluate(benches: &mut [Bench], levels: &mut [Level]) {
+pub(super) fn evaluate(benches: &mut [Bench], levels: &mut [Vec<Evaluated>]) {
     let Some(site) = benches.first().map(|b| b.site) else { return };
     let searched_parameters = benches.last().map_or(&[][..], |b| &b.site.parameters[..]);
     let found = search(benches, levels);
@@ -41,7 +40,7 @@ pub(super) fn evaluate(benches: &mut [Bench], levels: &mut [Level]) {
     for (at, ohms, fit) in &found {
         for (bench, level) in benches.iter_mut().zip(&mut *levels) {
             let from = carry(&fit.z, searched_parameters, &bench.site.parameters);
-            level.all.extend(in_full(bench, *at, *ohms, &from));
+            level.extend(in_full(bench, *at, *ohms, &from));
         }
     }
     // Where the sound network does not explain the readings, what does not explain them either needs no weight.
@@ -53,7 +52,7 @@ pub(super) fn evaluate(benches: &mut [Bench], levels: &mut [Level]) {
         let Some(one) = one else { continue };
         let over = one.evidence - bench.sound.evidence;
         for (bench, level) in benches.iter().zip(&mut *levels) {
-            level.all.push(Evaluated { evidence: bench.sound.evidence + over, ..one.clone() });
+            level.push(Evaluated { evidence: bench.sound.evidence + over, ..one.clone() });
         }
     }
 }
@@ -107,10 +106,10 @@ fn prior(site: &Site, (span, slot): At) -> (f64, f64) {
 }
 
 /// Looks for the peak of every live conductor at the loosest level of trust; keeps those that come near the best.
-fn search(benches: &mut [Bench], levels: &[Level]) -> Vec<(At, f64, Fit)> {
+fn search(benches: &mut [Bench], levels: &[Vec<Evaluated>]) -> Vec<(At, f64, Fit)> {
     let live = live(benches);
     let (Some(bench), Some(level)) = (benches.last_mut(), levels.last()) else { return Vec::new() };
-    let mut best = level.all.iter().map(|e| e.evidence).fold(f64::NEG_INFINITY, f64::max);
+    let mut best = level.iter().map(|e| e.evidence).fold(f64::NEG_INFINITY, f64::max);
     let base = Task::default();
     let (zero, near) = (bench.model.start(), bench.near.0.z.clone());
     let mut found = Vec::new();
