@@ -142,7 +142,6 @@ fn descend_from(
                 }
                 (trial, new, new_cost) = (next, squares, next_cost);
             }
-            if std::env::var("TRACE").is_ok() { eprintln!("T {temperature:.1} cost {cost:.2} pred {predicted:.2} whole {is_whole} damping {damping:.2e} new {new_cost:.2} corr {corrections}"); }
             if new_cost < cost + 1e-9 {
                 done = damping == 0.0 && is_whole && temperature == cold && (cost - new_cost - predicted).abs() < SETTLED;
                 let hoped = new_cost - HOPE * (cost - new_cost);

@@ -23,8 +23,6 @@ pub(super) enum Target {
     Gain(usize),
     /// Drift of the supply at a row.
     Drift(usize),
-    /// Logarithm of added ohms; which, the task says.
-    Added,
 }
 
 /// An unknown with its prior: normal, in its own unit.
