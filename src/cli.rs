@@ -4,6 +4,8 @@
 //! worse, 2 input that could not be used; the others 0 all done, 2 something was not.
 
 mod args;
+mod batch;
+mod blank;
 mod check;
 mod files;
 mod name;
@@ -31,6 +33,8 @@ pub fn main() -> ExitCode {
     let outcome = match &arguments.command {
         args::Command::Check(a) => check::run(a),
         args::Command::Report(a) => report::run(a),
+        args::Command::Batch(a) => batch::run(a),
+        args::Command::Blank(a) => blank::run(a),
         args::Command::Rules(a) => rules::run(a),
         args::Command::Templates(a) => templates::run(a),
     };

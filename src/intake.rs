@@ -3,7 +3,18 @@
 //! Bytes become a grid (`workbook`, the only place that knows file formats), the grid's tables are found by their headers
 //! (`header`, with the words of `synonyms.toml`), and each sheet's rows become values (`sheets`, one file a sheet).
 
+mod cell;
 mod grid;
+mod header;
+mod mapping;
+mod sheets;
+mod words;
+mod workbook;
+
+#[cfg(test)]
+mod tests;
+
+pub use mapping::{Mapping, MappingProblem};
 
 use crate::diag::Output;
 use crate::visit::Visit;
@@ -31,6 +42,8 @@ pub enum Content<'a> {
 pub struct Options<'a> {
     /// Where photos come from.
     pub beside: &'a dyn Beside,
+    /// The user's own words for sheets, columns and items, over the built-in ones.
+    pub mapping: Option<&'a Mapping>,
 }
 
 /// Files that lie beside a workbook. Implemented by the command line; nothing else opens files.
@@ -83,6 +96,7 @@ pub enum Refusal {
 ///
 /// # Errors
 /// It could not be used at all; problems of single cells are in the output instead.
-pub fn read(_input: &Input, _options: &Options) -> Result<Output<Visit>, Refusal> {
-    todo!("merged from the two halves of the intake")
+pub fn read(input: &Input, options: &Options) -> Result<Output<Visit>, Refusal> {
+    let grid = workbook::read(&input.content)?;
+    sheets::assemble(grid, options)
 }

@@ -13,7 +13,7 @@ use crate::report::{self, RuleBasis, Source, TemplateError};
 use crate::results::{Balance, Diagnosis, Exposure, Finding, Signal, Verdict};
 use crate::rulebook::Rulebook;
 use crate::rules::{self, Facts};
-use crate::visit::Visit;
+use crate::visit::{System, Visit};
 use crate::wording::Language;
 use sha2::{Digest, Sha256};
 
@@ -87,7 +87,7 @@ pub fn sha256(content: &Content) -> String {
 /// The input could not be used at all.
 pub fn check(input: &Input, beside: &dyn Beside, settings: &Settings) -> Result<Checked, Refusal> {
     let sha256 = sha256(&input.content);
-    let read = intake::read(input, &intake::Options { beside })?;
+    let read = intake::read(input, &intake::Options { beside, mapping: None })?;
     let visit = read.value;
     let balance = balance::balance(&visit, &settings.balance);
     let (diagnosis, exposure) = (None, Vec::new());
@@ -141,6 +141,41 @@ pub fn document(checked: &Checked, settings: &Settings, options: &ReportOptions)
             measure: &measure,
         },
     )
+}
+
+/// Why a report could not be made.
+#[derive(Debug, thiserror::Error)]
+pub enum ReportError {
+    /// The template can't be used.
+    #[error(transparent)]
+    Template(#[from] TemplateError),
+    /// The PDF could not be made.
+    #[error("the PDF could not be made: {0}")]
+    Pdf(#[from] render::pdf::PdfError),
+    /// The XLSX could not be made.
+    #[error("the XLSX could not be made: {0}")]
+    Xlsx(#[from] render::xlsx::XlsxError),
+}
+
+/// The report files of a checked workbook: ending and bytes.
+///
+/// # Errors
+/// The template can't be used, or a file could not be made.
+pub fn render(checked: &Checked, settings: &Settings, options: &ReportOptions, html: bool) -> Result<Vec<(&'static str, Vec<u8>)>, ReportError> {
+    let document = document(checked, settings, options)?;
+    let mut files = vec![("pdf", render::pdf::write(&document)?), ("xlsx", render::xlsx::write(&document)?)];
+    if html {
+        files.push(("html", render::html::write(&document).into_bytes()));
+    }
+    Ok(files)
+}
+
+/// An empty field workbook for a system.
+///
+/// # Errors
+/// The spreadsheet library refused.
+pub fn blank(system: &System, language: &Language, rows: u32) -> Result<Vec<u8>, crate::blank::Error> {
+    crate::blank::write(&crate::blank::Options { system, language, rows })
 }
 
 /// The rules that judged something, each with its title, settings and basis.

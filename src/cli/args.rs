@@ -21,6 +21,12 @@ pub enum Command {
     /// Check workbooks, then write a PDF and an XLSX of each
     #[command(after_help = "Examples:\n  midwire report visit.xlsx\n  midwire report visit.xlsx -o out --html --page a4\n\nExit status: 0 all written, 2 something was not.")]
     Report(Report),
+    /// Report on every workbook below a folder, in parallel; goes on where it was stopped
+    #[command(after_help = "Examples:\n  midwire batch visits -o reports\n  midwire batch visits -o reports --only '2026-11-*' --jobs 4\n\nExit status: 0 all written, 2 something was not.")]
+    Batch(Batch),
+    /// Write an empty field workbook to fill in
+    #[command(after_help = "Examples:\n  midwire blank\n  midwire blank --system 208Y/120 -o shop.xlsx\n\nExit status: 0 written, 2 not.")]
+    Blank(Blank),
     /// Print the rule book in force: each rule, its limits, their basis
     #[command(after_help = "Examples:\n  midwire rules\n  midwire rules leg-sum voltage-drop\n  midwire rules --rules our-limits.toml")]
     Rules(Rules),
@@ -58,30 +64,83 @@ pub struct Report {
     /// Replace reports that exist
     #[arg(long)]
     pub force: bool,
+    /// Looks of the report.
+    #[command(flatten)]
+    pub look: Look,
+}
+
+/// `midwire batch`.
+#[derive(Args)]
+pub struct Batch {
+    /// Folder with workbooks in it, at any depth
+    pub folder: PathBuf,
+    /// Folder for the reports and the register; made if it is missing
+    #[arg(short, long, value_name = "DIR")]
+    pub output: PathBuf,
+    /// Workbooks worked on at a time [default: one a processor]
+    #[arg(short, long, value_name = "N")]
+    pub jobs: Option<usize>,
+    /// Only workbooks whose name or path below FOLDER fits a pattern, such as "2026-*.xlsx"
+    #[arg(long, value_name = "PATTERN")]
+    pub only: Option<String>,
+    /// Only workbooks changed on or after a day (YYYY-MM-DD)
+    #[arg(long, value_name = "DATE")]
+    pub since: Option<String>,
+    /// Do all again, and replace files of the same names
+    #[arg(long)]
+    pub force: bool,
+    /// No progress
+    #[arg(short, long)]
+    pub quiet: bool,
+    /// Looks of the reports.
+    #[command(flatten)]
+    pub look: Look,
+}
+
+/// What a report looks like and by which rules it judges.
+#[derive(Args)]
+pub struct Look {
     /// Write an HTML page, too
     #[arg(long)]
     pub html: bool,
     /// Paper
     #[arg(long, value_enum, default_value_t = Page::Letter)]
     pub page: Page,
-    /// Date of issue (YYYY-MM-DD) [default: the visit date]
+    /// Date of issue (YYYY-MM-DD) [default: the latest revision's, else the visit's]
     #[arg(long, value_name = "DATE")]
     pub date: Option<String>,
-    /// A report template of yours
-    #[arg(long, value_name = "FILE")]
-    pub template: Option<PathBuf>,
+    /// A report template: client, record, letter, or a file of yours
+    #[arg(long, value_name = "NAME|FILE")]
+    pub template: Option<String>,
     /// A rule book of yours (TOML) to lay over the built-in one
     #[arg(long, value_name = "FILE")]
     pub rules: Option<PathBuf>,
 }
 
 /// Paper sizes.
-#[derive(Clone, Copy, ValueEnum)]
+#[derive(Clone, Copy, Debug, ValueEnum)]
 pub enum Page {
     /// 8.5 × 11 in
     Letter,
     /// 210 × 297 mm
     A4,
+}
+
+/// `midwire blank`.
+#[derive(Args)]
+pub struct Blank {
+    /// The system as ANSI C84.1 writes it: 120/240, 120/208, 208Y/120, 240/120 …
+    #[arg(long, default_value = "120/240")]
+    pub system: String,
+    /// File to write
+    #[arg(short, long, value_name = "FILE", default_value = "field-workbook.xlsx")]
+    pub output: PathBuf,
+    /// Rows to fill in on each sheet
+    #[arg(long, default_value_t = 100, value_parser = clap::value_parser!(u32).range(1..=10_000))]
+    pub rows: u32,
+    /// Replace the file if it exists
+    #[arg(long)]
+    pub force: bool,
 }
 
 /// `midwire rules`.

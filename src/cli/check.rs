@@ -12,7 +12,7 @@ pub fn run(args: &args::Check) -> anyhow::Result<u8> {
     let settings = settings(args.rules.as_deref())?;
     let mut status = DONE;
     let mut documents = Vec::new();
-    let mut out = anstream::AutoStream::auto(std::io::BufWriter::new(std::io::stdout()));
+    let mut out = std::io::BufWriter::new(anstream::stdout());
     for path in &args.workbooks {
         let name = path.display().to_string();
         match one(path, &name, &settings) {

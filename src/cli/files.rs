@@ -96,15 +96,29 @@ impl Beside for Siblings {
         if !path.starts_with(&folder) {
             return Err(BesideError::Outside);
         }
-        bytes(&path).map_err(|_| BesideError::Unreadable)
+        bytes(&path).map_err(|e| BesideError::Unreadable(e.root_cause().to_string()))
     }
+}
+
+/// How the names of temporary files begin.
+const TEMPORARY: &str = ".midwire-";
+
+/// Removes temporary files that a killed run left in a folder. Only for who holds the folder's lock.
+pub fn clear(folder: &Path) -> anyhow::Result<()> {
+    for entry in fs::read_dir(folder).with_context(|| format!("{} can't be listed", folder.display()))? {
+        let entry = entry?;
+        if entry.file_type()?.is_file() && entry.file_name().to_string_lossy().starts_with(TEMPORARY) {
+            fs::remove_file(entry.path()).with_context(|| format!("{} can't be removed", entry.path().display()))?;
+        }
+    }
+    Ok(())
 }
 
 /// Writes a file whole or not at all: a temporary file beside it, flushed, then renamed.
 pub fn write(path: &Path, content: &[u8], force: bool) -> anyhow::Result<()> {
     let folder = path.parent().filter(|p| !p.as_os_str().is_empty()).unwrap_or_else(|| Path::new("."));
     let mut temporary = tempfile::Builder::new()
-        .prefix(".midwire-")
+        .prefix(TEMPORARY)
         .tempfile_in(folder)
         .with_context(|| format!("{} can't be written to", folder.display()))?;
     temporary.write_all(content).and_then(|()| temporary.as_file().sync_all()).with_context(|| format!("{} can't be written", path.display()))?;

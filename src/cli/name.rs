@@ -63,6 +63,12 @@ pub fn unique(name: &str, taken: &mut HashSet<String>) -> String {
     candidate
 }
 
+/// The name without the number that told it from others.
+#[must_use]
+pub fn base(name: &str) -> &str {
+    name.rsplit_once('-').filter(|(_, n)| n.parse::<u32>().is_ok_and(|n| n >= 2)).map_or(name, |(base, _)| base)
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

@@ -5,7 +5,7 @@
 //! across a load by its amperes, −j at the source by its volts (Director and Rohrer, *The generalized adjoint network and
 //! network sensitivities*, IEEE Transactions on Circuit Theory 16, 1969, 318–323; from memory, and checked against differences).
 
-use super::block::{add_unit, apply, apply_transposed, difference, dot, inverse, product, sum, transposed};
+use super::block::{add_part, add_unit, apply, apply_transposed, difference, dot, inverse, product, sum, transposed};
 use super::engine::{Engine, NONE, across, row};
 use super::model::{Law, Network, SLOTS, Source};
 use super::sensitivity::Gradient;
@@ -31,24 +31,20 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
         for node in &mut self.nodes {
             node.ct = [0.0; N];
         }
-        let mut along = None;
-        match excitation {
+        let along = match excitation {
             Excitation::Between(plus, minus, direction) => {
-                for (terminal, sign) in [(plus, -1.0), (minus, 1.0)] {
+                for (terminal, k) in [(plus, -1.0), (minus, 1.0)] {
                     let Some((node, row)) = terminal else { continue };
-                    for p in 0..PARTS {
-                        self.nodes[node].ct[row + p] += sign * direction[p];
-                    }
+                    add_part(&mut self.nodes[node].ct, row, k, &direction);
                 }
+                None
             }
             Excitation::Along((node, row), direction) => {
                 let mut volts = [0.0; N];
-                for p in 0..PARTS {
-                    volts[row + p] = -direction[p];
-                }
-                along = Some((node, volts));
+                add_part(&mut volts, row, -1.0, &direction);
+                Some((node, volts))
             }
-        }
+        };
         self.sum_up_adjoint(along);
         self.run_down_adjoint(along);
     }
@@ -62,7 +58,7 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
         for (at, node) in self.nodes.iter_mut().enumerate() {
             let d = transposed(&node.d);
             let mut zd = match &self.supply {
-                Some(z) if at == 0 => product(&transposed(z), &d),
+                Some(z) if at == 0 => product(&transposed(z.as_ref()), &d),
                 _ => impede_block::<N, PARTS>(&conjugate(&node.z), &d),
             };
             add_unit(&mut zd);
@@ -110,10 +106,10 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
     /// Reads the gradient off the adjoint network.
     pub fn gradient(&self, network: &Network, into: &mut Gradient) {
         into.electrode = 0.0;
-        let neutral = row::<PARTS>(3);
+        let neutral = row::<N, PARTS>(3);
         for node in self.nodes.iter().filter(|n| n.run != NONE) {
             for slot in 0..SLOTS {
-                let at = row::<PARTS>(slot);
+                let at = row::<N, PARTS>(slot);
                 let is_there = self.has[node.run][slot];
                 into.ohms[node.run][slot] = if is_there { node.z[at].0 * part_product::<N, PARTS>(&node.i, &node.it, at) } else { 0.0 };
             }
@@ -136,9 +132,9 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
             total = sum(&total, &node.it);
         }
         std::array::from_fn(|leg| {
-            let (direction, at) = (source.direction[leg], row::<PARTS>(leg));
+            let (direction, at) = (source.direction[leg], row::<N, PARTS>(leg));
             match PARTS {
-                1 if leg == 2 => 0.0,
+                _ if row::<N, PARTS>(leg) == row::<N, PARTS>(3) => 0.0,
                 1 => -total[at] * direction.re,
                 _ => -(total[at] * direction.re + total[at + 1] * direction.im),
             }

@@ -97,3 +97,10 @@ pub(super) fn difference<const N: usize>(a: &[f64; N], b: &[f64; N]) -> [f64; N]
 pub(super) fn dot<const N: usize>(a: &[f64; N], b: &[f64; N]) -> f64 {
     a.iter().zip(b).map(|(x, y)| x * y).sum()
 }
+
+/// Adds k·part to the rows from `at` on.
+pub(super) fn add_part<const N: usize, const PARTS: usize>(to: &mut [f64; N], at: usize, k: f64, part: &[f64; PARTS]) {
+    for (row, x) in to[at..].iter_mut().zip(part) {
+        *row += k * x;
+    }
+}

@@ -79,16 +79,21 @@ pub(super) struct Engine<const N: usize, const PARTS: usize> {
     /// Open-circuit volts.
     pub emf: [f64; N],
     /// Impedance of the transformer; its terminals are then node 0.
-    pub supply: Option<Block<N>>,
+    pub supply: Option<Box<Block<N>>>,
     /// Volts inserted into one run, driving away from the source.
     pub inserted: Option<(usize, [f64; N])>,
     /// The adjoint blocks belong to the last linearisation.
     pub is_transposed: bool,
 }
 
-/// First row of a slot.
-pub(super) fn row<const PARTS: usize>(slot: usize) -> usize {
-    if PARTS == 2 { 2 * slot } else { slot.min(2) }
+/// First row of a slot. Where there is no third leg, the neutral takes its place.
+pub(super) fn row<const N: usize, const PARTS: usize>(slot: usize) -> usize {
+    PARTS * if N == SLOTS * PARTS { slot } else { slot.min(2) }
+}
+
+/// How many legs there is room for.
+fn legs<const N: usize, const PARTS: usize>() -> usize {
+    N / PARTS - 1
 }
 
 impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
@@ -101,7 +106,7 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
             has: network.spans.iter().map(|s| s.ohms.map(|o| o.is_some())).collect(),
             loads: Vec::with_capacity(network.loads.len()),
             emf: [0.0; N],
-            supply: with_supply.then(unit),
+            supply: with_supply.then(|| Box::new(unit())),
             inserted: None,
             is_transposed: false,
         };
@@ -157,7 +162,7 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
             }
             self.loads.push(Attached {
                 node: self.place[l.at],
-                rows: (row::<PARTS>(a), row::<PARTS>(b)),
+                rows: (row::<N, PARTS>(a), row::<N, PARTS>(b)),
                 v: [0.0; PARTS],
                 i: [0.0; PARTS],
                 y: Admittance::default(),
@@ -181,7 +186,7 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
                     return Err(fault);
                 }
                 if let Some(ohms) = ohms {
-                    node.z[row::<PARTS>(slot)..][..PARTS].fill((ohms.min(OPEN), reactance));
+                    node.z[row::<N, PARTS>(slot)..][..PARTS].fill((ohms.min(OPEN), reactance));
                 }
             }
             node.electrode = match span.electrode {
@@ -203,15 +208,15 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
         if !numbers.chain(impedances.iter().flat_map(|z| [z.re, z.im])).all(f64::is_finite) || impedances.iter().any(|z| z.re < 0.0) {
             return Err(Fault::Source);
         }
-        for leg in (0..3).filter(|&leg| PARTS == 2 || leg < 2) {
+        for leg in 0..legs::<N, PARTS>() {
             let direction = source.direction[leg];
-            let at = row::<PARTS>(leg);
+            let at = row::<N, PARTS>(leg);
             for (part, d) in [direction.re, direction.im].into_iter().take(PARTS).enumerate() {
                 self.emf[at + part] = source.volts[leg] * d;
             }
         }
         if let Some(supply) = self.supply.as_mut() {
-            *supply = transformer::<N, PARTS>(source);
+            **supply = transformer::<N, PARTS>(source);
         }
         Ok(())
     }
@@ -250,7 +255,7 @@ fn is_sound(load: &Load) -> bool {
 fn transformer<const N: usize, const PARTS: usize>(source: &Source) -> Block<N> {
     let mut z = [[0.0; N]; N];
     let mut add = |a: usize, b: usize, ohms: Phasor, sign: f64| {
-        let (a, b) = (row::<PARTS>(a), row::<PARTS>(b));
+        let (a, b) = (row::<N, PARTS>(a), row::<N, PARTS>(b));
         for p in 0..PARTS {
             z[a + p][b + p] += sign * ohms.re;
         }
@@ -259,7 +264,7 @@ fn transformer<const N: usize, const PARTS: usize>(source: &Source) -> Block<N> 
             z[a + 1][b] += sign * ohms.im;
         }
     };
-    let legs = if PARTS == 2 { 3 } else { 2 };
+    let legs = legs::<N, PARTS>();
     let tapped: Vec<usize> = (0..legs).filter(|&l| source.volts[l] > 0.0 && source.direction[l].im == 0.0).collect();
     for leg in 0..legs {
         add(leg, leg, source.own, 1.0);

@@ -5,7 +5,8 @@
 
 use super::model::{Law, Load, Network};
 use super::solution::Solution;
-use super::solve::{SolveSettings, Workspace};
+use super::solve::SolveSettings;
+use super::workspace::Workspace;
 
 /// Solutions whose loads all agree within so many volts are one.
 const SAME: f64 = 0.01;

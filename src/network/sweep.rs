@@ -10,29 +10,41 @@
 //!
 //! S and s are added to D and c of the run that feeds it: the network is summed up towards the source, then the volts run down.
 //! That is Gaussian elimination of the nodal equations from the leaves, in time linear in the runs and without recursion, and
-//! written with ohms, so that neither 0 Ω nor an open conductor (10¹² Ω here) loses digits.
+//! written with ohms, so that 0 Ω needs no exception, and an open conductor (10¹² Ω here) costs no more than nanovolts.
 
-use super::block::{Block, add_unit, apply, difference, inverse, product, sum};
+use super::block::{Block, add_part, add_unit, apply, difference, dot, inverse, product, sum};
 use super::engine::{Attached, Engine, Node, across, row};
 use super::law::admittance;
-use super::model::{Law, Load, Network};
+use super::model::{Law, Network};
 
 /// A load whose volts changed by more than this share in a step is linearised by its chord. The tangent of a constant-power load
 /// far from the solution points away from it.
 const FAR: f64 = 0.2;
 
+/// A law is bent where its tangent's slope differs from its chord's by more than this share.
+const BENT: f64 = 0.01;
+
+/// How loads are linearised.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Slope {
+    /// By their tangents; loads far from the solution may take the chord.
+    Tangent,
+    /// By their chords.
+    Chord,
+}
+
 impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
-    /// One Newton step, and the largest change of a load's volts.
-    pub fn step(&mut self, network: &Network) -> f64 {
-        self.linearise(network);
+    /// One step, Newton's with tangents, and the largest change of a load's volts.
+    pub fn step(&mut self, network: &Network, slope: Slope) -> f64 {
+        self.linearise(network, slope);
         self.sum_up();
         self.run_down();
         self.move_loads()
     }
 
     /// D and c of every node from its own loads and electrode.
-    fn linearise(&mut self, network: &Network) {
-        let neutral = row::<PARTS>(3);
+    fn linearise(&mut self, network: &Network, slope: Slope) {
+        let neutral = row::<N, PARTS>(3);
         self.is_transposed = false;
         for node in &mut self.nodes {
             node.d = [[0.0; N]; N];
@@ -43,7 +55,10 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
         }
         for (attached, load) in self.loads.iter_mut().zip(&network.loads) {
             attached.y = admittance(load, attached.square());
-            attached.stamp(load, &mut self.nodes[attached.node]);
+            if slope == Slope::Chord || (attached.far && matches!(load.law, Law::Electronic { .. })) {
+                attached.y.bend = 0.0;
+            }
+            attached.stamp(&mut self.nodes[attached.node]);
         }
     }
 
@@ -103,7 +118,7 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
 
     /// Amperes of the loads at their volts, and of the runs as sums of them: what flows into a node flows out of it.
     pub fn settle(&mut self, network: &Network) {
-        let neutral = row::<PARTS>(3);
+        let neutral = row::<N, PARTS>(3);
         for node in &mut self.nodes {
             node.i = [0.0; N];
             for k in neutral..neutral + PARTS {
@@ -113,11 +128,9 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
         for (attached, load) in self.loads.iter_mut().zip(&network.loads) {
             attached.y = admittance(load, attached.square());
             attached.i = attached.turned().map(|v| attached.y.chord * v);
-            let i = &mut self.nodes[attached.node].i;
-            for p in 0..PARTS {
-                i[attached.rows.0 + p] += attached.i[p];
-                i[attached.rows.1 + p] -= attached.i[p];
-            }
+            let node = &mut self.nodes[attached.node];
+            add_part(&mut node.i, attached.rows.0, 1.0, &attached.i);
+            add_part(&mut node.i, attached.rows.1, -1.0, &attached.i);
         }
         for at in (0..self.nodes.len()).rev() {
             let (fed, rest) = self.nodes.split_at_mut(at);
@@ -130,7 +143,7 @@ impl<const N: usize, const PARTS: usize> Engine<N, PARTS> {
 
 impl<const PARTS: usize> Attached<PARTS> {
     fn square(&self) -> f64 {
-        self.v.iter().map(|v| v * v).sum()
+        dot(&self.v, &self.v)
     }
 
     /// (1 − j·turn)·v.
@@ -143,41 +156,35 @@ impl<const PARTS: usize> Attached<PARTS> {
     }
 
     /// Adds its linearisation I ≈ g·v + (I₀ − g·v₀) to its node.
-    fn stamp<const N: usize>(&self, load: &Load, node: &mut Node<N>) {
-        let is_chord = self.far && matches!(load.law, Law::Electronic { .. });
-        let bend = if is_chord { 0.0 } else { self.y.bend };
-        let (turned, square) = (self.turned(), self.square());
+    fn stamp<const N: usize>(&self, node: &mut Node<N>) {
         let (a, b) = self.rows;
-        for p in 0..PARTS {
-            for q in 0..PARTS {
+        let bent = self.turned().map(|v| self.y.bend * v);
+        for (p, bent) in bent.iter().enumerate() {
+            for (q, v) in self.v.iter().enumerate() {
                 let straight = match (p, q) {
                     (p, q) if p == q => 1.0,
                     (0, _) => self.turn,
                     _ => -self.turn,
                 };
-                let g = self.y.chord * straight + bend * turned[p] * self.v[q];
+                let g = self.y.chord * straight + bent * v;
                 node.d[a + p][a + q] += g;
                 node.d[b + p][b + q] += g;
                 node.d[a + p][b + q] -= g;
                 node.d[b + p][a + q] -= g;
             }
-            node.c[a + p] -= bend * turned[p] * square;
-            node.c[b + p] += bend * turned[p] * square;
         }
+        add_part(&mut node.c, a, -self.square(), &bent);
+        add_part(&mut node.c, b, self.square(), &bent);
     }
 
     /// Takes new volts; returns how far they are from the old ones.
     fn move_to(&mut self, v: [f64; PARTS]) -> f64 {
-        let (mut change, mut new, mut along) = (0.0, 0.0, 0.0);
-        for p in 0..PARTS {
-            change += (v[p] - self.v[p]) * (v[p] - self.v[p]);
-            new += v[p] * v[p];
-            along += v[p] * self.v[p];
-        }
-        let old = self.square();
+        let moved = difference(&v, &self.v);
+        let (change, old, new) = (dot(&moved, &moved), self.square(), dot(&v, &v));
         self.far = change > FAR * FAR * old.max(new);
-        // Exponents below 1 are steepest at zero: a tangent that leads past it leads too far.
-        let is_past_zero = along < 0.0 && self.y.bend != 0.0;
+        // Exponents below 1 are steepest at zero: a tangent from where the law is bent that leads past it leads too far.
+        let is_bent = self.y.bend.abs() * old > BENT * self.y.chord;
+        let is_past_zero = is_bent && dot(&v, &self.v) < 0.0;
         self.v = if is_past_zero { v.map(|x| 0.1 * x) } else { v };
         change.sqrt()
     }

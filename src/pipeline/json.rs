@@ -1,5 +1,7 @@
 //! The JSON document of `check --json`; its schema is docs/output.schema.json.
 
+mod diagnosis;
+
 use super::Checked;
 use crate::diag::Problem;
 use crate::results::{Balance, Finding, LegLoad, Verdict};
@@ -25,9 +27,8 @@ pub fn document(checked: &Checked, language: &Language, all: bool) -> Value {
         "readings": visit.rows.iter().flat_map(|row| readings(visit, row)).collect::<Vec<_>>(),
         "circuits": visit.runs.iter().map(circuit).collect::<Vec<_>>(),
         "findings": findings,
-        // Not fitted to the network: no ranking of causes and no volts under an open neutral.
-        "diagnosis": Value::Null,
-        "exposure": Value::Null,
+        "diagnosis": checked.diagnosis.as_ref().map(|d| diagnosis::diagnosis(d, visit, language)),
+        "exposure": checked.exposure.iter().map(|e| diagnosis::exposure(e, visit)).collect::<Vec<_>>(),
         "balance": checked.balance.as_ref().map(|b| balance(b, visit)),
     })
 }

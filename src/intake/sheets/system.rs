@@ -1,0 +1,128 @@
+//! The system of the service: by its name, or by its two nominal voltages.
+
+use crate::quantity::Volts;
+use crate::visit::{Arrangement, System};
+
+/// The system a text names; `None` where it names none, or one that is not known.
+pub(super) fn named(text: &str) -> Option<System> {
+    let lower = text.to_lowercase();
+    let says = |words: &[&str]| words.iter().any(|w| lower.contains(w));
+    let numbers = voltages(&lower);
+    let wye = says(&["wye", "star", "\u{3bb}"]) || letter_beside_digits(&lower, 'y');
+    let delta = says(&["delta", "\u{394}", "\u{3b4}", "high leg", "high-leg", "wild leg", "wild-leg", "red leg"])
+        || letter_beside_digits(&lower, 'd');
+    let three = says(&["3ph", "3 ph", "3-ph", "three ph", "three-ph", "3\u{f8}", "3 \u{f8}", "3\u{3c6}", "3 \u{3c6}", "4w", "4 w", "4-w"]);
+    let single = says(&["1ph", "1 ph", "1-ph", "single", "1\u{f8}", "1 \u{f8}", "1\u{3c6}", "1 \u{3c6}", "split", "3w", "3 w", "3-w"]);
+    match numbers[..] {
+        [230] if !three => System::named("230"),
+        [a, b] => pair(a, b, Words { wye, delta, three, single }),
+        _ => None,
+    }
+}
+
+#[derive(Clone, Copy)]
+struct Words {
+    wye: bool,
+    delta: bool,
+    three: bool,
+    single: bool,
+}
+
+fn pair(a: u32, b: u32, words: Words) -> Option<System> {
+    let large_first = a > b;
+    match (a.min(b), a.max(b)) {
+        (120, 240) => {
+            let delta = words.delta || words.three || (large_first && !words.single);
+            if words.wye { None } else { System::named(if delta { "240/120" } else { "120/240" }) }
+        }
+        (120, 208) => System::named(if words.wye || words.three || large_first { "208Y/120" } else { "120/208" }),
+        _ if words.delta => None,
+        (low, high) => System::by_voltages(Volts(f64::from(low)), Volts(f64::from(high))),
+    }
+}
+
+/// The nominal voltages in a text: whole numbers of 50 V and more.
+fn voltages(text: &str) -> Vec<u32> {
+    let numbers = text.split(|c: char| !c.is_ascii_digit()).filter_map(|digits| digits.parse().ok());
+    numbers.filter(|v| (50..=1000).contains(v)).collect()
+}
+
+/// The letter stands directly behind digits, as in `208Y/120`.
+fn letter_beside_digits(text: &str, letter: char) -> bool {
+    let behind_digit = |(i, _): (usize, &str)| {
+        let after = text[i + letter.len_utf8()..].chars().next();
+        text[..i].ends_with(|c: char| c.is_ascii_digit()) && !after.is_some_and(char::is_alphabetic)
+    };
+    text.match_indices(letter).any(behind_digit)
+}
+
+/// A system with other nominal voltages than its name says, where they are of its arrangement.
+pub(super) fn with_nominal(system: &System, line_to_neutral: Volts, line_to_line: Volts) -> Option<System> {
+    if (line_to_neutral, line_to_line) == (system.line_to_neutral, system.line_to_line) {
+        return Some(system.clone());
+    }
+    let usual = system.line_to_line / system.line_to_neutral;
+    let ratio = line_to_line / line_to_neutral;
+    if (ratio / usual - 1.0).abs() > 0.03 {
+        return None;
+    }
+    let by_voltages = System::by_voltages(line_to_neutral, line_to_line)?;
+    match system.arrangement {
+        Arrangement::SplitPhase | Arrangement::Wye => Some(by_voltages),
+        arrangement => Some(System { arrangement, line_to_neutral, line_to_line, name: system.name.clone() }),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn systems_are_told_by_name_and_by_voltages() {
+        for (text, expected) in [
+            ("120/240", "120/240"),
+            ("120/240 V", "120/240"),
+            ("120/240V 1\u{f8} 3W", "120/240"),
+            ("120 / 240 single phase", "120/240"),
+            ("120-240", "120/240"),
+            ("split phase 120/240", "120/240"),
+            ("240/120 single-phase", "120/240"),
+            ("240/120", "240/120"),
+            ("240/120 delta", "240/120"),
+            ("120/240 high leg delta", "240/120"),
+            ("120/240 3ph 4W", "240/120"),
+            ("120/208", "120/208"),
+            ("120/208 single phase", "120/208"),
+            ("208Y/120", "208Y/120"),
+            ("208y/120V", "208Y/120"),
+            ("208/120", "208Y/120"),
+            ("120/208Y", "208Y/120"),
+            ("120/208 wye", "208Y/120"),
+            ("120/208V 3\u{f8} 4W", "208Y/120"),
+            ("480Y/277", "480Y/277"),
+            ("277/480", "480Y/277"),
+            ("480/277 V", "480Y/277"),
+            ("600Y/347", "600Y/347"),
+            ("347/600", "600Y/347"),
+            ("230/400", "230/400"),
+            ("400/230 V", "230/400"),
+            ("230", "230"),
+            ("230 V", "230"),
+            ("127/220", "220Y/127"),
+            ("115/230", "115/230"),
+        ] {
+            assert_eq!(named(text).map(|s| s.name).as_deref(), Some(expected), "{text}");
+        }
+        for text in ["", "240", "120", "unknown", "120/240 wye", "120/300", "three phase", "99999/120"] {
+            assert_eq!(named(text), None, "{text}");
+        }
+    }
+
+    #[test]
+    fn nominal_voltages_must_be_of_the_arrangement() {
+        let split = System::split_phase_120_240();
+        assert_eq!(with_nominal(&split, Volts(115.0), Volts(230.0)).map(|s| s.name).as_deref(), Some("115/230"));
+        assert_eq!(with_nominal(&split, Volts(120.0), Volts(240.0)), Some(split.clone()));
+        assert_eq!(with_nominal(&split, Volts(120.0), Volts(208.0)), None);
+    }
+}

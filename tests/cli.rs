@@ -1,0 +1,210 @@
+//! The program as a user runs it: exit status, channels, output files, the JSON document against its published schema.
+
+use std::fs;
+use std::path::{Path, PathBuf};
+use std::process::{Command, Output};
+
+fn root() -> PathBuf {
+    PathBuf::from(env!("CARGO_MANIFEST_DIR"))
+}
+
+fn sample(name: &str) -> PathBuf {
+    root().join("samples").join(name)
+}
+
+fn midwire(arguments: &[&str]) -> Output {
+    Command::new(env!("CARGO_BIN_EXE_midwire")).args(arguments).output().expect("the program starts")
+}
+
+fn said(output: &Output) -> String {
+    String::from_utf8(output.stderr.clone()).unwrap()
+}
+
+fn printed(output: &Output) -> String {
+    String::from_utf8(output.stdout.clone()).unwrap()
+}
+
+fn text(path: &Path) -> String {
+    path.display().to_string()
+}
+
+fn names(folder: &Path) -> Vec<String> {
+    let mut names: Vec<String> = fs::read_dir(folder).unwrap().map(|e| e.unwrap().file_name().into_string().unwrap()).collect();
+    names.sort();
+    names
+}
+
+fn samples() -> Vec<PathBuf> {
+    let mut found: Vec<PathBuf> = fs::read_dir(root().join("samples"))
+        .unwrap()
+        .map(|e| e.unwrap().path())
+        .filter(|p| p.extension().is_some_and(|e| e == "xlsx" || e == "ods"))
+        .collect();
+    found.sort();
+    assert!(found.len() >= 8, "at least eight samples");
+    found
+}
+
+#[test]
+fn the_json_of_every_sample_follows_the_schema() {
+    let schema: serde_json::Value = serde_json::from_str(&fs::read_to_string(root().join("docs/output.schema.json")).unwrap()).unwrap();
+    let mut schemas = boon::Schemas::new();
+    let mut compiler = boon::Compiler::new();
+    compiler.add_resource("output.schema.json", schema).unwrap();
+    let index = compiler.compile("output.schema.json", &mut schemas).unwrap();
+    for path in samples() {
+        let output = midwire(&["check", "--json", "--all", &text(&path)]);
+        let document: serde_json::Value = serde_json::from_slice(&output.stdout).unwrap_or_else(|e| panic!("{}: {e}", path.display()));
+        if let Err(fault) = schemas.validate(&document, index) {
+            panic!("{}: {fault:#}", path.display());
+        }
+        assert!(!printed(&output).contains('⟨'), "{}: a sentence or value is missing", path.display());
+    }
+    let both = midwire(&["check", "--json", &text(&sample("sound-house.xlsx")), "no-such-file.xlsx"]);
+    let document: serde_json::Value = serde_json::from_slice(&both.stdout).unwrap();
+    assert!(schemas.validate(&document, index).is_ok());
+    assert_eq!(document.as_array().map(Vec::len), Some(2));
+    assert!(document[1]["error"].is_string());
+    assert_eq!(both.status.code(), Some(2));
+}
+
+#[test]
+fn a_sound_sample_gives_nothing_above_notice_and_the_others_do() {
+    for path in samples() {
+        let status = midwire(&["check", &text(&path)]).status.code();
+        let sound = ["sound-house", "cottage"].contains(&path.file_stem().unwrap().to_str().unwrap());
+        assert_eq!(status, Some(if sound { 0 } else { 1 }), "{}", path.display());
+    }
+}
+
+#[test]
+fn a_report_is_written_once_and_replaced_only_by_force() {
+    let folder = tempfile::tempdir().unwrap();
+    let out = text(folder.path());
+    let workbook = text(&sample("sound-house.xlsx"));
+    let before = fs::read(&workbook).unwrap();
+    let first = midwire(&["report", &workbook, "-o", &out]);
+    assert_eq!(first.status.code(), Some(0), "{}", said(&first));
+    let written = names(folder.path());
+    assert_eq!(written.len(), 2, "{written:?}");
+    assert_eq!(printed(&first).lines().count(), 2);
+    let bytes: Vec<Vec<u8>> = written.iter().map(|n| fs::read(folder.path().join(n)).unwrap()).collect();
+
+    let second = midwire(&["report", &workbook, "-o", &out]);
+    assert_eq!(second.status.code(), Some(2));
+    assert!(said(&second).contains("--force"), "{}", said(&second));
+
+    let third = midwire(&["report", &workbook, "-o", &out, "--force"]);
+    assert_eq!(third.status.code(), Some(0), "{}", said(&third));
+    assert_eq!(names(folder.path()), written, "no temporary file stays");
+    for (name, before) in written.iter().zip(&bytes) {
+        assert_eq!(&fs::read(folder.path().join(name)).unwrap(), before, "{name}: same input, same bytes");
+    }
+    assert_eq!(fs::read(&workbook).unwrap(), before, "the workbook is never touched");
+}
+
+#[test]
+fn two_workbooks_of_one_name_get_two_reports_and_it_is_said() {
+    let folder = tempfile::tempdir().unwrap();
+    let workbook = text(&sample("sound-house.xlsx"));
+    let output = midwire(&["report", &workbook, &workbook, "-o", &text(folder.path())]);
+    assert_eq!(output.status.code(), Some(0), "{}", said(&output));
+    let written = names(folder.path());
+    assert_eq!(written.len(), 4, "{written:?}");
+    assert!(written.iter().any(|n| n.ends_with("-2.pdf")), "{written:?}");
+    assert!(said(&output).contains("-2"), "{}", said(&output));
+}
+
+#[test]
+fn what_is_no_workbook_gets_one_sentence_and_no_file() {
+    let folder = tempfile::tempdir().unwrap();
+    let out = folder.path().join("out");
+    let bad = |name: &str, bytes: &[u8]| {
+        let path = folder.path().join(name);
+        fs::write(&path, bytes).unwrap();
+        path
+    };
+    // The signature of a compound file, as [MS-CFB] 2.2 gives it, and nothing behind it.
+    let compound = [0xd0, 0xcf, 0x11, 0xe0, 0xa1, 0xb1, 0x1a, 0xe1];
+    let cases = [
+        bad("empty.xlsx", b""),
+        bad("text.xlsx", b"not a workbook"),
+        bad("image.ods", b"\x89PNG\r\n\x1a\n0000"),
+        bad("cut.xlsx", &fs::read(sample("sound-house.xlsx")).unwrap()[..2000]),
+        bad("compound.xls", &compound),
+        folder.path().join("missing.xlsx"),
+    ];
+    for path in cases {
+        let output = midwire(&["report", &text(&path), "-o", &text(&out)]);
+        assert_eq!(output.status.code(), Some(2), "{}", path.display());
+        assert_eq!(said(&output).lines().count(), 1, "{}: {}", path.display(), said(&output));
+        assert!(said(&output).contains(path.file_name().unwrap().to_str().unwrap()));
+        assert!(names(&out).is_empty(), "{}", path.display());
+    }
+}
+
+#[test]
+fn one_bad_workbook_does_not_stop_the_others() {
+    let folder = tempfile::tempdir().unwrap();
+    let bad = folder.path().join("bad.xlsx");
+    fs::write(&bad, b"nothing").unwrap();
+    let out = folder.path().join("out");
+    let output = midwire(&["report", &text(&bad), &text(&sample("sound-house.xlsx")), "-o", &text(&out)]);
+    assert_eq!(output.status.code(), Some(2));
+    assert_eq!(names(&out).len(), 2);
+}
+
+#[test]
+fn a_rule_book_with_a_fault_is_refused_with_key_and_line() {
+    let folder = tempfile::tempdir().unwrap();
+    let book = folder.path().join("ours.toml");
+    fs::write(&book, "[rules.leg-summ]\nenabled = false\n").unwrap();
+    let output = midwire(&["check", &text(&sample("sound-house.xlsx")), "--rules", &text(&book)]);
+    assert_eq!(output.status.code(), Some(2));
+    for part in ["line 1", "leg-summ", "leg-sum"] {
+        assert!(said(&output).contains(part), "{}", said(&output));
+    }
+}
+
+#[test]
+fn the_rule_book_is_printed_whole_or_in_part() {
+    let all = printed(&midwire(&["rules"]));
+    assert_eq!(all.trim(), fs::read_to_string(root().join("docs/rules.md")).unwrap().trim(), "docs/rules.md is the printed rule book");
+    let one = printed(&midwire(&["rules", "leg-sum"]));
+    assert!(one.contains("leg-sum") && !one.contains("voltage-drop"));
+    let unknown = midwire(&["rules", "leg-sun"]);
+    assert_eq!(unknown.status.code(), Some(2));
+    assert!(said(&unknown).contains("leg-sum"));
+}
+
+#[test]
+fn templates_are_listed_and_written_out_and_a_changed_one_is_used() {
+    let listed = printed(&midwire(&["templates"]));
+    for name in ["client", "record", "letter"] {
+        assert!(listed.contains(name), "{listed}");
+    }
+    let folder = tempfile::tempdir().unwrap();
+    assert_eq!(midwire(&["templates", "-o", &text(folder.path())]).status.code(), Some(0));
+    for name in names(folder.path()) {
+        let out = folder.path().join(format!("out-{name}"));
+        let template = text(&folder.path().join(&name));
+        let output = midwire(&["report", &text(&sample("service-call.xlsx")), "--template", &template, "-o", &text(&out)]);
+        assert_eq!(output.status.code(), Some(0), "{name}: {}", said(&output));
+    }
+    let broken = folder.path().join("broken.md.tera");
+    fs::write(&broken, "# A title\n\n{{ site.cliemt }}\n").unwrap();
+    let output = midwire(&["report", &text(&sample("service-call.xlsx")), "--template", &text(&broken), "-o", &text(folder.path())]);
+    assert_eq!(output.status.code(), Some(2));
+    for part in ["broken.md.tera", "line 3", "cliemt"] {
+        assert!(said(&output).contains(part), "{}", said(&output));
+    }
+}
+
+#[test]
+fn every_command_has_help_with_examples() {
+    for command in ["check", "report", "rules", "templates"] {
+        let help = printed(&midwire(&[command, "--help"]));
+        assert!(help.contains("Examples:"), "{command}: {help}");
+    }
+    assert!(printed(&midwire(&["--help"])).contains("authority having jurisdiction"));
+}
