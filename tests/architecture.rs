@@ -22,7 +22,21 @@ const MAY_USE: &[(&str, &[&str])] = &[
     ("render", &["quantity", "diag", "report", "results"]),
     (
         "pipeline",
-        &["quantity", "diag", "wording", "visit", "results", "rulebook", "intake", "balance", "network", "diagnosis", "rules", "report", "render"],
+        &[
+            "quantity",
+            "diag",
+            "wording",
+            "visit",
+            "results",
+            "rulebook",
+            "intake",
+            "balance",
+            "network",
+            "diagnosis",
+            "rules",
+            "report",
+            "render",
+        ],
     ),
     ("cli", &["diag", "wording", "visit", "results", "rulebook", "intake", "rules", "report", "render", "pipeline"]),
 ];
@@ -65,7 +79,8 @@ const LIBRARIES: &[(&str, &[&str])] = &[
 ];
 
 /// What only the command line does, and how it would show.
-const ONLY_CLI: &[&str] = &["std::fs", "std::env", "std::net", "std::process", "SystemTime", "Instant::now", "println!", "eprintln!", "print!(", "eprint!("];
+const ONLY_CLI: &[&str] =
+    &["std::fs", "std::env", "std::net", "std::process", "SystemTime", "Instant::now", "println!", "eprintln!", "print!(", "eprint!("];
 
 /// Files that may be longer than 500 lines, each for its reason.
 const LONG: &[(&str, &str)] = &[("quantity/parse.rs", "half of it is one table of how people write numbers")];
