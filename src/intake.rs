@@ -6,9 +6,15 @@
 mod cell;
 mod grid;
 mod header;
+mod mapping;
 mod sheets;
 mod words;
 mod workbook;
+
+#[cfg(test)]
+mod tests;
+
+pub use mapping::{Mapping, MappingProblem};
 
 use crate::diag::Output;
 use crate::visit::Visit;
@@ -36,6 +42,8 @@ pub enum Content<'a> {
 pub struct Options<'a> {
     /// Where photos come from.
     pub beside: &'a dyn Beside,
+    /// The user's own words for sheets, columns and items, over the built-in ones.
+    pub mapping: Option<&'a Mapping>,
 }
 
 /// Files that lie beside a workbook. Implemented by the command line; nothing else opens files.

@@ -87,7 +87,7 @@ pub fn sha256(content: &Content) -> String {
 /// The input could not be used at all.
 pub fn check(input: &Input, beside: &dyn Beside, settings: &Settings) -> Result<Checked, Refusal> {
     let sha256 = sha256(&input.content);
-    let read = intake::read(input, &intake::Options { beside })?;
+    let read = intake::read(input, &intake::Options { beside, mapping: None })?;
     let visit = read.value;
     let balance = balance::balance(&visit, &settings.balance);
     let (diagnosis, exposure) = (None, Vec::new());

@@ -4,5 +4,6 @@ mod contrast;
 mod text;
 
 pub mod html;
+pub mod pdf;
 pub mod svg;
 pub mod xlsx;

@@ -7,13 +7,13 @@ pub(super) mod heads;
 mod place;
 mod table;
 
-pub(super) use place::What;
+pub(super) use place::{What, place};
 pub(super) use table::{Field, Row, Table};
 
 use super::grid::{Area, Sheet, Value};
 use super::words::{Kind, Words};
 use place::Layout;
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 /// Rows in which a header over two rows is looked for; one over a single row is found anywhere.
 const HEADER_ROWS: u32 = 30;
@@ -42,7 +42,7 @@ impl Found {
 }
 
 /// The tables of a sheet, downwards.
-pub(super) fn tables<'a>(sheet: &'a Sheet, words: &Words) -> Vec<Table<'a>> {
+pub(super) fn tables<'a>(sheet: &'a Sheet, words: &'a Words) -> Vec<Table<'a>> {
     let mut found: Vec<Found> = Vec::new();
     let filled: Vec<u32> = sheet.rows().map(|(row, _)| row).collect();
     let mut last_header = None;
@@ -63,17 +63,20 @@ pub(super) fn tables<'a>(sheet: &'a Sheet, words: &Words) -> Vec<Table<'a>> {
         let overlaps = |c: (u32, u32)| c.0 <= header.columns.1 && header.columns.0 <= c.1;
         let next = starts.iter().skip(i + 1).find(|(rows, columns)| rows.0 > header.rows.1 && overlaps(*columns));
         let rows = (header.rows.1 + 1, next.map_or(end, |(rows, _)| rows.0));
-        tables.extend(header.layouts.into_iter().map(|layout| Table::new(sheet, layout, header.rows, header.columns, rows)));
+        tables.extend(header.layouts.into_iter().map(|layout| Table::new(sheet, words, layout, header.rows, header.columns, rows)));
     }
     tables
 }
 
-/// A row that can be a header: at least two texts. Far down the sheet, where rows are many, also one that begins with the name
-/// of a column.
+/// A row that can be a header: texts, and hardly a number. Far down the sheet, where rows are many, also one that begins with
+/// the name of a column.
 fn may_head(sheet: &Sheet, row: u32, words: &Words) -> bool {
-    let mut texts = sheet.row(row).iter().filter_map(|c| text_of(&c.value));
-    let first = texts.next();
-    first.is_some_and(|first| row < HEADER_ROWS || (words.is_column(first) && texts.next().is_some()))
+    let cells = sheet.row(row);
+    let mut texts = cells.iter().filter_map(|c| text_of(&c.value));
+    let Some(first) = texts.next() else { return false };
+    let others = texts.count();
+    let numbers = cells.iter().filter(|c| matches!(c.value, Value::Number(_) | Value::DateTime(_))).count();
+    numbers <= others / 3 && (row < HEADER_ROWS || (others > 0 && words.is_column(first)))
 }
 
 fn text_of(value: &Value) -> Option<&str> {
@@ -87,11 +90,18 @@ fn text_of(value: &Value) -> Option<&str> {
 fn headers(sheet: &Sheet, row: u32, below: Option<u32>, words: &Words) -> Vec<Found> {
     let single = texts(sheet, row);
     let one = split(sheet, words, &single, (row, row));
-    let Some(below) = below else { return one };
-    let (joined, units_alone) = joined(sheet, row, below, words);
-    let two = split(sheet, words, &joined, (row, below));
+    let Some(below) = below.filter(|&below| may_head(sheet, below, words)) else { return one };
+    // Columns with a place, each counted once though two tables share a header.
+    let score = |found: &[Found]| -> usize {
+        let columns = |f: &Found| f.layouts.iter().flat_map(|l| &l.placed).map(|p| p.col).collect::<BTreeSet<_>>().len();
+        found.iter().map(columns).sum()
+    };
+    let [alone, grouped] = [false, true].map(|grouped| split(sheet, words, &joined(sheet, row, below, words, grouped), (row, below)));
+    // Of equals, the one that takes the header for fewer tables.
+    let rank = |found: &[Found]| (score(found), std::cmp::Reverse(found.iter().map(|f| f.layouts.len()).sum::<usize>()));
+    let two = if rank(&grouped) > rank(&alone) { grouped } else { alone };
+    let units_alone = texts(sheet, below).values().all(|text| unit_text(text));
     let lower = split(sheet, words, &texts(sheet, below), (below, below));
-    let score = |found: &[Found]| found.iter().flat_map(|f| &f.layouts).map(Layout::score).sum::<usize>();
     let (a, b, c) = (score(&one), score(&two), score(&lower));
     if b > 0 && c <= b && (b > a.max(c) || (b == a && units_alone)) {
         two
@@ -109,30 +119,26 @@ fn texts(sheet: &Sheet, row: u32) -> BTreeMap<u32, String> {
     cells.filter_map(|c| text_of(&c.value).map(|t| (c.col, t.to_owned()))).collect()
 }
 
-/// The texts of two rows read as one header, and whether the lower row holds units alone. A group's head stands over its
-/// columns by a merged area or by blanks to its right.
-fn joined(sheet: &Sheet, upper: u32, lower: u32, words: &Words) -> (BTreeMap<u32, String>, bool) {
+/// The texts of two rows read as one header. A group's head stands over its columns by a merged area or by blanks to its right;
+/// over blanks it is taken for a name that could stand alone only where `grouped`.
+fn joined(sheet: &Sheet, upper: u32, lower: u32, words: &Words, grouped: bool) -> BTreeMap<u32, String> {
     let (above, below) = (texts(sheet, upper), texts(sheet, lower));
     let wide: Vec<Area> = sheet.merged.iter().filter(|a| a.right > a.left && (a.top..=a.bottom).contains(&upper)).copied().collect();
     let area = |col: u32| wide.iter().find(|a| (a.left..=a.right).contains(&col));
     let mut out = above.clone();
-    let units_alone = !below.is_empty() && below.values().all(|t| unit_text(t));
     for (&col, text) in &below {
-        let group = match (above.get(&col), area(col)) {
-            (Some(head), _) => Some((head.as_str(), true)),
-            (None, Some(area)) => above.get(&area.left).map(|head| (head.as_str(), true)),
-            (None, None) => above.range(..col).next_back().map(|(_, head)| (head.as_str(), false)),
-        };
-        let placed_alone = Kind::ALL.iter().any(|&kind| place::place(words, kind, text).is_some());
-        let text = match group {
-            Some((head, true)) if unit_text(text) => format!("{head} ({})", text.trim_matches(['(', ')', '[', ']'])),
-            Some((head, true)) => format!("{head} {text}"),
-            Some((head, false)) if !placed_alone => format!("{head} {text}"),
+        let own = above.get(&col).or_else(|| above.get(&area(col)?.left));
+        let group = || above.range(..col).next_back().map(|(_, head)| head).filter(|_| area(col).is_none());
+        let placed = |text: &str| Kind::ALL.iter().any(|&kind| place(words, kind, text).is_some());
+        let text = match (own, own.is_none().then(group).flatten()) {
+            (Some(head), _) if unit_text(text) => format!("{head} ({})", text.trim_matches(['(', ')', '[', ']'])),
+            (Some(head), _) => format!("{head} {text}"),
+            (None, Some(head)) if (grouped || !placed(text)) && placed(&format!("{head} {text}")) => format!("{head} {text}"),
             _ => text.clone(),
         };
         out.insert(col, text);
     }
-    (out, units_alone)
+    out
 }
 
 fn unit_text(text: &str) -> bool {
@@ -154,7 +160,7 @@ fn split(sheet: &Sheet, words: &Words, texts: &BTreeMap<u32, String>, rows: (u32
         last = Some(col);
     }
     let found = |part: &BTreeMap<u32, String>| {
-        let layouts = place::layouts(words, part, words.sheet(&sheet.name));
+        let layouts = place::layouts(words, part, &sheet.name);
         let columns = (*part.first_key_value()?.0, *part.last_key_value()?.0);
         (!layouts.is_empty()).then_some(Found { rows, columns, layouts })
     };

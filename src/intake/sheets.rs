@@ -43,7 +43,10 @@ impl<'a> Tables<'a> {
 /// It has no table of readings.
 pub(super) fn assemble(grid: Output<Workbook>, options: &Options) -> Result<Output<Visit>, Refusal> {
     let workbook = &grid.value;
-    let words = Words::built_in();
+    let words = match options.mapping {
+        Some(mapping) => &mapping.words,
+        None => Words::built_in(),
+    };
     let tables = Tables(workbook.sheets.iter().flat_map(|sheet| header::tables(sheet, words)).collect());
     if tables.of(Kind::Readings).next().is_none() {
         return Err(Refusal::NoReadings(unread::nearest_to_readings(workbook, words)));

@@ -1,6 +1,9 @@
 //! The trade's words (`synonyms.toml`): which text names which table, column, item or entry.
 
+use super::grid::{Cell, Sheet, Value};
 use super::header::heads::HeadWord;
+use super::header::{self, Field, What};
+use crate::quantity::parse::Scale;
 use serde::Deserialize;
 use std::collections::{BTreeMap, HashMap, HashSet};
 
@@ -32,6 +35,21 @@ impl Kind {
         Self::Work,
         Self::Revisions,
     ];
+
+    /// As `synonyms.toml` and a mapping name it.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Visit => "visit",
+            Self::Instruments => "instruments",
+            Self::Circuits => "circuits",
+            Self::Readings => "readings",
+            Self::Tests => "tests",
+            Self::Observations => "observations",
+            Self::Photos => "photos",
+            Self::Work => "work",
+            Self::Revisions => "revisions",
+        }
+    }
 }
 
 /// The named columns of all tables; quantities and loads are [`super::header::heads::Head`]s.
@@ -154,8 +172,14 @@ impl<T: Copy + Ord> Names<T> {
         nearest(&text, spellings).and_then(|near| self.get(near)).map(|thing| self.label(thing))
     }
 
+    /// Another spelling; it takes the place of what it meant before.
     pub fn add(&mut self, text: &str, thing: T) {
         self.spellings.insert(normal(text), thing);
+    }
+
+    /// The names all things go by.
+    pub fn all_labels(&self) -> Vec<String> {
+        self.labels.values().cloned().collect()
     }
 }
 
@@ -169,6 +193,64 @@ pub(super) struct Words {
     entries: BTreeMap<String, BTreeMap<String, Vec<String>>>,
     choices: HashMap<String, HashMap<String, String>>,
     any_column: HashSet<String>,
+    own: HashMap<(Kind, String), What>,
+    units: HashMap<What, Scale>,
+    forced: HashMap<String, Option<Kind>>,
+    /// Entries of a mapping.
+    pub fixed: Fixed,
+}
+
+/// Entries of a mapping that hold where a workbook has no such item or column. They stand in a sheet of their own, named after
+/// the mapping's file, each in the row of its line, so that every value has a place.
+#[derive(Clone, Debug)]
+pub(super) struct Fixed {
+    pub sheet: Sheet,
+    items: BTreeMap<Item, u32>,
+    columns: BTreeMap<(Kind, Column), u32>,
+}
+
+impl Fixed {
+    fn none() -> Self {
+        let sheet = Sheet {
+            name: "".into(),
+            hidden: false,
+            hidden_rows: Vec::new(),
+            hidden_columns: Vec::new(),
+            merged: Vec::new(),
+            cells: Vec::new(),
+        };
+        Self { sheet, items: BTreeMap::new(), columns: BTreeMap::new() }
+    }
+
+    pub fn set_item(&mut self, item: Item, text: &str, line: usize) {
+        let row = self.put(text, line);
+        self.items.insert(item, row);
+    }
+
+    pub fn set_column(&mut self, kind: Kind, column: Column, text: &str, line: usize) {
+        let row = self.put(text, line);
+        self.columns.insert((kind, column), row);
+    }
+
+    fn put(&mut self, text: &str, line: usize) -> u32 {
+        let row = u32::try_from(line.saturating_sub(1)).unwrap_or(u32::MAX);
+        self.sheet.cells.push(Cell { row, col: 0, value: Value::Text(text.to_owned()) });
+        row
+    }
+
+    /// The items with a fixed entry.
+    pub fn items(&self) -> impl Iterator<Item = (Item, Field<'_>)> {
+        self.items.iter().filter_map(|(item, row)| Some((*item, self.at(*row)?)))
+    }
+
+    /// The fixed entry of a column.
+    pub fn column(&self, kind: Kind, column: Column) -> Option<Field<'_>> {
+        self.columns.get(&(kind, column)).and_then(|row| self.at(*row))
+    }
+
+    fn at(&self, row: u32) -> Option<Field<'_>> {
+        self.sheet.get(row, 0).map(|value| Field::new(&self.sheet, row, 0, value))
+    }
 }
 
 const BUILT_IN: &str = include_str!("synonyms.toml");
@@ -196,7 +278,19 @@ impl Words {
         let heads = file.heads.into_iter().flat_map(|(word, list)| list.into_iter().map(move |text| (text, word))).collect();
         let choices = file.entries.iter().map(|(list, keys)| (list.clone(), spellings(keys))).collect();
         let any_column = columns.values().flat_map(|names: &Names<Column>| names.spellings.keys().cloned()).collect();
-        Ok(Self { columns, sheets, items: Names::new(file.items), heads, entries: file.entries, choices, any_column })
+        Ok(Self {
+            columns,
+            sheets,
+            items: Names::new(file.items),
+            heads,
+            entries: file.entries,
+            choices,
+            any_column,
+            own: HashMap::new(),
+            units: HashMap::new(),
+            forced: HashMap::new(),
+            fixed: Fixed::none(),
+        })
     }
 
     /// The columns of a table.
@@ -207,6 +301,43 @@ impl Words {
     /// The table a sheet's name speaks of.
     pub fn sheet(&self, name: &str) -> Option<Kind> {
         self.sheets.get(&normal(name)).copied()
+    }
+
+    /// The meaning a header text has in a table, its unit aside.
+    pub fn place(&self, kind: Kind, text: &str) -> Option<What> {
+        header::place(self, kind, text).map(|(what, _)| what)
+    }
+
+    /// What a mapping says a header means.
+    pub fn own(&self, kind: Kind, text: &str) -> Option<What> {
+        if self.own.is_empty() { None } else { self.own.get(&(kind, normal(text))).copied() }
+    }
+
+    /// The unit a mapping gives a column whose header states none.
+    pub fn unit(&self, what: What) -> Option<Scale> {
+        self.units.get(&what).copied()
+    }
+
+    /// What a mapping says a sheet is: a table, or nothing to be read.
+    pub fn forced(&self, sheet: &str) -> Option<Option<Kind>> {
+        self.forced.get(&normal(sheet)).copied()
+    }
+
+    pub fn set_column(&mut self, kind: Kind, text: &str, what: What) {
+        self.own.insert((kind, normal(text)), what);
+        self.any_column.insert(normal(text));
+    }
+
+    pub fn set_unit(&mut self, what: What, unit: Scale) {
+        self.units.insert(what, unit);
+    }
+
+    pub fn set_sheet(&mut self, sheet: &str, kind: Kind) {
+        self.forced.insert(normal(sheet), Some(kind));
+    }
+
+    pub fn leave_out(&mut self, sheet: &str) {
+        self.forced.insert(normal(sheet), None);
     }
 
     /// A word of the grammar of quantities.
@@ -271,11 +402,21 @@ pub(super) fn normal(text: &str) -> String {
 
 /// Names nearer than this are worth suggesting (Jaro-Winkler).
 const ALIKE: f64 = 0.86;
+const ALIKE_NAMES: f64 = 0.8;
 /// A longer text is no misspelt name.
 const LONGEST: usize = 64;
 
 /// The candidate nearest to a text, where one is near; the first of several that are as near.
 pub(super) fn nearest<'a>(text: &str, candidates: impl Iterator<Item = &'a str>) -> Option<&'a str> {
+    nearest_beyond(ALIKE, text, candidates)
+}
+
+/// As [`nearest`], for names of circuits and instruments, which are short and differ in a digit.
+pub(super) fn nearest_name<'a>(text: &str, candidates: impl Iterator<Item = &'a str>) -> Option<&'a str> {
+    nearest_beyond(ALIKE_NAMES, text, candidates)
+}
+
+fn nearest_beyond<'a>(alike_from: f64, text: &str, candidates: impl Iterator<Item = &'a str>) -> Option<&'a str> {
     if text.is_empty() || text.len() > LONGEST {
         return None;
     }
@@ -283,7 +424,7 @@ pub(super) fn nearest<'a>(text: &str, candidates: impl Iterator<Item = &'a str>)
     for candidate in candidates {
         let alike = strsim::jaro_winkler(text, candidate);
         let better = best.is_none_or(|(b, name)| alike > b || (alike == b && candidate < name));
-        if alike >= ALIKE && better {
+        if alike >= alike_from && better {
             best = Some((alike, candidate));
         }
     }

@@ -5,48 +5,62 @@
 //! volts between the two ends of the opened neutral are imposed one after the other, and wherever no current would flow through
 //! it the network can rest. The range over all resting points is what is given, stable or not, since nobody can say which it is.
 
+mod branch;
+mod resting;
+
 use super::build::{NetworkSettings, build};
 use super::model::{Law, Network, Observed};
-use super::several;
-use super::solve::{SolveOutcome, SolveSettings};
+use super::solve::SolveSettings;
 use super::workspace::Workspace;
 use crate::quantity::{Volts, Watts};
 use crate::results::{ExposedLeg, Exposure};
-use crate::visit::{Conductor, Leg, Quantity, Tree, Visit};
+use crate::visit::{Leg, Quantity, System, Tree, Visit};
+use branch::{Branch, Whole};
 
 /// Ends of a range closer than this, in volts, are one value.
 const SAME: f64 = 0.5;
 
-/// Imposed volts tried, evenly spaced, before each resting point is closed in on.
-const POINTS: u32 = 48;
+/// A leg without loads that strays from nominal by less than this share is left out.
+const UNCHANGED: f64 = 0.05;
 
-/// Runs times solutions, at most, a second or so: a list of ten thousand multiwire runs in a chain would take hours. Real ones
-/// stay far below it; beyond it the neutrals nearest the source are opened, which expose the most.
-const MOST_WORK: usize = 1_000_000;
+/// Runs solved, at most; a second or so. A list of ten thousand multiwire runs in a chain would take hours. Real ones stay far
+/// below it; beyond it the neutrals nearest the source are opened, which expose the most.
+const MOST_WORK: usize = 700_000;
 
-/// Opens every shared neutral, those of the service included, one after the other. Legs without a load below the opening are
-/// given too, at 0 W: whatever is plugged in there sees those volts.
+/// Opens every shared neutral, those of the service included, one after the other. A leg without a load below the opening is
+/// given too, at 0 W, where its volts change: whatever is plugged in there sees them.
 #[must_use]
 pub fn exposure(visit: &Visit, settings: &NetworkSettings) -> Vec<Exposure> {
     let network = build(visit, settings).network;
     let Ok(mut workspace) = Workspace::new(&network) else { return Vec::new() };
-    let mut exposures: Vec<Exposure> = shared_neutrals(&network, &visit.tree)
-        .into_iter()
-        .map(|run| {
-            let mut places = Places::below(&network, &visit.tree, run);
-            open(&mut workspace, &network, run, &mut places);
-            Exposure { run, legs: places.worst(&network, visit) }
-        })
-        .collect();
+    let sound = workspace.follow(&network, &SolveSettings::default()).ok().map(|()| workspace.solution(&network));
+    let mut whole = Whole::new(&network, &visit.tree, sound);
+    let runs = shared_neutrals(&network, &visit.tree);
+    let mut exposures: Vec<Exposure> = runs.into_iter().map(|run| open(&whole.branch(run), run, &visit.system)).collect();
+    exposures.retain(|e| !e.legs.is_empty());
     exposures.sort_by_key(|e| e.run);
     exposures
 }
 
+/// Opens the neutral of a branch's first run.
+fn open(branch: &Branch, run: usize, system: &System) -> Exposure {
+    let mut places = Places::of(branch);
+    if resting::points(&branch.network, |workspace| places.note(workspace)).is_none() {
+        places.note_anything(system.line_to_line.0);
+    }
+    Exposure { run, legs: places.worst(system) }
+}
+
 /// Runs with a neutral that several legs share, those nearest the source first, as many as there is time for.
 fn shared_neutrals(network: &Network, tree: &Tree) -> Vec<usize> {
-    let mut depth = vec![0usize; network.spans.len()];
+    let (mut depth, mut below) = (vec![0usize; network.spans.len()], vec![1usize; network.spans.len()]);
     for &run in &tree.order {
         depth[run] = tree.parent[run].map_or(0, |p| depth[p] + 1);
+    }
+    for &run in tree.order.iter().rev() {
+        if let Some(parent) = tree.parent[run] {
+            below[parent] += below[run];
+        }
     }
     let is_shared = |run: &usize| {
         let ohms = &network.spans[*run].ohms;
@@ -55,8 +69,15 @@ fn shared_neutrals(network: &Network, tree: &Tree) -> Vec<usize> {
     let mut runs: Vec<usize> = tree.order.iter().copied().filter(is_shared).collect();
     runs.sort_by_key(|run| depth[*run]);
     let may_scan = network.loads.iter().any(|l| matches!(l.law, Law::Electronic { .. }));
-    let solutions = if may_scan { POINTS as usize } else { 1 };
-    runs.truncate((MOST_WORK / (network.spans.len() * solutions).max(1)).max(1));
+    let solutions = if may_scan { resting::POINTS as usize } else { 1 };
+    let mut work = 0;
+    let affordable = runs.iter().take_while(|run| {
+        let is_in_time = work < MOST_WORK;
+        work += below[**run] * solutions;
+        is_in_time
+    });
+    let most = affordable.count();
+    runs.truncate(most);
     runs
 }
 
@@ -75,25 +96,16 @@ struct Place {
 struct Places(Vec<Place>);
 
 impl Places {
-    fn below(network: &Network, tree: &Tree, opened: usize) -> Self {
-        let mut places = Vec::new();
-        let mut stack = vec![opened];
-        while let Some(run) = stack.pop() {
-            stack.extend(tree.children[run].iter().rev());
-            for leg in Leg::ALL {
-                if let Some(observed) = network.observed(run, Quantity::line_neutral(leg)) {
-                    places.push(Place { run, leg, observed, watts: 0.0, low: f64::INFINITY, high: 0.0 });
-                }
-            }
+    fn of(branch: &Branch) -> Self {
+        let mut watts = vec![[0.0; 3]; branch.runs.len()];
+        for load in branch.network.loads.iter().filter(|l| l.between.1 == 3) {
+            watts[load.at][load.between.0] += load.watts;
         }
-        places.sort_by_key(|p| (p.run, p.leg));
-        for load in network.loads.iter().filter(|l| l.between.1 == 3) {
-            let key = (load.at, load.between.0);
-            if let Ok(at) = places.binary_search_by_key(&key, |p| (p.run, p.leg.index())) {
-                places[at].watts += load.watts;
-            }
-        }
-        Self(places)
+        let place = |at: usize, leg: Leg| {
+            let observed = branch.network.observed(at, Quantity::line_neutral(leg))?;
+            Some(Place { run: branch.runs[at], leg, observed, watts: watts[at][leg.index()], low: f64::INFINITY, high: 0.0 })
+        };
+        Self((0..branch.runs.len()).flat_map(|at| Leg::ALL.into_iter().filter_map(move |leg| place(at, leg))).collect())
     }
 
     fn note(&mut self, workspace: &Workspace) {
@@ -112,99 +124,26 @@ impl Places {
     }
 
     /// For each leg the place that strays farthest from nominal, of those with a load on it, if there is one.
-    fn worst(&self, network: &Network, visit: &Visit) -> Vec<ExposedLeg> {
-        let mut legs = Vec::new();
-        for leg in Leg::ALL {
-            let nominal = visit.system.nominal(Quantity::line_neutral(leg)).unwrap_or_default().0;
-            let strays = |p: &Place| (p.high - nominal).abs().max((p.low - nominal).abs());
-            let of_leg = || self.0.iter().filter(|p| p.leg == leg);
-            let loads: f64 = of_leg().map(|p| p.watts).sum();
-            let at = of_leg().filter(|p| p.watts > 0.0 || loads == 0.0).reduce(|a, b| if strays(b) > strays(a) { b } else { a });
-            legs.extend(at.filter(|_| network.source.volts[leg.index()] > 0.0).map(|p| ExposedLeg {
-                leg,
-                volts: Volts(p.high),
-                low: (p.high - p.low > SAME).then_some(Volts(p.low)),
-                at: p.run,
-                loads: Watts(loads),
-            }));
-        }
-        legs
+    fn worst(&self, system: &System) -> Vec<ExposedLeg> {
+        system.legs().iter().filter_map(|leg| self.worst_of(*leg, system)).collect()
     }
-}
 
-/// Opens a run's neutral and notes the volts at every resting point.
-fn open(workspace: &mut Workspace, network: &Network, run: usize, places: &mut Places) {
-    let settings = SolveSettings::default();
-    let mut opened = network.clone();
-    opened.spans[run].ohms[3] = Some(f64::INFINITY);
-    workspace.restart();
-    match workspace.follow(&opened, &settings) {
-        Ok(()) => places.note(workspace),
-        Err(SolveOutcome::NotConverged { .. } | SolveOutcome::Malformed(_) | SolveOutcome::Several(_)) => {
-            return places.note_anything(network.source.volts.iter().sum());
+    fn worst_of(&self, leg: Leg, system: &System) -> Option<ExposedLeg> {
+        let nominal = system.nominal(Quantity::line_neutral(leg))?.0;
+        let strays = |p: &Place| (p.high - nominal).abs().max((p.low - nominal).abs());
+        let of_leg = || self.0.iter().filter(|p| p.leg == leg);
+        let loads: f64 = of_leg().map(|p| p.watts).sum();
+        let loaded = of_leg().filter(|p| p.watts > 0.0 || loads == 0.0);
+        let worst = loaded.reduce(|a, b| if strays(b) > strays(a) { b } else { a })?;
+        if loads == 0.0 && strays(worst) < UNCHANGED * nominal {
+            return None;
         }
+        Some(ExposedLeg {
+            leg,
+            volts: Volts(worst.high),
+            low: (worst.high - worst.low > SAME).then_some(Volts(worst.low)),
+            at: worst.run,
+            loads: Watts(loads),
+        })
     }
-    if several::is_stiff(&opened) {
-        return;
-    }
-    if network.is_in_phase() {
-        rest_in_phase(workspace, network, run, places);
-    } else {
-        let first = workspace.solution(&opened);
-        several::others(workspace, &opened, &settings, first, |w| places.note(w));
-    }
-}
-
-/// Finds the resting points along the real axis.
-fn rest_in_phase(workspace: &mut Workspace, network: &Network, run: usize, places: &mut Places) {
-    let observed = Observed::Current { run, conductor: Conductor::Neutral, towards_source: false };
-    let reach = 1.1 * network.source.volts.iter().fold(0.0, |a: f64, b| a.max(*b));
-    let current = |workspace: &mut Workspace, volts: f64| {
-        workspace.insert(run, 3, volts);
-        workspace.follow(network, &SolveSettings::default()).ok()?;
-        workspace.value(observed)
-    };
-    let mut last: Option<(f64, f64)> = None;
-    for point in 0..=POINTS {
-        let volts = reach * (2.0 * f64::from(point) / f64::from(POINTS) - 1.0);
-        let Some(amperes) = current(workspace, volts) else {
-            last = None;
-            continue;
-        };
-        let before = last.filter(|b| (b.1 < 0.0) != (amperes < 0.0));
-        if let Some(rest) = before.and_then(|b| close_in(b, (volts, amperes), |v| current(workspace, v))) {
-            if current(workspace, rest).is_some() {
-                places.note(workspace);
-            }
-            // The next point is followed from this one.
-            current(workspace, volts);
-        }
-        last = Some((volts, amperes));
-    }
-    workspace.remove();
-}
-
-/// Zero between two points of opposite sign, by the Illinois variant of regula falsi (Dowell and Jarratt, BIT 11, 1971, 168–174).
-fn close_in(mut a: (f64, f64), mut b: (f64, f64), mut f: impl FnMut(f64) -> Option<f64>) -> Option<f64> {
-    const TOLERANCE: f64 = 1e-6;
-    for _ in 0..60 {
-        if (b.0 - a.0).abs() < TOLERANCE {
-            break;
-        }
-        let x = b.0 - b.1 * (b.0 - a.0) / (b.1 - a.1);
-        let y = f(x)?;
-        if y == 0.0 {
-            return Some(x);
-        }
-        if (y < 0.0) == (b.1 < 0.0) {
-            a.1 *= 0.5;
-        } else {
-            a = b;
-        }
-        b = (x, y);
-        if y.abs() < 1e-12 {
-            break;
-        }
-    }
-    Some(b.0)
 }

@@ -21,6 +21,9 @@ use super::model::{Law, Network};
 /// far from the solution points away from it.
 const FAR: f64 = 0.2;
 
+/// A law is bent where its tangent's slope differs from its chord's by more than this share.
+const BENT: f64 = 0.01;
+
 /// How loads are linearised.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) enum Slope {
@@ -179,8 +182,9 @@ impl<const PARTS: usize> Attached<PARTS> {
         let moved = difference(&v, &self.v);
         let (change, old, new) = (dot(&moved, &moved), self.square(), dot(&v, &v));
         self.far = change > FAR * FAR * old.max(new);
-        // Exponents below 1 are steepest at zero: a tangent that leads past it leads too far.
-        let is_past_zero = dot(&v, &self.v) < 0.0 && self.y.bend != 0.0;
+        // Exponents below 1 are steepest at zero: a tangent from where the law is bent that leads past it leads too far.
+        let is_bent = self.y.bend.abs() * old > BENT * self.y.chord;
+        let is_past_zero = is_bent && dot(&v, &self.v) < 0.0;
         self.v = if is_past_zero { v.map(|x| 0.1 * x) } else { v };
         change.sqrt()
     }

@@ -75,11 +75,6 @@ impl Workspace {
         either!(&mut self.form, e => e.insert(run, slot, volts));
     }
 
-    /// Takes the inserted volts out.
-    pub(super) fn remove(&mut self) {
-        either!(&mut self.form, e => e.inserted = None);
-    }
-
     /// Solves, starting from the last solution. Follows one solution and does not look for others.
     ///
     /// # Errors

@@ -272,7 +272,7 @@ fn split_number(text: &str) -> Option<(&str, &str)> {
         match at(end) {
             b'0'..=b'9' => {}
             b'.' | b',' if end == begin || digit(end - 1) => {}
-            b'\'' | b' ' if end > begin && digit(end - 1) && group => {}
+            b'\'' | b' ' if end > begin && digit(end - 1) && group && !text[begin..end].contains(['.', ',']) => {}
             _ => break,
         }
         end += 1;
@@ -562,6 +562,7 @@ mod tests {
     fn what_reads_two_ways_is_an_error() {
         assert_eq!(written("1,234"), Err(NumberError::TwoWays { decimal: 1.234, grouped: 1234.0 }));
         assert_eq!(written("119,625 V"), Err(NumberError::TwoWays { decimal: 119.625, grouped: 119_625.0 }));
+        assert_eq!(written("119.6 120.1"), Err(NumberError::Several));
         for text in ["119-121", "119.6/120.1", "119.6 120.1", "120 at 3 pm", "1.2.3", "12,34,5"] {
             assert!(written(text).is_err(), "{text}: {:?}", written(text));
         }

@@ -1,11 +1,12 @@
 //! Volts under an open neutral, from visits.
 
-use super::support::near;
+use super::support::{N, near, solved, volts};
 use midwire::diag::{CellRef, Located};
-use midwire::network::{NetworkSettings, exposure};
+use midwire::network::{NetworkSettings, Workspace, build, exposure};
 use midwire::quantity::{Metres, Ohms, Watts};
 use midwire::results::{ExposedLeg, Exposure};
 use midwire::visit::{Between, Leg, Legs, Load, LoadKind, Run, Site, System, Tree, Visit};
+use proptest::prelude::*;
 use std::sync::Arc;
 
 /// A run of no length: name, source, legs with a neutral, watts of each leg to the neutral, kind.
@@ -136,4 +137,74 @@ fn names_change_nothing() {
     loose.runs.push(row("lost", "nowhere", &PAIR, &[(Leg::L1, 500.0)], LoadKind::Resistive));
     loose.tree = Tree::new(&loose.runs);
     assert_eq!(of(&named("5/7"), 1), of(&loose, 1));
+}
+
+/// A branch taken out of its network sees what it sees within it, where other loads and long wires share the way from the source.
+#[test]
+fn a_branch_agrees_with_the_whole() {
+    let long = |mut r: Run, metres: f64| {
+        r.length = r.length.map(|l| l.map(|_| Metres(metres)));
+        r
+    };
+    let lamp = LoadKind::Filament;
+    let runs = vec![
+        long(row("SVC", "", &PAIR, &[(Leg::L1, 2500.0), (Leg::L2, 900.0)], LoadKind::Resistive), 40.0),
+        long(row("SP1", "SVC", &PAIR, &[(Leg::L2, 1500.0)], LoadKind::Resistive), 50.0),
+        long(row("5/7", "SP1", &PAIR, &[(Leg::L1, 800.0)], LoadKind::Resistive), 30.0),
+        long(row("5/7a", "5/7", &PAIR, &[(Leg::L1, 60.0), (Leg::L2, 200.0)], lamp), 10.0),
+        long(row("9", "SP1", &PAIR[..1], &[(Leg::L1, 1000.0)], LoadKind::Resistive), 20.0),
+    ];
+    let visit = visit("120/240", runs);
+    let settings = NetworkSettings::default();
+    for exposure in exposure(&visit, &settings) {
+        let mut whole = build(&visit, &settings).network;
+        whole.spans[exposure.run].ohms[N] = Some(f64::INFINITY);
+        let solution = solved(&whole);
+        for leg in &exposure.legs {
+            near(leg.volts.0, volts(&solution, leg.at, leg.leg.index(), N), 0.02);
+        }
+    }
+}
+
+/// A run of a list in any state: fed from anything, itself and nothing included, with any legs and loads.
+fn any_row(at: usize) -> impl Strategy<Value = Run> {
+    let legs = proptest::collection::vec(0usize..3, 0..4);
+    let loads = proptest::collection::vec((0usize..3, prop_oneof![Just(0.0), 1.0f64..3000.0, Just(f64::INFINITY), Just(-5.0)]), 0..4);
+    let kind = prop_oneof![Just(LoadKind::Resistive), Just(LoadKind::Filament), Just(LoadKind::Electronic), Just(LoadKind::Motor)];
+    let length = prop_oneof![0.0f64..80.0, Just(-1.0), Just(1e300)];
+    (0usize..9, legs, loads, kind, length, any::<[bool; 3]>()).prop_map(
+        move |(from, legs, loads, kind, length, [neutral, stated, lined])| {
+            let fed_from = if from == 0 { String::new() } else { format!("r{}", from - 1) };
+            let legs: Vec<Leg> = legs.into_iter().map(|l| Leg::ALL[l]).collect();
+            let loads: Vec<(Leg, f64)> = loads.into_iter().map(|(l, w)| (Leg::ALL[l], w)).collect();
+            let mut r = row(&format!("r{at}"), &fed_from, &legs, &loads, kind);
+            r.length = r.length.map(|l| l.map(|_| Metres(length)));
+            r.legs = r.legs.filter(|_| stated).map(|l| l.map(|l| Legs { neutral, ..l }));
+            if let Some(load) = r.loads.first_mut().filter(|_| lined) {
+                load.between = Between::LineLine(Leg::L1, Leg::L2);
+            }
+            r
+        },
+    )
+}
+
+proptest! {
+    /// Whatever a circuit list says, a sound network is built of it, and volts that are numbers come of that.
+    #[test]
+    fn any_list_makes_a_network(
+        rows in (1usize..8).prop_flat_map(|n| (0..n).map(any_row).collect::<Vec<_>>()),
+        system in prop_oneof![Just("120/240"), Just("120/208"), Just("208Y/120"), Just("240/120"), Just("230")],
+    ) {
+        let visit = visit(system, rows);
+        let network = build(&visit, &NetworkSettings::default()).network;
+        prop_assert_eq!(network.spans.len(), visit.runs.len());
+        prop_assert!(Workspace::new(&network).is_ok());
+        for exposure in exposure(&visit, &NetworkSettings::default()) {
+            prop_assert!(!exposure.legs.is_empty());
+            for leg in exposure.legs {
+                let low = leg.low.unwrap_or(leg.volts);
+                prop_assert!(low.0 >= 0.0 && low.0 <= leg.volts.0 && leg.volts.0.is_finite() && leg.loads.0.is_finite());
+            }
+        }
+    }
 }

@@ -84,7 +84,7 @@ pub fn near(got: f64, expected: f64, within: f64) {
 
 /// Random split-phase services, among them near-open and near-short conductors.
 pub mod any {
-    use super::{L1, L2, N, electronic, lamp, resistor, run, service};
+    use super::{L1, L2, L3, N, electronic, lamp, resistor, run, service};
     use midwire::network::{Load, Network};
     use proptest::prelude::*;
 
@@ -116,6 +116,31 @@ pub mod any {
 
     fn one_run(at: usize, loads: Loads) -> impl Strategy<Value = (usize, [f64; 3], Vec<Load>)> {
         (0..at.max(1), [ohms(), ohms(), ohms()], proptest::collection::vec(one_load(at, loads), 0..3))
+    }
+
+    /// Wye services with reactive wires, motors, lamps, electronic loads.
+    pub fn wye() -> impl Strategy<Value = Network> {
+        let place = prop_oneof![Just((L1, N)), Just((L2, N)), Just((L3, N)), Just((L1, L2)), Just((L3, L1))];
+        let one = (0usize..6, place, 20.0f64..2000.0, 0..4, 0.5f64..1.0);
+        let wires = (prop::array::uniform4(ohms()), prop::array::uniform4(0.0f64..0.2), 0usize..6);
+        let runs = proptest::collection::vec(wires, 1..6);
+        (runs, proptest::collection::vec(one, 0..8)).prop_map(|(runs, loads)| {
+            let mut network = service("208Y/120", 120.0);
+            for (at, (ohms, reactance, parent)) in runs.iter().enumerate() {
+                run(&mut network, (at > 0).then_some(parent % at.max(1)), ohms.map(Some));
+                network.spans[at].reactance = *reactance;
+            }
+            for (at, between, watts, kind, power_factor) in loads {
+                let at = at % runs.len();
+                network.loads.push(match kind {
+                    0 => resistor(at, between, 14_400.0 / watts),
+                    1 => lamp(at, between, watts),
+                    2 => electronic(at, between, watts.min(300.0)),
+                    _ => Load { power_factor, ..resistor(at, between, 14_400.0 / watts) },
+                });
+            }
+            network
+        })
     }
 
     pub fn network(loads: Loads) -> impl Strategy<Value = Network> {

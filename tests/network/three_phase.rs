@@ -1,9 +1,11 @@
 //! Wye systems against Millman's theorem and OpenDSS.
 
+use super::support::any::wye;
 use super::support::{L1, L2, L3, N, amperes, near, resistor, run, service, solved, volts};
-use midwire::network::Network;
+use midwire::network::{Network, Phasor, SolveSettings, Workspace};
+use proptest::prelude::*;
 
-fn wye(volts: f64, line: f64, neutral: f64, ohms: [Option<f64>; 3]) -> Network {
+fn four_wires(volts: f64, line: f64, neutral: f64, ohms: [Option<f64>; 3]) -> Network {
     let mut network = service("208Y/120", volts);
     run(&mut network, None, [Some(line), Some(line), Some(line), Some(neutral)]);
     for (leg, ohms) in [L1, L2, L3].into_iter().zip(ohms) {
@@ -25,7 +27,7 @@ fn open_neutral_of_a_wye() {
         (120.0, [Some(12.0), Some(12.0), None], [60.0, 103.923, 103.923, 180.0]),
     ];
     for (source, ohms, [vn, va, vb, vc]) in rows {
-        let solution = solved(&wye(source, 1e-7, f64::INFINITY, ohms));
+        let solution = solved(&four_wires(source, 1e-7, f64::INFINITY, ohms));
         near(solution.volts[0][N].unwrap().magnitude(), vn, 1e-3);
         for (leg, expected) in [(L1, va), (L2, vb), (L3, vc)] {
             near(volts(&solution, 0, leg, N), expected, 1e-3);
@@ -43,20 +45,20 @@ fn four_wire_230_400() {
         (f64::INFINITY, [150.167, 260.189, 301.296, 86.822]),
     ];
     for (neutral, expected) in rows {
-        let solution = solved(&wye(400.0 / 3f64.sqrt(), 0.1, neutral, [Some(10.0), Some(20.0), Some(40.0)]));
+        let solution = solved(&four_wires(400.0 / 3f64.sqrt(), 0.1, neutral, [Some(10.0), Some(20.0), Some(40.0)]));
         for (leg, volts_expected) in [L1, L2, L3].into_iter().zip(expected) {
             near(volts(&solution, 0, leg, N), volts_expected, 1.5e-3);
         }
         near(solution.volts[0][N].unwrap().magnitude(), expected[3], 1.5e-3);
     }
-    near(amperes(&solved(&wye(400.0 / 3f64.sqrt(), 0.1, 0.1, [Some(10.0), Some(20.0), Some(40.0)])), 0, N), 14.82, 6e-3);
+    near(amperes(&solved(&four_wires(400.0 / 3f64.sqrt(), 0.1, 0.1, [Some(10.0), Some(20.0), Some(40.0)])), 0, N), 14.82, 6e-3);
 }
 
 /// √(A² + B² + C² − AB − BC − CA) for 10, 15 and 20 A, as commonly published: 8.66 A.
 #[test]
 fn neutral_current_of_a_wye() {
     let ohms = [10.0, 15.0, 20.0].map(|amperes| Some(120.0 / amperes));
-    near(amperes(&solved(&wye(120.0, 0.0, 0.0, ohms)), 0, N), 8.6603, 1e-4);
+    near(amperes(&solved(&four_wires(120.0, 0.0, 0.0, ohms)), 0, N), 8.6603, 1e-4);
 }
 
 /// A four-wire delta: the high leg stands at 208 V to the neutral, 240 V to the others (NEC 110.15).
@@ -69,5 +71,56 @@ fn high_leg_of_a_delta() {
     near(volts(&solution, 0, L2, N), 207.846, 1e-3);
     for pair in [(L1, L2), (L2, L3), (L3, L1)] {
         near(volts(&solution, 0, pair.0, pair.1), 240.0, 1e-3);
+    }
+}
+
+fn product(a: Phasor, b: Phasor) -> Phasor {
+    Phasor { re: a.re * b.re - a.im * b.im, im: a.re * b.im + a.im * b.re }
+}
+
+fn conjugate(a: Phasor) -> Phasor {
+    Phasor { im: -a.im, ..a }
+}
+
+fn sum(phasors: impl Iterator<Item = Phasor>) -> Phasor {
+    phasors.fold(Phasor::default(), |a, b| a + b)
+}
+
+proptest! {
+    /// Ohm's and Kirchhoff's laws and the balance of complex power, whatever the loads.
+    #[test]
+    fn complex_laws(network in wye()) {
+        let mut workspace = Workspace::new(&network).unwrap();
+        workspace.follow(&network, &SolveSettings { tolerance: 1e-8, iterations: 60 }).unwrap();
+        let solution = workspace.solution(&network);
+        let emf = |slot: usize| {
+            let d = network.source.direction.get(slot).copied().unwrap_or_default();
+            let volts = network.source.volts.get(slot).copied().unwrap_or_default();
+            Phasor { re: volts * d.re, im: volts * d.im }
+        };
+        let mut lost = Phasor::default();
+        for (at, span) in network.spans.iter().enumerate() {
+            for slot in [L1, L2, L3, N] {
+                let (v, i) = (solution.volts[at][slot].unwrap(), solution.amperes[at][slot].unwrap());
+                let from = span.fed_from.map_or(emf(slot), |parent| solution.volts[parent][slot].unwrap());
+                let z = Phasor { re: span.ohms[slot].unwrap(), im: span.reactance[slot] };
+                let scale = z.magnitude().max(1.0);
+                let residue = (from - v - product(z, i)).magnitude() / scale;
+                prop_assert!(residue < 1e-6, "{residue} V left over along run {at}");
+                lost = lost + product(from - v, conjugate(i));
+                let children = network.spans.iter().enumerate().filter(|(_, s)| s.fed_from == Some(at));
+                let on = sum(children.map(|(child, _)| solution.amperes[child][slot].unwrap()));
+                let of_loads = network.loads.iter().zip(&solution.loads).filter(|(l, _)| l.at == at);
+                let drawn = sum(of_loads.map(|(l, i)| match l.between {
+                    (a, _) if a == slot => *i,
+                    (_, b) if b == slot => Phasor::default() - *i,
+                    _ => Phasor::default(),
+                }));
+                prop_assert!((i - on - drawn).magnitude() < 1e-9);
+            }
+        }
+        let loads = sum(solution.loads.iter().zip(&solution.load_volts).map(|(i, v)| product(*v, conjugate(*i))));
+        let source = sum([L1, L2, L3].into_iter().map(|s| product(emf(s), conjugate(solution.amperes[0][s].unwrap()))));
+        prop_assert!((source - loads - lost).magnitude() < 1e-5 * source.magnitude().max(1.0));
     }
 }

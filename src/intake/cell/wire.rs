@@ -128,6 +128,9 @@ fn tokens(text: &str) -> Vec<String> {
                 out.push(word[..cut].trim_end_matches(['-', '/']).to_owned());
                 out.push(word[cut..].to_owned());
             }
+            Some(_) if !word.contains(|c: char| c.is_ascii_digit()) => {
+                out.extend(word.split('/').filter(|w| !w.is_empty()).map(str::to_owned))
+            }
             _ if !word.is_empty() => out.push(word.to_owned()),
             _ => {}
         }

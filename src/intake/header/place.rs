@@ -6,7 +6,7 @@ use crate::quantity::parse::{Scale, unit_word};
 use std::collections::BTreeMap;
 
 /// The meaning of a column.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
 pub(crate) enum What {
     /// A named column.
     Named(Column),
@@ -64,34 +64,36 @@ impl Layout {
     }
 
     /// The columns without which a table is not of its kind.
-    fn qualifies(&self) -> bool {
+    fn qualifies(&self, words: &Words) -> bool {
         use Column as C;
+        let has = |column: Column| self.has(column) || words.fixed.column(self.kind, column).is_some();
         let any = |columns: &[Column]| columns.iter().any(|c| self.has(*c));
         match self.kind {
-            Kind::Visit => self.has(C::Item) && self.has(C::Entry),
+            Kind::Visit => has(C::Item) && has(C::Entry),
             Kind::Instruments => {
-                self.has(C::Instrument)
-                    && any(&[C::Measures, C::Serial, C::CalibratedUntil, C::AccuracyPercent, C::Accuracy, C::Resolution])
+                has(C::Instrument) && any(&[C::Measures, C::Serial, C::CalibratedUntil, C::AccuracyPercent, C::Accuracy, C::Resolution])
             }
             Kind::Circuits => {
                 let own = [C::FedFrom, C::Serves, C::Legs, C::Breaker, C::Wire, C::Length, C::Load];
-                self.has(C::Circuit) && own.iter().filter(|c| self.has(**c)).count() + self.loads() >= 1
+                has(C::Circuit) && own.iter().filter(|c| has(**c)).count() + self.loads() >= 1
             }
-            Kind::Readings => self.has(C::Location) && (self.readings() > 0 || (self.has(C::Quantity) && self.has(C::Value))),
-            Kind::Tests => self.has(C::Test) && self.has(C::Value),
-            Kind::Observations => self.has(C::Observation) && any(&[C::Location, C::SignalWord, C::Advice, C::Photo]),
-            Kind::Photos => self.has(C::File) && any(&[C::Location, C::Caption]),
-            Kind::Work => self.has(C::WorkDone) && any(&[C::Date, C::Location, C::Parts]),
-            Kind::Revisions => self.has(C::Issue) && any(&[C::Date, C::Reason]),
+            Kind::Readings => has(C::Location) && (self.readings() > 0 || (has(C::Quantity) && has(C::Value))),
+            Kind::Tests => has(C::Test) && has(C::Value),
+            Kind::Observations => has(C::Observation) && any(&[C::Location, C::SignalWord, C::Advice, C::Photo]),
+            Kind::Photos => has(C::File) && any(&[C::Location, C::Caption]),
+            Kind::Work => has(C::WorkDone) && any(&[C::Date, C::Location, C::Parts]),
+            Kind::Revisions => has(C::Issue) && any(&[C::Date, C::Reason]),
         }
     }
 }
 
 /// The layouts of a header: the kind that places most of its columns (the sheet's name deciding between equals), and where a
 /// circuit list carries readings as well, both.
-pub(super) fn layouts(words: &Words, texts: &BTreeMap<u32, String>, sheet: Option<Kind>) -> Vec<Layout> {
-    let all: Vec<Layout> = Kind::ALL.iter().map(|&kind| layout(words, kind, texts)).filter(Layout::qualifies).collect();
-    let rank = |l: &Layout| (l.score(), Some(l.kind) == sheet, std::cmp::Reverse(l.kind));
+pub(super) fn layouts(words: &Words, texts: &BTreeMap<u32, String>, sheet: &str) -> Vec<Layout> {
+    let (forced, spoken) = (words.forced(sheet), words.sheet(sheet));
+    let kinds = Kind::ALL.iter().filter(|kind| forced.is_none_or(|f| f == Some(**kind)));
+    let all: Vec<Layout> = kinds.map(|&kind| layout(words, kind, texts)).filter(|l| l.qualifies(words)).collect();
+    let rank = |l: &Layout| (l.score(), Some(l.kind) == spoken, std::cmp::Reverse(l.kind));
     let Some(best) = all.iter().max_by_key(|l| rank(l)).cloned() else { return Vec::new() };
     let other = match best.kind {
         Kind::Circuits => all.iter().find(|l| l.kind == Kind::Readings && l.readings() > 0),
@@ -143,8 +145,18 @@ fn both(column: Column, unit: Option<Scale>, layout: &Layout) -> bool {
     column == Column::Length && layout.placed.iter().all(|p| p.what != What::Named(column) || p.unit != unit)
 }
 
-/// The meaning of one header text in a kind of table, with the unit it states.
-pub(super) fn place(words: &Words, kind: Kind, text: &str) -> Option<(What, Option<Scale>)> {
+/// The meaning of one header text in a kind of table, with the unit it states or a mapping gives it.
+pub(crate) fn place(words: &Words, kind: Kind, text: &str) -> Option<(What, Option<Scale>)> {
+    let own = || {
+        let without = without_unit(text);
+        let by_base = without.and_then(|(base, unit)| words.own(kind, &base).map(|what| (what, Some(unit))));
+        words.own(kind, text).map(|what| (what, None)).or(by_base)
+    };
+    let (what, unit) = own().or_else(|| built_in(words, kind, text))?;
+    Some((what, unit.or_else(|| words.unit(what))))
+}
+
+fn built_in(words: &Words, kind: Kind, text: &str) -> Option<(What, Option<Scale>)> {
     let columns = words.columns(kind);
     let by_head = |text: &str, unit: Option<Scale>| {
         let fits = |h: &Head| match kind {
@@ -156,6 +168,11 @@ pub(super) fn place(words: &Words, kind: Kind, text: &str) -> Option<(What, Opti
     };
     if let Some(column) = columns.get(text) {
         return Some((What::Named(column), unit_word(text)));
+    }
+    if let Some((base, unit)) = without_unit_word(text)
+        && let Some(what) = columns.get(&base).map(What::Named).or_else(|| by_head(&base, Some(unit)))
+    {
+        return Some((what, Some(unit)));
     }
     if let Some(what) = by_head(text, None) {
         return Some((what, None));
@@ -178,6 +195,20 @@ fn without_size_unit(text: &str) -> Option<(String, bool)> {
     let units =
         [("mm\u{b2}", true), ("mm2", true), ("mm^2", true), ("sq mm", true), ("sq. mm", true), ("awg/kcmil", false), ("awg", false)];
     units.iter().find(|(unit, _)| lower.contains(unit)).map(|(unit, metric)| (lower.replace(unit, " "), *metric))
+}
+
+/// The header without a word of it that is a unit and can't be anything else: `Load kW L1`, `L1-N volts`.
+fn without_unit_word(text: &str) -> Option<(String, Scale)> {
+    let plain = |word: &str| word.trim_matches(['(', ')', '[', ']', ',', ':']).to_owned();
+    let is_unit = |word: &str| {
+        let word = plain(word);
+        let letter = word.len() == 1 && !matches!(word.as_str(), "V" | "v" | "W" | "w" | "%");
+        if letter || word.eq_ignore_ascii_case("in") { None } else { unit_word(&word) }
+    };
+    let words: Vec<&str> = text.split_whitespace().collect();
+    let (at, unit) = words.iter().enumerate().find_map(|(i, word)| is_unit(word).map(|unit| (i, unit)))?;
+    let base: Vec<&str> = words.iter().enumerate().filter(|(i, _)| *i != at).map(|(_, word)| *word).collect();
+    (!base.is_empty()).then(|| (base.join(" "), unit))
 }
 
 /// The header without the unit beside it: in brackets anywhere, behind a comma, or its last word.

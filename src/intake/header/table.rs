@@ -3,7 +3,7 @@
 use super::place::{Layout, Placed, What};
 use crate::diag::CellRef;
 use crate::intake::grid::{Area, Cell, Sheet, Value};
-use crate::intake::words::{Column, Kind};
+use crate::intake::words::{Column, Kind, Words};
 use crate::quantity::parse::Scale;
 use std::collections::HashSet;
 
@@ -11,6 +11,7 @@ use std::collections::HashSet;
 #[derive(Clone, Debug)]
 pub(crate) struct Table<'a> {
     pub sheet: &'a Sheet,
+    words: &'a Words,
     pub kind: Kind,
     pub placed: Vec<Placed>,
     pub unplaced: Vec<(u32, String)>,
@@ -63,12 +64,12 @@ pub(crate) struct Field<'a> {
 }
 
 impl<'a> Table<'a> {
-    pub fn new(sheet: &'a Sheet, layout: Layout, header: (u32, u32), columns: (u32, u32), rows: (u32, u32)) -> Self {
+    pub fn new(sheet: &'a Sheet, words: &'a Words, layout: Layout, header: (u32, u32), columns: (u32, u32), rows: (u32, u32)) -> Self {
         let carried = |col: u32| layout.placed.iter().any(|p| p.col == col && matches!(p.what, What::Named(c) if CARRIED.contains(&c)));
         let mut merged: Vec<Area> = sheet.merged.iter().filter(|a| a.bottom > a.top && carried(a.left)).copied().collect();
         merged.sort_by_key(|a| (a.left, a.top));
         let Layout { kind, placed, unplaced, second, elsewhere } = layout;
-        Self { sheet, kind, placed, unplaced, second, elsewhere, header, columns, rows, merged }
+        Self { sheet, words, kind, placed, unplaced, second, elsewhere, header, columns, rows, merged }
     }
 
     /// The rows that hold something in the table's columns, downwards; a repeated header is none of them.
@@ -105,9 +106,12 @@ impl<'a> Table<'a> {
 }
 
 impl<'a> Row<'a> {
-    /// The cell in a column, or the merged cell above that holds for it too.
+    /// The cell in a column, or the merged cell above that holds for it too; where the table has no such column, a mapping's entry.
     pub fn field(&self, column: Column) -> Option<Field<'a>> {
-        self.at(self.table.column(column)?)
+        match self.table.column(column) {
+            Some(placed) => self.at(placed),
+            None => self.table.words.fixed.column(self.table.kind, column),
+        }
     }
 
     /// All cells of a named column that may stand twice.

@@ -40,7 +40,7 @@ pub(super) fn read<'a>(
 ) -> Circuits {
     let mut circuits = Circuits { runs: Vec::new(), pending: Pending::default() };
     for table in tables.of(Kind::Circuits) {
-        if table.column(Column::FedFrom).is_none() {
+        if table.column(Column::FedFrom).is_none() && reader.words.fixed.column(Kind::Circuits, Column::FedFrom).is_none() {
             let message = Sentence::new("intake.no-fed-from");
             reader.problems.push(crate::diag::Problem::in_sheet(Severity::Warning, &table.sheet.name, "", message));
         }
@@ -76,7 +76,12 @@ fn skipped(row: &Row<'_>, mentioned: &HashSet<String>, reader: &mut Reader<'_>) 
         reader.warning(total, Sentence::new("intake.total-row"));
         return true;
     }
-    row.filled() == 1 && (row.is_note() || !name.is_empty())
+    row.filled() == 1 && !(row.is_note() && is_name(&name, reader))
+}
+
+/// A text alone in its row that can be a circuit's name rather than a note or the title of what follows.
+fn is_name(text: &str, reader: &Reader<'_>) -> bool {
+    (1..=2).contains(&text.split_whitespace().count()) && reader.words.sheet(text).is_none()
 }
 
 fn run<'a>(row: &Row<'a>, system: &System, reader: &mut Reader<'a>, circuits: &mut Circuits) {

@@ -3,7 +3,7 @@
 use super::Tables;
 use crate::intake::cell::plain_text;
 use crate::intake::header::Field;
-use crate::intake::words::{Column, Kind, nearest};
+use crate::intake::words::{Column, Kind, nearest_name};
 use crate::visit::{Instrument, Leg, Quantity, Run, System, name_key};
 use std::cell::Cell;
 use std::collections::{HashMap, HashSet};
@@ -57,7 +57,7 @@ impl<'a> Known<'a> {
     }
 
     pub fn nearest_instrument(&self, name: &str) -> Option<&'a str> {
-        nearest(name, self.instrument_names.iter().copied())
+        nearest_name(name, self.instrument_names.iter().copied())
     }
 
     /// The circuit whose name is nearest to one that is not in the list.
@@ -86,7 +86,7 @@ impl<'a> Known<'a> {
 pub(super) fn nearest_run<'a>(runs: &'a [Run], name: &str, budget: &Cell<usize>) -> Option<&'a str> {
     let left = budget.get().checked_sub(runs.len())?;
     budget.set(left);
-    nearest(name, runs.iter().map(|r| r.name.value.as_str()).filter(|n| *n != name))
+    nearest_name(name, runs.iter().map(|r| r.name.value.as_str()).filter(|n| *n != name))
 }
 
 /// Names that stand as a source in the circuit list or as a location of readings, as they are compared.

@@ -4,6 +4,7 @@ use super::Tables;
 use super::known::Known;
 use crate::diag::{CellRef, Located, Severity};
 use crate::intake::cell::{Expected, Reader, did_you_mean, plain_text, written_time};
+use crate::intake::grid::Value;
 use crate::intake::header::heads::{Head, Probe, head, line_line};
 use crate::intake::header::{Field, Row, Table};
 use crate::intake::words::{Column, Kind};
@@ -74,7 +75,7 @@ impl Readings<'_> {
 
     fn wide(&mut self, row: &Row<'_>, reader: &mut Reader<'_>) {
         let cells: Vec<(Probe, Field<'_>)> = row.placed().filter_map(|(p, f)| p.probe().map(|(probe, _)| (probe, f))).collect();
-        let telling = cells.iter().any(|(_, f)| !not_measured(&plain_text(f.value)));
+        let telling = cells.iter().any(|(_, f)| !silent(*f));
         let Some(mut set) = self.head(row, telling, reader) else { return };
         for (probe, field) in cells {
             set.readings.extend(self.reading(probe, field, None, &set, reader));
@@ -85,7 +86,7 @@ impl Readings<'_> {
     }
 
     fn long(&mut self, table: usize, row: &Row<'_>, reader: &mut Reader<'_>) {
-        let value = row.field(Column::Value).filter(|f| !not_measured(&plain_text(f.value)));
+        let value = row.field(Column::Value).filter(|f| !silent(*f));
         let Some(mut set) = self.head(row, value.is_some(), reader) else { return };
         let Some(value) = value else { return };
         let Some(quantity) = row.field(Column::Quantity) else {
@@ -214,7 +215,7 @@ impl Readings<'_> {
         set: &ReadingRow,
         reader: &mut Reader<'_>,
     ) -> Option<Reading> {
-        if not_measured(&plain_text(field.value)) && !reader_breaks(field) {
+        if silent(field) {
             return None;
         }
         let Some(quantity) = self.resolved(probe, set.run) else {
@@ -268,9 +269,9 @@ impl Readings<'_> {
     }
 }
 
-/// Error values stand for themselves, `#N/A` among them.
-fn reader_breaks(field: Field<'_>) -> bool {
-    matches!(field.value, crate::intake::grid::Value::Error(_) | crate::intake::grid::Value::NoResult(_))
+/// Nothing was measured. An error value is named, `#N/A` among them.
+fn silent(field: Field<'_>) -> bool {
+    !matches!(field.value, Value::Error(_) | Value::NoResult(_)) && not_measured(&plain_text(field.value))
 }
 
 fn legs_of(quantity: Quantity) -> Vec<Leg> {

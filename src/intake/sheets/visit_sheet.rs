@@ -34,7 +34,10 @@ pub(super) fn read<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, reader: &
     let mut forms: Vec<Vec<Line<'a>>> = tables.of(Kind::Visit).map(|t| lines_of(t, reader.words)).collect();
     forms.extend(workbook.sheets.iter().filter_map(|sheet| form(sheet, tables, reader.words)));
     let mut forms = forms.into_iter();
-    let entries = forms.next().map(|lines| entries(lines, reader)).unwrap_or_default();
+    let mut entries = forms.next().map(|lines| entries(lines, reader)).unwrap_or_default();
+    for (item, fixed) in reader.words.fixed.items() {
+        entries.entry(item).or_insert(fixed);
+    }
     for second in forms {
         say_second(&second, reader);
     }

@@ -7,10 +7,25 @@ mod styles;
 use super::archive::Archive;
 use super::bounds::{Budget, MOST_SHEETS, at_most};
 use super::relations::{self, Relation};
+use super::texts::Texts;
 use super::xml::{Node, Xml};
 use crate::intake::Refusal;
 use crate::intake::grid::Workbook;
-use strings::Strings;
+
+/// Whether a package's main part is a workbook, and not a document or a presentation.
+///
+/// # Errors
+/// The part is broken.
+pub fn is_book(archive: &Archive, main: &str) -> Result<bool, Refusal> {
+    let mut xml = open(archive, main)?;
+    loop {
+        match xml.next()? {
+            Node::Open(tag) => return Ok(tag.name() == b"workbook"),
+            Node::End => return Ok(false),
+            Node::Close | Node::Text(_) => {}
+        }
+    }
+}
 
 /// What the cells of all sheets refer to.
 struct Book {
@@ -34,8 +49,8 @@ pub fn read(archive: &Archive, main: &str, budget: &mut Budget) -> Result<Workbo
     let relations = relations::of(archive, main)?;
     let part = |kind: &str| relations.iter().find(|r| r.kind == kind).map(|r| r.target.as_str());
     let kinds = part("styles").map_or(Ok(Vec::new()), |name| styles::read(archive, name))?;
-    let strings = part("sharedStrings").map_or(Ok(Strings::default()), |name| strings::read(archive, name))?;
-    let context = sheet::Context { kinds: &kinds, strings: &strings, from_1904: book.from_1904 };
+    let texts = part("sharedStrings").map_or(Ok(Texts::default()), |name| strings::read(archive, name))?;
+    let context = sheet::Context { kinds: &kinds, texts: &texts, from_1904: book.from_1904 };
     let mut sheets = Vec::new();
     for entry in &book.sheets {
         if let Some(part) = worksheet(&relations, entry)? {

@@ -1,6 +1,7 @@
 //! Exposure bars: the volts each leg's loads would see if a shared neutral opened, against the band they tolerate.
 
 use super::canvas::{Canvas, Style, pages};
+use super::marks::{Kind, mark};
 use super::neutral_position::foremost;
 use super::{Figure, MOST_HEIGHT, Scene};
 use crate::quantity::Unit;
@@ -17,10 +18,12 @@ const GAP: f64 = 7.0;
 const HEAD: f64 = 26.0;
 const FOOT: f64 = 4.0;
 const RISE: f64 = 3.0;
+/// The end of a range is an open mark.
+const RANGE_END: Kind = Kind { is_left: true, is_own_state: false };
 
 pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
     let nominal = scene.source.visit.system.line_to_neutral.0;
-    let all: Vec<&Exposure> = scene.source.exposure.iter().filter(|e| e.legs.iter().any(|l| l.volts.0.is_finite())).collect();
+    let all: Vec<&Exposure> = scene.source.exposure.iter().filter(|e| can_be_drawn(e)).collect();
     let weights: Vec<f64> = all.iter().map(|e| e.legs.iter().flat_map(ends).map(|v| (v - nominal).abs()).fold(0.0, f64::max)).collect();
     let shown: Vec<&Exposure> = foremost(&weights, MOST).into_iter().map(|i| all[i]).collect();
     if shown.is_empty() {
@@ -42,6 +45,10 @@ pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
         Figure { name: "exposure", caption: format!("{caption}{}", scene.part(i, pages.len())), drawing: Arc::new(drawing) }
     };
     pages.iter().enumerate().map(draw).collect()
+}
+
+fn can_be_drawn(exposure: &Exposure) -> bool {
+    !exposure.legs.is_empty() && exposure.legs.iter().flat_map(ends).all(f64::is_finite)
 }
 
 /// The least and the most volts of a leg; twice the same where there is one solution.
@@ -84,8 +91,10 @@ impl<'a> Chart<'a> {
         self.scale(canvas, bottom);
         let mut y = HEAD;
         for exposure in page {
-            canvas.text((0.0, y + ROW / 2.0 + RISE), &self.scene.name(exposure.run), Style::NAME, Anchor::Start, self.names);
             let finding = self.finding(exposure);
+            let colour = finding.filter(|f| f.signal > Signal::Notice).map_or(Colour::Ink, |f| Colour::Signal(f.signal));
+            let name = Style { colour, ..Style::NAME };
+            canvas.text((0.0, y + ROW / 2.0 + RISE), &self.scene.name(exposure.run), name, Anchor::Start, self.names);
             for leg in &exposure.legs {
                 self.leg(canvas, leg, finding, y + ROW / 2.0);
                 y += ROW;
@@ -119,6 +128,8 @@ impl<'a> Chart<'a> {
             say(nominal)
         };
         canvas.text((self.x((from + to) / 2.0), 18.0), &middle, Style::QUIET, Anchor::Middle, self.x(self.most) - left - 80.0);
+        let head = self.scene.say(&Sentence::new("figure.exposed-head"));
+        canvas.text((right + 24.0, 18.0), &head, Style::QUIET, Anchor::Start, self.scene.width - right - 24.0);
         canvas.text((right, 18.0), &say(self.most), Style::QUIET, Anchor::Middle, 40.0);
     }
 
@@ -132,12 +143,12 @@ impl<'a> Chart<'a> {
         canvas.rounded(&[(left, y), (right, y)], 1.4, Colour::Faint);
         let nominal = self.scene.source.visit.system.line_to_neutral.0;
         if leg.low.is_some() {
-            canvas.line(&[(self.x(low), y), (self.x(high), y)], 5.0, colour);
-            canvas.line(&[(self.x(low), y - 4.5), (self.x(low), y + 4.5)], 1.2, colour);
-            canvas.line(&[(self.x(high), y - 4.5), (self.x(high), y + 4.5)], 1.2, colour);
+            canvas.line(&[(self.x(low), y), (self.x(high), y)], 2.2, colour);
+            mark(canvas, (self.x(low), y), 0.0, RANGE_END, colour);
+            mark(canvas, (self.x(high), y), 0.0, RANGE_END, colour);
         } else {
             canvas.line(&[(self.x(nominal), y), (self.x(high), y)], 2.2, colour);
-            canvas.rect(self.x(high) - 1.8, y - 4.5, (3.6, 9.0), 0.0, colour);
+            mark(canvas, (self.x(high), y), 0.0, Kind::default(), colour);
         }
         let style = if is_off { Style::PLAIN.loud(colour) } else { Style::PLAIN };
         let at = canvas.run(right + 10.0, y + RISE, &self.volts(leg), style, self.scene.width);

@@ -2,23 +2,24 @@
 
 use super::canvas::{Canvas, Style};
 use super::{Figure, Scene};
-use crate::quantity::Unit;
+use crate::quantity::{Unit, VoltAmperes};
 use crate::report::drawing::{Anchor, Colour};
 use crate::results::{Balance, LegLoad, Move};
+use crate::visit::Arrangement;
 use crate::wording::Sentence;
 use std::sync::Arc;
 
 const BAR: f64 = 16.0;
 const GAP: f64 = 3.0;
 const LEG_GAP: f64 = 11.0;
-const HEAD: f64 = 6.0;
+const HEAD: f64 = 16.0;
 const RISE: f64 = 3.0;
 /// White between two pieces.
 const JOINT: f64 = 0.8;
-/// Pieces narrower than this are gathered into one.
-const LEAST_PIECE: f64 = 7.0;
-/// Room a name needs before it is begun.
-const LEAST_NAME: f64 = 18.0;
+/// A piece this wide has room for the beginning of any name.
+const ROOMY: f64 = 30.0;
+/// White about a name in its piece.
+const MARGIN: f64 = 3.0;
 /// Moves named, at most.
 const MOST_MOVES: usize = 12;
 
@@ -44,19 +45,21 @@ pub(super) struct Piece {
     pub is_moved: bool,
 }
 
-/// A leg's circuits as pieces: the greatest first, the smallest gathered, those that move last, so that the bars before and after
-/// differ at their end.
-pub(super) fn pieces(leg: &LegLoad, moves: &[Move], points_per_va: f64) -> Vec<Piece> {
+/// A leg's circuits as pieces: the greatest first, then those too small for `has_room` together, and last those that move, so that
+/// the bars before and after differ at their end.
+pub(super) fn pieces(leg: &LegLoad, moves: &[Move], has_room: impl Fn(&Piece) -> bool) -> Vec<Piece> {
     let is_moved = |run: usize| moves.iter().any(|m| m.run == run);
-    let piece = |&(run, va): &(usize, crate::quantity::VoltAmperes)| Piece { run: Some(run), va: va.0, count: 1, is_moved: is_moved(run) };
+    let piece = |&(run, va): &(usize, VoltAmperes)| Piece { run: Some(run), va: va.0, count: 1, is_moved: is_moved(run) };
     let (moved, mut rest): (Vec<Piece>, Vec<Piece>) = leg.circuits.iter().filter(|c| c.1.0 > 0.0).map(piece).partition(|p| p.is_moved);
     rest.sort_by(|a, b| b.va.total_cmp(&a.va));
-    let first_thin = rest.iter().position(|p| p.va * points_per_va < LEAST_PIECE).unwrap_or(rest.len());
-    let thin = rest.split_off(first_thin);
-    if !thin.is_empty() {
-        let va = thin.iter().map(|p| p.va).sum();
-        let run = if thin.len() == 1 { thin[0].run } else { None };
-        rest.push(Piece { run, va, count: thin.len(), is_moved: false });
+    let small = rest.split_off(rest.iter().position(|p| !has_room(p)).unwrap_or(rest.len()));
+    match small.as_slice() {
+        [] => {}
+        [one] => rest.push(one.clone()),
+        several => {
+            let va = several.iter().map(|p| p.va).sum();
+            rest.push(Piece { run: None, va, count: several.len(), is_moved: false });
+        }
     }
     rest.extend(moved);
     rest
@@ -77,7 +80,7 @@ impl<'a> Chart<'a> {
         let after = scene.say(&Sentence::new("figure.after"));
         let words = canvas.width_of(&now, Style::QUIET).max(canvas.width_of(&after, Style::QUIET)).min(0.15 * scene.width);
         let totals = balance.legs.iter().chain(&balance.after);
-        let total = totals.clone().map(|l| canvas.width_of(&total(scene, l), Style::VALUE.loud(Colour::Ink))).fold(0.0, f64::max);
+        let total = totals.clone().map(|l| canvas.width_of(&total(scene, l), Style::VALUE)).fold(0.0, f64::max);
         let (left, right) = (24.0 + words + 8.0, scene.width - total.min(0.2 * scene.width) - 8.0);
         let most = totals.map(|l| l.va.0).fold(0.0, f64::max);
         Self { scene, balance, left, right, points_per_va: (right - left) / most }
@@ -100,6 +103,7 @@ impl<'a> Chart<'a> {
             }
             y += BAR + LEG_GAP;
         }
+        self.mean(canvas, y - LEG_GAP + 3.0);
         y += 4.0;
         for sentence in self.summary() {
             y = canvas.paragraph((0.0, y), &self.scene.say(&sentence), Style::PLAIN, self.scene.width, 2);
@@ -114,7 +118,7 @@ impl<'a> Chart<'a> {
 
     fn bar(&self, canvas: &mut Canvas, leg: &LegLoad, y: f64) {
         let mut x = self.left;
-        for piece in pieces(leg, &self.balance.moves, self.points_per_va) {
+        for piece in pieces(leg, &self.balance.moves, |p| self.has_room(canvas, p)) {
             let width = piece.va * self.points_per_va;
             self.piece(canvas, &piece, (x, y), width);
             x += width;
@@ -128,23 +132,55 @@ impl<'a> Chart<'a> {
         );
     }
 
-    fn piece(&self, canvas: &mut Canvas, piece: &Piece, at: (f64, f64), width: f64) {
-        let (x, y) = at;
-        let (fill, ink) = match (piece.is_moved, piece.run) {
-            (true, _) => (Colour::Accent, Colour::Paper),
-            (false, Some(_)) => (Colour::Band, Colour::Ink),
-            (false, None) => (Colour::Faint, Colour::Ink),
-        };
-        canvas.rect(x, y, ((width - JOINT).max(0.3), BAR), 0.0, fill);
-        let label = match piece.run {
+    fn room(&self, piece: &Piece) -> f64 {
+        piece.va * self.points_per_va - JOINT - 2.0 * MARGIN
+    }
+
+    /// The piece can be named.
+    fn has_room(&self, canvas: &Canvas, piece: &Piece) -> bool {
+        self.room(piece) >= ROOMY || canvas.width_of(&self.label(piece), Style::NAME) <= self.room(piece)
+    }
+
+    fn label(&self, piece: &Piece) -> String {
+        match piece.run {
             Some(run) => self.scene.name(run),
             None => self.scene.say(&Sentence::new("figure.others").with("n", piece.count)),
-        };
-        let room = width - JOINT - 6.0;
-        if room >= LEAST_NAME || canvas.width_of(&label, Style::PLAIN) <= room {
-            let style = if piece.is_moved { Style::PLAIN.loud(ink) } else { Style { colour: ink, ..Style::PLAIN } };
-            canvas.text((x + 3.0, y + BAR / 2.0 + RISE), &label, style, Anchor::Start, room);
         }
+    }
+
+    fn piece(&self, canvas: &mut Canvas, piece: &Piece, at: (f64, f64), width: f64) {
+        let (x, y) = at;
+        let (fill, ink, quiet) = match (piece.is_moved, piece.run) {
+            (true, _) => (Colour::Accent, Colour::Paper, Colour::Paper),
+            (false, Some(_)) => (Colour::Band, Colour::Ink, Colour::Quiet),
+            (false, None) => (Colour::Faint, Colour::Ink, Colour::Quiet),
+        };
+        canvas.rect(x, y, ((width - JOINT).max(0.3), BAR), 0.0, fill);
+        if self.has_room(canvas, piece) {
+            let (base, end) = (y + BAR / 2.0 + RISE, x + MARGIN + self.room(piece));
+            let name = if piece.run.is_some() { Style::PLAIN.loud(ink) } else { Style::PLAIN };
+            let at = canvas.run(x + MARGIN, base, &self.label(piece), name, end) + 4.0;
+            if let Some(serves) = self.serves(piece).filter(|s| at + canvas.width_of(s, Style::QUIET) <= end) {
+                canvas.run(at, base, &serves, Style { colour: quiet, ..Style::QUIET }, end);
+            }
+        }
+    }
+
+    fn serves(&self, piece: &Piece) -> Option<String> {
+        let run = self.scene.source.visit.runs.get(piece.run?)?;
+        run.serves.as_ref().map(|s| s.value.clone())
+    }
+
+    /// Where the bars would end if all legs carried alike. The high leg of a delta is not meant to.
+    fn mean(&self, canvas: &mut Canvas, bottom: f64) {
+        let legs = &self.balance.legs;
+        if self.scene.source.visit.system.arrangement == Arrangement::HighLegDelta || legs.len() < 2 {
+            return;
+        }
+        let x = self.left + self.points_per_va * legs.iter().map(|l| l.va.0).sum::<f64>() / legs.len() as f64;
+        let word = self.scene.say(&Sentence::new("figure.mean"));
+        canvas.text((x, 8.0), &word, Style::QUIET, Anchor::Middle, 80.0);
+        canvas.dashed(&[(x, 11.5), (x, bottom)], 0.8, Colour::Quiet, (2.0, 2.0));
     }
 
     /// Imbalance and neutral current, now and after.
@@ -176,6 +212,7 @@ impl<'a> Chart<'a> {
     /// Lists the moves; returns the height of the drawing.
     fn moves(&self, canvas: &mut Canvas, mut y: f64) -> f64 {
         let moves = &self.balance.moves;
+        y += if moves.is_empty() { 0.0 } else { 3.0 };
         for m in moves.iter().take(MOST_MOVES) {
             canvas.rect(0.0, y - 6.4, (7.0, 7.0), 0.0, Colour::Accent);
             canvas.text((12.0, y), &self.moved(m), Style::PLAIN, Anchor::Start, self.scene.width - 12.0);

@@ -11,7 +11,7 @@ const OUTLINE: f64 = 1.1;
 
 /// When a set of readings was taken: filled before a repair, open after it; a bar with what was on as found, a lozenge in a state
 /// of its own.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, PartialOrd, Ord)]
 pub(super) struct Kind {
     pub is_left: bool,
     pub is_own_state: bool,

@@ -125,6 +125,6 @@ pub(super) fn alternative(scene: &Scene, judgements: &Judgements, rows: &[&Readi
     let faults = rows.iter().filter(|r| judgements.fault(r).is_some()).count();
     let mut parts = vec![scene.say(&Sentence::new("figure.position-alt").with("n", rows.len()).with("off", faults))];
     parts.extend(worst.map(|w| scene.say(&w)));
-    parts.extend(scene.leading().and_then(|c| scene.cause(c)).map(|s| scene.say(&s)));
+    parts.extend(scene.pointed_at());
     parts.join(" ")
 }

@@ -1,14 +1,14 @@
 //! The run tree: the circuit list as a tree, each run's stroke as heavy as it is likely to be the fault.
 
 use super::branches::{self, Twig};
-use super::canvas::{Canvas, Style, pages};
-use super::neutral_position::foremost;
+use super::canvas::{Canvas, Style, clean, pages};
+use super::neutral_position::{Judgements, foremost};
 use super::words::percent;
 use super::{Figure, MOST_HEIGHT, Scene};
 use crate::quantity::Unit;
 use crate::report::drawing::{Anchor, Colour};
 use crate::results::CauseKind;
-use crate::visit::{Quantity, ReadingRow, Run, Stage};
+use crate::visit::{Leg, Quantity, ReadingRow, Run, Stage};
 use crate::wording::Sentence;
 use std::ops::Range;
 use std::sync::Arc;
@@ -25,6 +25,10 @@ const THIN: f64 = 0.8;
 const HEAVY: f64 = 5.0;
 /// Probabilities below this are not written.
 const LEAST: f64 = 0.01;
+const COLUMN_GAP: f64 = 13.0;
+/// Widest column.
+const WIDEST: f64 = 64.0;
+const LEAST_LEADER: f64 = 24.0;
 
 pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
     let visit = scene.source.visit;
@@ -39,8 +43,11 @@ pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
     let chart = Chart::new(scene, &shown, probability);
     let alt = alternative(scene, &chart, &shown);
     let mut caption = scene.say(&Sentence::new(if scene.source.diagnosis.is_some() { "figure.tree" } else { "figure.tree-plain" }));
-    if let Some(cause) = scene.leading().and_then(|c| scene.cause(c)) {
-        caption = format!("{caption} {}", scene.say(&cause));
+    if let Some(points) = scene.pointed_at() {
+        caption = format!("{caption} {points}");
+    }
+    if scene.source.diagnosis.is_some_and(|d| d.ranking.iter().any(|c| c.runs.len() > 1)) {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.tree-shared")));
     }
     if shown.len() < visit.runs.len() {
         let left_out = Sentence::new("figure.tree-left-out").with("n", shown.len()).with("of", visit.runs.len());
@@ -106,7 +113,7 @@ fn reading<'a>(scene: &Scene<'a>) -> Vec<Option<&'a ReadingRow>> {
     let visit = scene.source.visit;
     let mut rows: Vec<Option<&ReadingRow>> = vec![None; visit.runs.len()];
     for stage in [Stage::AsFound, Stage::AsLeft] {
-        for row in visit.rows.iter().filter(|r| r.stage == stage && !volts(scene, r).is_empty()) {
+        for row in visit.rows.iter().filter(|r| r.stage == stage && has_volts(scene, r)) {
             if let Some(slot) = row.run.and_then(|r| rows.get_mut(r)) {
                 slot.get_or_insert(row);
             }
@@ -115,30 +122,10 @@ fn reading<'a>(scene: &Scene<'a>) -> Vec<Option<&'a ReadingRow>> {
     rows
 }
 
-/// The line-to-neutral readings of a row, one a leg, in words.
-fn volts(scene: &Scene, row: &ReadingRow) -> String {
-    let legs = scene.source.visit.system.legs();
-    let known = |v: Option<f64>| v.map_or_else(|| "–".to_owned(), |v| scene.language.number(v, 1));
-    let values: Vec<Option<f64>> = legs.iter().map(|l| row.value(Quantity::line_neutral(*l))).collect();
-    if values.iter().all(Option::is_none) {
-        return String::new();
-    }
-    values.into_iter().map(known).collect::<Vec<_>>().join(" · ")
-}
-
-/// Wire, length and breaker in words, as far as they are known.
-fn build(scene: &Scene, run: &Run) -> String {
-    let mut parts = Vec::new();
-    parts.extend(run.wire.as_ref().map(|w| w.value.to_string()));
-    parts.extend(run.length.as_ref().map(|l| scene.language.quantity(l.value.0, 1, Unit::Metre)));
-    parts.extend(run.breaker.as_ref().map(|b| scene.language.quantity(b.value.0, 0, Unit::Ampere)));
-    parts.join(" · ")
-}
-
 fn alternative(scene: &Scene, chart: &Chart, shown: &[usize]) -> String {
     let mut parts = vec![scene.say(&Sentence::new("figure.tree-alt").with("n", scene.source.visit.runs.len()))];
-    match scene.leading().and_then(|c| scene.cause(c)) {
-        Some(cause) => parts.push(scene.say(&cause)),
+    match scene.pointed_at() {
+        Some(points) => parts.push(points),
         None if scene.source.diagnosis.is_some() => parts.push(scene.say(&Sentence::new("figure.tree-alt-none"))),
         None => {}
     }
@@ -153,121 +140,182 @@ fn alternative(scene: &Scene, chart: &Chart, shown: &[usize]) -> String {
     parts.join(" ")
 }
 
-/// Columns: labels, build, readings.
+fn has_volts(scene: &Scene, row: &ReadingRow) -> bool {
+    scene.source.visit.system.legs().iter().any(|l| row.value(Quantity::line_neutral(*l)).is_some())
+}
+
+/// What a column shows of a run.
+#[derive(Clone, Copy)]
+enum Shows {
+    Probability,
+    Wire,
+    Length,
+    Breaker,
+    Volts(Leg),
+}
+
+/// A column, set flush right.
+struct Column {
+    shows: Shows,
+    head: String,
+    /// Left and right end.
+    start: f64,
+    end: f64,
+}
+
+/// Columns: the tree with its labels, then what is known of each run.
 struct Chart<'a> {
     scene: &'a Scene<'a>,
     probability: Vec<f64>,
     is_leading: Vec<bool>,
     rows: Vec<Option<&'a ReadingRow>>,
-    /// End of the labels, of what the run is built of, and of its share.
+    judgements: Judgements<'a>,
+    columns: Vec<Column>,
+    /// End of the labels.
     labels: f64,
-    build: f64,
-    share: f64,
 }
 
 impl<'a> Chart<'a> {
     fn new(scene: &'a Scene<'a>, shown: &[usize], probability: Vec<f64>) -> Self {
-        let visit = scene.source.visit;
-        let canvas = Canvas::new(scene.measure);
-        let rows = reading(scene);
-        let widest = |texts: &mut dyn Iterator<Item = String>, style: Style, most: f64| {
-            texts.map(|t| canvas.width_of(&t, style)).fold(0.0, f64::max).min(most * scene.width)
-        };
-        let readings = widest(&mut shown.iter().filter_map(|r| rows[*r]).map(|r| volts(scene, r)), Style::PLAIN, 0.2);
-        let builds = widest(&mut shown.iter().filter_map(|r| visit.runs.get(*r)).map(|r| build(scene, r)), Style::QUIET, 0.24);
-        let shares = if scene.source.diagnosis.is_some() { 34.0 } else { 0.0 };
-        let heading = if readings > 0.0 { canvas.width_of(&heading(scene), Style::QUIET) } else { 0.0 };
-        let build = scene.width - readings.max(heading) - 14.0;
-        let share = build - builds - 14.0;
-        let mut is_leading = vec![false; visit.runs.len()];
+        let mut is_leading = vec![false; probability.len()];
         for run in scene.leading().iter().flat_map(|c| &c.runs) {
             if let Some(slot) = is_leading.get_mut(*run) {
                 *slot = true;
             }
         }
-        Self { scene, probability, is_leading, rows, labels: share - shares - 8.0, build, share }
+        let (rows, judgements) = (reading(scene), Judgements::of(scene));
+        let mut chart = Self { scene, probability, is_leading, rows, judgements, columns: Vec::new(), labels: scene.width };
+        chart.place_columns(shown);
+        chart
+    }
+
+    /// Places the columns that have something to show, from the right.
+    fn place_columns(&mut self, shown: &[usize]) {
+        let canvas = Canvas::new(self.scene.measure);
+        let volts = self.scene.source.visit.system.legs().iter().map(|l| Shows::Volts(*l));
+        let all: Vec<Shows> = [Shows::Probability, Shows::Wire, Shows::Length, Shows::Breaker].into_iter().chain(volts).collect();
+        let mut end = self.scene.width;
+        for shows in all.into_iter().rev() {
+            let entries = shown.iter().map(|run| canvas.width_of(&self.entry(shows, *run), Style::PLAIN.loud(Colour::Ink)));
+            let widest = entries.fold(0.0, f64::max);
+            if widest > 0.0 {
+                let head = self.head_of(shows);
+                let width = widest.max(canvas.width_of(&head, Style::QUIET)).min(WIDEST);
+                self.columns.push(Column { shows, head, start: end - width, end });
+                end -= width + COLUMN_GAP;
+            }
+        }
+        self.labels = end;
+    }
+
+    fn head_of(&self, shows: Shows) -> String {
+        let say = |key: &'static str| self.scene.say(&Sentence::new(key));
+        match shows {
+            Shows::Probability => say("figure.probability"),
+            Shows::Wire => say("figure.wire"),
+            Shows::Length => say("figure.length"),
+            Shows::Breaker => say("figure.breaker"),
+            Shows::Volts(leg) => Quantity::line_neutral(leg).to_string(),
+        }
+    }
+
+    /// A column's entry for a run; empty where it is not known.
+    fn entry(&self, shows: Shows, run: usize) -> String {
+        let Some(r) = self.scene.source.visit.runs.get(run) else { return String::new() };
+        let language = self.scene.language;
+        let known = match shows {
+            Shows::Probability => Some(self.probability[run]).filter(|p| *p >= LEAST).map(|p| percent(language, p)),
+            Shows::Wire => r.wire.as_ref().map(|w| w.value.to_string()),
+            Shows::Length => r.length.as_ref().map(|l| language.quantity(l.value.0, 1, Unit::Metre)),
+            Shows::Breaker => r.breaker.as_ref().map(|b| language.quantity(b.value.0, 0, Unit::Ampere)),
+            Shows::Volts(leg) => {
+                let volts = self.rows[run].and_then(|row| row.value(Quantity::line_neutral(leg)));
+                volts.map(|v| language.quantity(v, 1, Unit::Volt))
+            }
+        };
+        known.unwrap_or_default()
     }
 
     fn draw(&self, canvas: &mut Canvas, twigs: &[Twig], page: &Range<usize>) -> f64 {
         let middles: Vec<f64> = (0..twigs.len()).map(|i| ROW * (i as f64 + 0.5)).collect();
         let (start, finish) = (ROW * page.start as f64, ROW * page.end as f64);
-        self.head(canvas);
+        for column in &self.columns {
+            canvas.text((column.end, 9.0), &column.head, Style::QUIET, Anchor::End, column.end - column.start);
+        }
         branches::trunks(canvas, twigs, &middles, start..finish, HEAD);
         for i in page.clone() {
-            let y = middles[i] - start + HEAD;
-            self.stroke(canvas, twigs, i, y);
+            self.stroke(canvas, twigs, i, middles[i] - start + HEAD);
         }
         for i in page.clone() {
-            self.row(canvas, twigs, i, middles[i] - start + HEAD);
+            self.row(canvas, &twigs[i], middles[i] - start + HEAD);
         }
         finish - start + HEAD + FOOT
     }
 
-    fn head(&self, canvas: &mut Canvas) {
-        let say = |key: &'static str| self.scene.say(&Sentence::new(key));
-        if self.rows.iter().any(Option::is_some) {
-            canvas.text((self.scene.width, 9.0), &heading(self.scene), Style::QUIET, Anchor::End, self.scene.width - self.build);
-        }
-        canvas.text((self.build, 9.0), &say("figure.build"), Style::QUIET, Anchor::End, self.build - self.share - 4.0);
-        if self.scene.source.diagnosis.is_some() {
-            canvas.text((self.share, 9.0), &say("figure.share"), Style::QUIET, Anchor::End, self.share - self.labels + 40.0);
-        }
+    fn signal(&self) -> Colour {
+        Colour::Signal(self.scene.leading_signal())
     }
 
-    /// The run's own stroke, over the thin line of the tree: as heavy as it is likely, the neutral beside it where two legs share it.
+    /// A suspect's own stroke, over the thin line of the tree: as heavy as it is likely.
     fn stroke(&self, canvas: &mut Canvas, twigs: &[Twig], i: usize, y: f64) {
         let twig = &twigs[i];
-        let from = twig.parent.filter(|_| !twig.is_apart).and_then(|p| twigs.get(p)).map(Twig::x);
-        let x = twig.x();
-        let top = (y - ROW + 2.0).max(HEAD - 6.0);
-        let path = match from {
-            Some(from) if from < x => vec![(from, y - ROW / 2.0), (from, y), (x, y)],
-            _ => vec![(x, top.max(y - ROW + 4.0)), (x, y)],
-        };
         let probability = self.probability[twig.run];
         if probability < LEAST {
             return;
         }
-        let colour = if self.is_leading[twig.run] { Colour::Signal(self.scene.leading_signal()) } else { Colour::Quiet };
+        let x = twig.x();
+        let from = twig.parent.filter(|_| !twig.is_apart).and_then(|p| twigs.get(p)).map(Twig::x);
+        let path = match from {
+            Some(from) if from < x => vec![(from, y - ROW / 2.0), (from, y), (x, y)],
+            _ => vec![(x, y - ROW + 4.0), (x, y)],
+        };
+        let colour = if self.is_leading[twig.run] { self.signal() } else { Colour::Quiet };
         canvas.rounded(&path, THIN + HEAVY * probability.min(1.0), colour);
     }
 
-    fn row(&self, canvas: &mut Canvas, twigs: &[Twig], i: usize, y: f64) {
-        let twig = &twigs[i];
+    fn row(&self, canvas: &mut Canvas, twig: &Twig, y: f64) {
         let Some(run) = self.scene.source.visit.runs.get(twig.run) else { return };
         let is_leading = self.is_leading[twig.run];
-        let colour = if is_leading { Colour::Signal(self.scene.leading_signal()) } else { Colour::Ink };
+        let colour = if is_leading { self.signal() } else { Colour::Ink };
         node(canvas, (twig.x(), y), run, is_leading.then_some(colour));
-        let name = Style { colour, ..Style::NAME };
         let base = y + RISE;
-        let end = canvas.run(twig.x() + 8.0, base, &run.name.value, name, self.labels);
-        let serves = match (&run.serves, &run.fed_from) {
+        let mut end = canvas.run(twig.x() + 8.0, base, &run.name.value, Style { colour, ..Style::NAME }, self.labels);
+        let serves = self.serves(twig, run);
+        if !serves.is_empty() {
+            end = canvas.run(end + 6.0, base, &serves, Style::QUIET, self.labels);
+        }
+        let entries: Vec<(&Column, String)> = self.columns.iter().map(|c| (c, self.entry(c.shows, twig.run))).collect();
+        for (column, entry) in entries.iter().rev().filter(|(_, e)| !e.is_empty()) {
+            let style = self.style(column.shows, twig.run, colour);
+            let width = canvas.text((column.end, base), entry, style, Anchor::End, column.end - column.start);
+            // A leader carries the eye from the label to the first entry.
+            if end > 0.0 && column.end - width - end > LEAST_LEADER {
+                canvas.dashed(&[(end + 5.0, base - 0.5), (column.end - width - 5.0, base - 0.5)], 0.6, Colour::Faint, (0.6, 2.6));
+            }
+            end = 0.0;
+        }
+    }
+
+    fn style(&self, shows: Shows, run: usize, colour: Colour) -> Style {
+        match shows {
+            Shows::Probability if self.is_leading[run] => Style::PLAIN.loud(colour),
+            Shows::Probability => Style::PLAIN,
+            Shows::Volts(_) if self.rows[run].is_some_and(|r| self.judgements.fault(r).is_some()) => Style::PLAIN.loud(Colour::Ink),
+            Shows::Volts(_) => Style::PLAIN,
+            _ => Style::QUIET,
+        }
+    }
+
+    /// What the run serves; of a run that hangs on no line, where it is fed from.
+    fn serves(&self, twig: &Twig, run: &Run) -> String {
+        match (&run.serves, &run.fed_from) {
             (_, Some(source)) if twig.is_apart || twig.parent.is_none() => {
-                self.scene.say(&Sentence::new("figure.from").with("run", super::canvas::clean(&source.value)))
+                self.scene.say(&Sentence::new("figure.from").with("run", clean(&source.value)))
             }
             (Some(serves), _) => serves.value.clone(),
             _ => String::new(),
-        };
-        canvas.run(end + 6.0, base, &serves, Style::QUIET, self.labels);
-        let probability = self.probability[twig.run];
-        if probability >= LEAST {
-            let style = if is_leading { Style::PLAIN.loud(colour) } else { Style::PLAIN };
-            canvas.text((self.share, base), &percent(self.scene.language, probability), style, Anchor::End, self.share - self.labels);
-        }
-        canvas.text((self.build, base), &build(self.scene, run), Style::QUIET, Anchor::End, self.build - self.share - 8.0);
-        if let Some(row) = self.rows[twig.run] {
-            let style = if is_leading { Style::PLAIN.loud(Colour::Ink) } else { Style::PLAIN };
-            let room = self.scene.width - self.build - 6.0;
-            canvas.text((self.scene.width, base), &volts(self.scene, row), style, Anchor::End, room);
         }
     }
-}
-
-/// `L1-N · L2-N, V`.
-fn heading(scene: &Scene) -> String {
-    let legs = scene.source.visit.system.legs().iter();
-    let names: Vec<String> = legs.map(|l| Quantity::line_neutral(*l).to_string()).collect();
-    format!("{}, {}", names.join(" · "), Unit::Volt)
 }
 
 /// A node: a dot; a ring where its run shares a neutral between legs; a square in the signal colour where it is suspected.

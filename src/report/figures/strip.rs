@@ -4,7 +4,7 @@
 //! second's. Down a sound tree the marks stand in line; below an open neutral they step aside.
 
 use super::branches::{self, Twig};
-use super::canvas::{Canvas, Style, pages};
+use super::canvas::{Canvas, Style, clean, pages};
 use super::marks::{Kind, mark};
 use super::neutral_position::{Judgements, NAME, alternative, foremost, in_tree_order, same_location, taken, volts};
 use super::{Figure, MOST_HEIGHT, Scene};
@@ -25,18 +25,22 @@ const HEAD: f64 = 20.0;
 const FOOT: f64 = 22.0;
 /// From a baseline up to the middle of its letters.
 const RISE: f64 = 3.0;
+/// From a node to its name, from a name to what is said behind it.
+const NODE_GAP: f64 = 7.0;
+const NAME_GAP: f64 = 6.0;
 
 /// One set of readings on its beam.
 struct Set<'a> {
     row: &'a ReadingRow,
     volts: [f64; 2],
-    /// First of its location, and whether the location has others.
+    /// First of its location.
     is_first: bool,
-    is_only: bool,
     /// Position among the twigs.
     twig: Option<usize>,
     /// The suspected part of the tree begins here.
     has_note: bool,
+    /// Said behind the name.
+    said: String,
 }
 
 /// Where the neutral sits: the first leg's share of the sum of both.
@@ -63,7 +67,7 @@ pub(super) fn figures(scene: &Scene, first: Leg, second: Leg) -> Vec<Figure> {
         return Vec::new();
     }
     let (sets, twigs) = arrange(scene, &rows, legs);
-    let strip = Strip::new(scene, &sets, legs);
+    let strip = Strip::new(scene, &sets, &twigs, legs);
     let heights: Vec<f64> = sets.iter().map(Set::height).collect();
     let pages = pages(&heights, MOST_HEIGHT - HEAD - FOOT);
     let alt = alternative(scene, &judgements, &all, farthest(scene, &rows, legs));
@@ -95,7 +99,7 @@ fn farthest(scene: &Scene, rows: &[&ReadingRow], legs: [Leg; 2]) -> Option<Sente
     let (row, volts) = known.reduce(|a, b| if off(&b.1) > off(&a.1) { b } else { a })?;
     Some(
         Sentence::new("figure.position-farthest")
-            .with("at", super::canvas::clean(&row.location.value))
+            .with("at", clean(&row.location.value))
             .with("taken", taken(row))
             .with("first", legs[0].name())
             .with("second", legs[1].name())
@@ -119,16 +123,27 @@ fn arrange<'a>(scene: &Scene<'a>, rows: &[&'a ReadingRow], legs: [Leg; 2]) -> (V
         if is_first && row.run.is_some() {
             twig = Some(twig.map_or(0, |t: usize| t + 1));
         }
+        let Some(volts) = both(row, legs) else { continue };
+        let is_only = is_first && !alike(rows.get(i + 1), row);
         sets.push(Set {
             row,
-            volts: both(row, legs).unwrap_or([1.0, 1.0]),
+            volts,
             is_first,
-            is_only: is_first && !alike(rows.get(i + 1), row),
             twig: row.run.and(twig),
             has_note: is_first && row.run.is_some() && row.run.as_ref() == noted,
+            said: said(scene, row, is_first, is_only),
         });
     }
     (sets, twigs)
+}
+
+/// What stands behind the name: what the run serves, once; when the readings were taken, where that is not plain.
+fn said(scene: &Scene, row: &ReadingRow, is_first: bool, is_only: bool) -> String {
+    let run = row.run.and_then(|r| scene.source.visit.runs.get(r)).filter(|_| is_first);
+    let serves = run.and_then(|r| r.serves.as_ref()).map(|s| clean(&s.value));
+    let is_plain = is_only && Kind::of(row) == Kind::default();
+    let parts: Vec<String> = serves.into_iter().chain((!is_plain).then(|| taken(row))).collect();
+    parts.join(" · ")
 }
 
 impl Set<'_> {
@@ -148,12 +163,17 @@ struct Strip<'a> {
 }
 
 impl<'a> Strip<'a> {
-    fn new(scene: &'a Scene<'a>, sets: &[Set], legs: [Leg; 2]) -> Self {
+    fn new(scene: &'a Scene<'a>, sets: &[Set], twigs: &[Twig], legs: [Leg; 2]) -> Self {
         let canvas = Canvas::new(scene.measure);
         let loud = Style::VALUE.loud(Colour::Ink);
         let width = |v: f64| canvas.width_of(&scene.language.quantity(v, 1, Unit::Volt), loud);
         let widest = |leg: usize| sets.iter().map(|s| width(s.volts[leg])).fold(24.0, f64::max).min(54.0);
-        let labels = 0.37 * scene.width;
+        let label = |s: &Set| {
+            let twig = s.twig.and_then(|t| twigs.get(t)).map_or(0.0, Twig::x);
+            let name = if s.is_first { canvas.width_of(&s.row.location.value, Style::NAME) + NAME_GAP } else { 0.0 };
+            twig + NODE_GAP + name + canvas.width_of(&s.said, Style::QUIET)
+        };
+        let labels = sets.iter().map(label).fold(0.2 * scene.width, f64::max).min(0.42 * scene.width);
         let beam = [labels + 8.0 + widest(0) + 7.0, scene.width - widest(1) - 7.0];
         Self { scene, legs, labels, beam }
     }
@@ -176,9 +196,7 @@ impl<'a> Strip<'a> {
         let start = middles[page.start] - sets[page.start].height() + ROW / 2.0;
         let finish = middles[page.end - 1] + ROW / 2.0;
         let y = |i: usize| middles[i] - start + HEAD;
-        for i in page.clone() {
-            self.band(canvas, judgements, &sets[i], y(i));
-        }
+        self.band(canvas, judgements, &sets[page.clone()]);
         self.head(canvas, finish - start + HEAD);
         let nodes: Vec<f64> = sets.iter().zip(&middles).filter(|(s, _)| s.is_first && s.twig.is_some()).map(|(_, y)| *y).collect();
         branches::trunks(canvas, twigs, &nodes, start..finish, HEAD);
@@ -206,16 +224,29 @@ impl<'a> Strip<'a> {
         canvas.line(&[(self.x(0.5), 13.0), (self.x(0.5), bottom)], 0.5, Colour::Faint);
     }
 
-    fn band(&self, canvas: &mut Canvas, judgements: &Judgements, set: &Set, y: f64) {
-        if let Some(allowed) = judgements.allowed(self.scene, set.row) {
-            let half = allowed / (set.volts[0] + set.volts[1]);
-            let (from, to) = (self.x(0.5 - half), self.x(0.5 + half));
-            canvas.rect(from, y - ROW / 2.0, (to - from, ROW), 0.0, Colour::Band);
+    /// What is allowed, as one shape over the rows that follow each other.
+    fn band(&self, canvas: &mut Canvas, judgements: &Judgements, sets: &[Set]) {
+        let half = |s: &Set| judgements.allowed(self.scene, s.row).map(|volts| volts / (s.volts[0] + s.volts[1]));
+        let mut top = HEAD;
+        for group in sets.chunk_by(|a, b| half(a).is_some() == half(b).is_some()) {
+            let (mut left, mut right) = (Vec::new(), Vec::new());
+            for set in group {
+                let bottom = top + set.height();
+                if let Some(half) = half(set) {
+                    left.extend([(self.x(0.5 - half), top), (self.x(0.5 - half), bottom)]);
+                    right.extend([(self.x(0.5 + half), top), (self.x(0.5 + half), bottom)]);
+                }
+                top = bottom;
+            }
+            if !left.is_empty() {
+                left.extend(right.into_iter().rev());
+                canvas.polygon(&left, Some(Colour::Band), None);
+            }
         }
     }
 
     fn note(&self, canvas: &mut Canvas, y: f64, from: f64) {
-        let Some(sentence) = self.scene.leading().and_then(|c| self.scene.cause(c)) else { return };
+        let Some(sentence) = self.scene.leading().and_then(|c| self.scene.suspicion(c)) else { return };
         let colour = Colour::Signal(self.scene.leading_signal());
         let style = Style::PLAIN.loud(colour);
         let width = canvas.text((self.scene.width, y + RISE), &self.scene.say(&sentence), style, Anchor::End, 0.75 * self.scene.width);
@@ -224,20 +255,14 @@ impl<'a> Strip<'a> {
 
     fn label(&self, canvas: &mut Canvas, set: &Set, twig: Option<&Twig>, y: f64, is_top: bool) {
         let x = twig.map_or(4.0, Twig::x);
-        let mut at = x + 7.0;
+        let mut at = x + NODE_GAP;
         if set.is_first {
             canvas.circle((x, y), 1.9, Some(Colour::Ink), None);
         }
         if set.is_first || is_top {
-            at = canvas.run(at, y + RISE, &set.row.location.value, Style::NAME, self.labels) + 6.0;
+            at = canvas.run(at, y + RISE, &set.row.location.value, Style::NAME, self.labels) + NAME_GAP;
         }
-        let said = if set.is_only && super::marks::is_default_state(set.row) && set.row.stage == crate::visit::Stage::AsFound {
-            let run = set.row.run.and_then(|r| self.scene.source.visit.runs.get(r));
-            run.and_then(|r| r.serves.as_ref()).map_or_else(String::new, |s| s.value.clone())
-        } else {
-            taken(set.row)
-        };
-        canvas.run(at, y + RISE, &said, Style::QUIET, self.labels);
+        canvas.run(at, y + RISE, &set.said, Style::QUIET, self.labels);
     }
 
     fn beam(&self, canvas: &mut Canvas, judgements: &Judgements, set: &Set, y: f64) {

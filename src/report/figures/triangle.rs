@@ -14,9 +14,11 @@ const MOST: usize = 36;
 const COLUMNS: usize = 3;
 const HEAD: f64 = 26.0;
 /// Room about a triangle for the volts at its corners.
-const ABOVE: f64 = 14.0;
+const ABOVE: f64 = 8.0;
 const BELOW: f64 = 14.0;
-const FOOT: f64 = 18.0;
+const FOOT: f64 = 16.0;
+/// Between two lines of triangles.
+const GAP: f64 = 12.0;
 type Point = (f64, f64);
 
 /// The lines and the neutral as points in volts: L1 and L2 (on a high-leg delta L1 and L3) on the level, the third above.
@@ -121,6 +123,8 @@ struct Grid<'a> {
     cell: f64,
     points_per_volt: f64,
     legs: [Leg; 3],
+    /// The third line was brought along.
+    has_third: bool,
 }
 
 impl<'a> Grid<'a> {
@@ -129,8 +133,9 @@ impl<'a> Grid<'a> {
         let cell = scene.width / COLUMNS as f64;
         let system = &scene.source.visit.system;
         // A tenth more than nominal still fits.
-        let points_per_volt = (cell - 40.0) / (1.1 * system.line_to_line.0);
-        Self { scene, columns, cell, points_per_volt, legs: order(system.arrangement) }
+        let points_per_volt = (cell - 40.0) / (1.06 * system.line_to_line.0);
+        let has_third = system.arrangement != Arrangement::TwoLegsOfWye;
+        Self { scene, columns, cell, points_per_volt, legs: order(system.arrangement), has_third }
     }
 
     fn tall(&self) -> f64 {
@@ -138,7 +143,7 @@ impl<'a> Grid<'a> {
     }
 
     fn line_height(&self) -> f64 {
-        HEAD + ABOVE + self.tall() + BELOW
+        HEAD + ABOVE + self.tall() + BELOW + GAP
     }
 
     /// Lines of triangles on a page, spread evenly.
@@ -155,7 +160,7 @@ impl<'a> Grid<'a> {
             self.triangle(canvas, judgements, row, (left, top));
         }
         let bottom = self.line_height() * page.len().div_ceil(self.columns) as f64;
-        self.legend(canvas, page, bottom + 10.0);
+        self.legend(canvas, page, bottom + 8.0);
         bottom + FOOT
     }
 
@@ -183,10 +188,16 @@ impl<'a> Grid<'a> {
             let radius = (allowed * self.points_per_volt).min(self.tall());
             canvas.circle(nominal, radius, Some(Colour::Band), Some((0.6, Colour::Quiet)));
         }
-        canvas.polygon(&corners, None, Some((1.2, Colour::Faint)));
-        for corner in corners {
-            canvas.line(&[neutral, corner], 0.6, if fault.is_some() { colour } else { Colour::Faint });
+        let spokes = if fault.is_some() { colour } else { Colour::Faint };
+        let [first, second, third] = corners;
+        if self.has_third {
+            canvas.polygon(&corners, None, Some((1.2, Colour::Faint)));
+            canvas.line(&[neutral, third], 0.6, spokes);
+        } else {
+            canvas.line(&[first, second], 1.2, Colour::Faint);
+            canvas.dashed(&[first, third, second], 0.8, Colour::Faint, (2.0, 2.0));
         }
+        canvas.line(&[first, neutral, second], 0.6, spokes);
         if fault.is_some() {
             canvas.line(&[nominal, neutral], 2.2, colour);
         }

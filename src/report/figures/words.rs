@@ -40,14 +40,20 @@ impl Scene<'_> {
         self.source.findings.iter().filter(is_of_cause).map(|f| f.signal).max().unwrap_or(Signal::Warning)
     }
 
-    /// The leading cause in words: `Neutral of 5/7 and 5/7a: 97 % probable`.
-    pub fn cause(&self, cause: &Cause) -> Option<Sentence> {
+    /// A cause as a label: `neutral of 5/7 and 5/7a, 97 % probable`.
+    pub fn suspicion(&self, cause: &Cause) -> Option<Sentence> {
         let sentence = match cause.kind {
             CauseKind::Neutral => Sentence::new("figure.cause-neutral"),
             CauseKind::Hot(leg) => Sentence::new("figure.cause-hot").with("leg", leg.name()),
             _ => return None,
         };
         Some(sentence.with("runs", self.names(&cause.runs)).with("percent", percent(self.language, cause.probability)))
+    }
+
+    /// The leading cause as a sentence; `None` where the readings point at no run.
+    pub fn pointed_at(&self) -> Option<String> {
+        let cause = self.leading().and_then(|c| self.suspicion(c))?;
+        Some(self.say(&Sentence::new("figure.points").with("cause", cause)))
     }
 
     /// Which of how many drawings this is, for the caption; nothing where it is the only one.

@@ -85,10 +85,10 @@ impl Table<'_, '_> {
         if hidden {
             self.draft.hide_rows(first, self.row - 1)?;
         }
-        let cells = self.draft.since(start).to_vec();
-        if cells.is_empty() {
+        if repeated == 1 || self.draft.len() == start {
             return Ok(());
         }
+        let cells = self.draft.since(start).to_vec();
         for row in first + 1..self.row {
             for cell in &cells {
                 self.draft.put(row, cell.col, cell.value.clone(), self.budget)?;
@@ -120,16 +120,12 @@ impl Table<'_, '_> {
         }
     }
 
-    /// The paragraphs of the cell that was just opened; nothing else in it is its text, above all no comment.
-    fn text(&mut self) -> Result<String, Refusal> {
-        let mut text = String::new();
-        let mut first = true;
+    /// The paragraphs of the cell that was just opened, if it has any; nothing else in it is its text, above all no comment.
+    fn text(&mut self) -> Result<Option<String>, Refusal> {
+        let mut text = None;
         loop {
             match self.xml.next()? {
-                Node::Open(tag) if tag.name() == b"p" => {
-                    paragraph::append(self.xml, &mut text, first)?;
-                    first = false;
-                }
+                Node::Open(tag) if tag.name() == b"p" => paragraph::append(self.xml, &mut text)?,
                 Node::Open(_) => self.xml.skip()?,
                 Node::Close | Node::End => return Ok(text),
                 Node::Text(_) => {}
@@ -143,7 +139,7 @@ impl Table<'_, '_> {
         if bottom < self.row || right < col {
             return Ok(());
         }
-        self.draft.merge(Area { top: self.row, left: col, bottom, right })
+        self.draft.merge(Area { top: self.row, left: col, bottom, right }, self.budget)
     }
 }
 
@@ -163,12 +159,19 @@ impl Head {
         Ok(head)
     }
 
-    fn into_value(self, text: String) -> Option<Value> {
+    /// The value, given the text shown. A formula that was never computed shows none, one whose result is no text an empty one.
+    fn into_value(self, text: Option<String>) -> Option<Value> {
+        if text.is_none() && matches!(self.kind.as_str(), "" | "void") {
+            return self.formula.map(Value::NoResult);
+        }
+        let text = text.unwrap_or_default();
         if self.is_error || (self.formula.is_some() && is_error(&text)) {
             return Some(Value::Error(text));
         }
         let plain = |text: String| (!text.is_empty()).then_some(Value::Text(text));
         match self.kind.as_str() {
+            // Some writers give the result of a comparison as a number that is shown as a word.
+            "float" if text == "TRUE" || text == "FALSE" => Some(Value::Logical(text == "TRUE")),
             "float" | "percentage" | "currency" => match self.value.parse::<f64>() {
                 Ok(number) if number.is_finite() => Some(Value::Number(number)),
                 _ => plain(text),
@@ -177,7 +180,6 @@ impl Head {
             "time" => serial::of_duration(&self.value).map(Value::DateTime).or_else(|| plain(text)),
             "boolean" => Some(Value::Logical(self.value == "true")),
             "string" if !self.value.is_empty() => Some(Value::Text(self.value)),
-            "" | "void" if text.is_empty() => self.formula.map(Value::NoResult),
             _ => plain(text),
         }
     }

@@ -1,11 +1,12 @@
 //! A worksheet part: its cells, hidden rows and columns, merged areas.
 
 use super::super::archive::Archive;
-use super::super::bounds::{Budget, MOST_ENTRIES, at_most};
+use super::super::bounds::{Budget, MOST_ENTRIES, add, at_most};
 use super::super::draft::Draft;
 use super::super::serial::{self, Kind};
+use super::super::texts::Texts;
 use super::super::xml::{Node, Tag, Xml};
-use super::strings::{Strings, rich, unescape};
+use super::strings::{rich, unescape};
 use super::{Entry, is_true};
 use crate::intake::Refusal;
 use crate::intake::grid::{Area, Sheet, Value};
@@ -16,7 +17,7 @@ pub struct Context<'a> {
     /// Kind of number of each cell format.
     pub kinds: &'a [Kind],
     /// Shared texts.
-    pub strings: &'a Strings,
+    pub texts: &'a Texts,
     /// The workbook counts days from 1904.
     pub from_1904: bool,
 }
@@ -86,7 +87,7 @@ impl Reading<'_> {
                     b"sheetData" => self.rows()?,
                     b"mergeCell" => {
                         if let Some(area) = tag.get("ref")?.as_deref().and_then(area) {
-                            self.draft.merge(area)?;
+                            self.draft.merge(area, self.budget)?;
                         }
                     }
                     // Extensions hold parts of cells' names without being cells.
@@ -154,7 +155,7 @@ impl Reading<'_> {
             match self.xml.next()? {
                 Node::Open(tag) => match tag.name() {
                     b"v" => stored = Some(text(&mut self.xml)?),
-                    b"is" => rich(&mut self.xml, inline.get_or_insert_default())?,
+                    b"is" => inline = Some(rich(&mut self.xml)?),
                     b"f" => {
                         let shared = tag.get("si")?.and_then(|index| index.parse().ok());
                         formula = Some(Formula { shared, text: text(&mut self.xml)? });
@@ -180,7 +181,10 @@ impl Reading<'_> {
     fn whole(&mut self, formula: Formula) -> Result<String, Refusal> {
         let Formula { shared, text } = formula;
         match shared {
-            Some(index) if !text.is_empty() => drop(self.masters.insert(index, text.clone())),
+            Some(index) if !text.is_empty() => {
+                self.budget.text(text.len())?;
+                self.masters.insert(index, text.clone());
+            }
             Some(index) if text.is_empty() => {
                 return Ok(format!("={}", self.masters.get(&index).map_or("", String::as_str)));
             }
@@ -193,8 +197,8 @@ impl Reading<'_> {
     fn value(&self, head: &Head, mut text: String) -> Result<Value, Refusal> {
         Ok(match head.kind {
             Type::Shared => {
-                let shared = text.trim().parse().ok().and_then(|index| self.context.strings.get(index));
-                Value::Text(shared.ok_or_else(|| damaged(self.part, "a cell with the shared text", &text))?.to_owned())
+                let number = text.trim().parse().map_err(|_| damaged(self.part, "a cell with the shared text", &text))?;
+                Value::Text(self.context.texts.get(number)?.to_owned())
             }
             Type::Text => {
                 unescape(&mut text);
@@ -235,7 +239,7 @@ fn text(xml: &mut Xml) -> Result<String, Refusal> {
     let mut text = String::new();
     loop {
         match xml.next()? {
-            Node::Text(piece) => text.push_str(&piece),
+            Node::Text(piece) => add(&mut text, &piece)?,
             Node::Open(_) => xml.skip()?,
             Node::Close | Node::End => return Ok(text),
         }

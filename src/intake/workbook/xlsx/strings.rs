@@ -1,53 +1,24 @@
 //! Text in Office Open XML: the table of shared texts, runs of rich text, and characters written as `_x000D_`.
 
 use super::super::archive::Archive;
-use super::super::bounds::{MOST_CELLS, MOST_SHARED, at_most, megabytes};
+use super::super::bounds::add;
+use super::super::texts::Texts;
 use super::super::xml::{Node, Xml};
 use crate::intake::Refusal;
-
-/// The table of shared texts, kept as one text, so that a table of millions of empty entries costs next to nothing.
-#[derive(Default)]
-pub struct Strings {
-    text: String,
-    ends: Vec<u32>,
-}
-
-impl Strings {
-    /// The text at an index.
-    pub fn get(&self, index: usize) -> Option<&str> {
-        let end = *self.ends.get(index)? as usize;
-        let start = index.checked_sub(1).map_or(0, |before| self.ends[before] as usize);
-        self.text.get(start..end)
-    }
-
-    /// Adds a text.
-    ///
-    /// # Errors
-    /// The table is beyond a bound.
-    pub fn push(&mut self, text: &str) -> Result<(), Refusal> {
-        self.text.push_str(text);
-        let end = u32::try_from(self.text.len()).ok().filter(|end| *end as usize <= MOST_SHARED);
-        self.ends.push(end.ok_or_else(|| megabytes("its shared texts are more than", MOST_SHARED, ""))?);
-        at_most(self.ends.len(), MOST_CELLS, "shared texts")
-    }
-}
 
 /// Reads the table.
 ///
 /// # Errors
 /// The part is broken or beyond a bound.
-pub fn read(archive: &Archive, name: &str) -> Result<Strings, Refusal> {
+pub fn read(archive: &Archive, name: &str) -> Result<Texts, Refusal> {
     let mut xml = super::open(archive, name)?;
-    let mut strings = Strings::default();
-    let mut text = String::new();
+    let mut texts = Texts::default();
     loop {
         match xml.next()? {
             Node::Open(tag) if tag.name() == b"si" => {
-                text.clear();
-                rich(&mut xml, &mut text)?;
-                strings.push(&text)?;
+                texts.push(&rich(&mut xml)?)?;
             }
-            Node::End => return Ok(strings),
+            Node::End => return Ok(texts),
             _ => {}
         }
     }
@@ -57,7 +28,8 @@ pub fn read(archive: &Archive, name: &str) -> Result<Strings, Refusal> {
 ///
 /// # Errors
 /// The part is broken.
-pub fn rich(xml: &mut Xml, text: &mut String) -> Result<(), Refusal> {
+pub fn rich(xml: &mut Xml) -> Result<String, Refusal> {
+    let mut text = String::new();
     let mut depth = 1;
     let mut in_text = false;
     while depth > 0 {
@@ -68,13 +40,13 @@ pub fn rich(xml: &mut Xml, text: &mut String) -> Result<(), Refusal> {
                 _ => depth += 1,
             },
             Node::Close => (in_text, depth) = (false, depth - 1),
-            Node::Text(piece) if in_text => text.push_str(&piece),
+            Node::Text(piece) if in_text => add(&mut text, &piece)?,
             Node::Text(_) => {}
             Node::End => break,
         }
     }
-    unescape(text);
-    Ok(())
+    unescape(&mut text);
+    Ok(text)
 }
 
 /// Puts the character for each `_xHHHH_` (ECMA-376 part 1, 22.9.2.19); an underscore is itself written `_x005F_` before such a piece.
