@@ -98,7 +98,8 @@ impl Writer<'_> {
     fn part(&mut self, part: &Part) -> Result<(), XlsxError> {
         let alone = self.page.parts.len() == 1;
         self.row += u32::from(self.row > 1);
-        if !part.table.caption.is_empty() && !(alone && part.table.caption == self.page.sheet.name) {
+        let repeats_title = alone && part.table.caption == self.page.sheet.name;
+        if !part.table.caption.is_empty() && !repeats_title {
             cell::write(self.sheet, self.row, 0, &part.table.caption, &self.styles.caption)?;
             self.row += 1;
         }
