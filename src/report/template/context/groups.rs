@@ -52,6 +52,7 @@ pub(super) struct Item {
     measured: String,
     limit: String,
     cells: String,
+    many_cells: bool,
     /// How many findings it stands for.
     count: usize,
     /// Where else, if it stands for several.
@@ -154,6 +155,7 @@ fn item(f: &Finding, language: &Language) -> Item {
         measured: measured(f, language),
         limit: limit(f, language),
         cells: words::listed(&cells, MOST_CELLS, language),
+        many_cells: cells.len() > 1,
         count: 1,
         places: String::new(),
     }
