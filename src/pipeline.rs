@@ -35,7 +35,9 @@ pub struct Settings {
 
 impl Default for Settings {
     fn default() -> Self {
-        Self { rulebook: Rulebook::built_in(), balance: BalanceSettings::default(),
+        Self {
+            rulebook: Rulebook::built_in(),
+            balance: BalanceSettings::default(),
             network: NetworkSettings::default(),
             diagnosis: DiagnosisSettings::default(),
             language: Language::english(),
@@ -172,7 +174,12 @@ pub enum ReportError {
 ///
 /// # Errors
 /// The template can't be used, or a file could not be made.
-pub fn render(checked: &Checked, settings: &Settings, options: &ReportOptions, html: bool) -> Result<Vec<(&'static str, Vec<u8>)>, ReportError> {
+pub fn render(
+    checked: &Checked,
+    settings: &Settings,
+    options: &ReportOptions,
+    html: bool,
+) -> Result<Vec<(&'static str, Vec<u8>)>, ReportError> {
     let document = document(checked, settings, options)?;
     let mut files = vec![("pdf", render::pdf::write(&document)?), ("xlsx", render::xlsx::write(&document)?)];
     if html {

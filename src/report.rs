@@ -9,6 +9,7 @@ pub mod drawing;
 mod duties;
 mod facts;
 mod figures;
+mod repair;
 mod sheets;
 mod tables;
 mod template;

@@ -35,6 +35,14 @@ pub(super) fn between(low: f64, high: Option<f64>, language: &Language) -> Strin
     language.say(&high.into_iter().fold(sentence, |s, high| ohms(s, "high", high)))
 }
 
+/// A probability: `97 %`, `more than 99 %` where rounding would make it a certainty.
+pub(super) fn probability(p: f64, language: &Language) -> String {
+    match 100.0 * p {
+        percent if percent > 99.5 => language.text("cause.nearly-sure"),
+        percent => language.quantity(percent, 0, Unit::Percent),
+    }
+}
+
 /// Digits of ohms worth showing.
 pub(super) fn digits(ohms: f64) -> u8 {
     if ohms < 10.0 { 2 } else { 0 }

@@ -8,6 +8,7 @@ use super::places::FIGURES;
 use crate::diag::Severity;
 use crate::quantity::Unit;
 use crate::report::Source;
+use crate::report::repair::Repair;
 use crate::report::tables::{self, shown};
 use crate::results::{Balance, Finding, Signal, Verdict};
 use crate::visit::Stage;
@@ -73,10 +74,12 @@ impl Context {
     /// Of a checked visit.
     pub fn new(source: &Source, language: &Language, date: Option<&str>, tables: &[&str], figures: &[&str]) -> Self {
         let shown = shown(source);
-        let counts = counts(source, &shown);
-        let (answer, worst) = answer(&shown, counts["readings"] + counts["passed"]);
-        let groups = groups::groups(source, &shown, language);
-        let (actions, more_actions) = actions::actions(&groups);
+        let repair = Repair::of(source);
+        let standing: Vec<&Finding> = shown.iter().copied().filter(|f| !repair.as_ref().is_some_and(|r| r.settles(f))).collect();
+        let counts = counts(source, &standing, shown.len());
+        let (answer, worst) = answer(&standing, counts["readings"] + counts["passed"]);
+        let groups = groups::groups(source, &shown, repair.as_ref(), language);
+        let (actions, more_actions) = actions::actions(&groups, causes::found(source));
         let (findings, more_findings) = groups::told(groups);
         let errors = source.problems.iter().filter(|p| p.severity == Severity::Error).count();
         Self {
@@ -126,18 +129,20 @@ fn answer(shown: &[&Finding], judged: usize) -> (&'static str, Option<Signal>) {
     }
 }
 
-fn counts(source: &Source, shown: &[&Finding]) -> BTreeMap<&'static str, usize> {
-    let count = |s: Signal| shown.iter().filter(|f| f.signal == s && f.verdict == Verdict::Fail).count();
-    let undecided = shown.iter().filter(|f| f.verdict == Verdict::Undecided).count();
+/// Findings that stand, failed by signal word, and all that was looked at.
+fn counts(source: &Source, standing: &[&Finding], shown: usize) -> BTreeMap<&'static str, usize> {
+    let count = |s: Signal| standing.iter().filter(|f| f.signal == s && f.verdict == Verdict::Fail).count();
+    let undecided = standing.iter().filter(|f| f.verdict == Verdict::Undecided).count();
     let locations: BTreeSet<&str> = source.visit.rows.iter().map(|r| r.location.value.as_str()).collect();
     [
         ("danger", count(Signal::Danger)),
         ("warning", count(Signal::Warning)),
         ("caution", count(Signal::Caution)),
         ("notice", count(Signal::Notice)),
-        ("failed", shown.len() - undecided),
+        ("failed", standing.len() - undecided),
         ("undecided", undecided),
-        ("passed", source.findings.len() - shown.len()),
+        ("mended", shown - standing.len()),
+        ("passed", source.findings.len() - shown),
         ("readings", source.visit.rows.iter().map(|r| r.readings.len()).sum()),
         ("locations", locations.len()),
         ("circuits", source.visit.runs.len()),

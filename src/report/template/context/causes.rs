@@ -1,9 +1,8 @@
 //! The diagnosis, for a template.
 
-use crate::quantity::Unit;
 use crate::report::Source;
 use crate::report::words;
-use crate::results::{CauseKind, Diagnosis, RepairOutcome};
+use crate::results::{Cause, CauseKind, Diagnosis, RepairOutcome};
 use crate::wording::Language;
 use serde::Serialize;
 
@@ -29,6 +28,13 @@ pub(super) struct Causes {
     open_not_shown: String,
     open_count: usize,
     repair: String,
+    /// The readings as left prove the repair.
+    mended: bool,
+}
+
+/// The most probable cause where it is probable enough to be spoken of as found.
+pub(super) fn found<'a>(source: &Source<'a>) -> Option<&'a Cause> {
+    source.diagnosis?.ranking.first().filter(|c| c.probability >= SURE)
 }
 
 pub(super) fn causes(source: &Source, d: &Diagnosis, language: &Language) -> Option<Causes> {
@@ -51,14 +57,14 @@ pub(super) fn causes(source: &Source, d: &Diagnosis, language: &Language) -> Opt
             CauseKind::Reading(_) => "reading",
         },
         cause: words::cause(source, lead, language),
-        // No more certainty is claimed than a whole per cent can hold.
-        probability: language.quantity((100.0 * lead.probability).clamp(1.0, 99.0), 0, Unit::Percent),
+        probability: words::probability(lead.probability, language),
         sure: lead.probability >= SURE,
         ohms: lead.ohms.map_or_else(String::new, |o| words::between(o.low.0, o.high.map(|h| h.0), language)),
         together: runs.len() > 1,
         runs: words::listed(&runs, MOST_RUNS, language),
         open_count: open.len(),
         open_not_shown: words::listed(&open, MOST_RUNS, language),
+        mended: d.repair.as_ref().is_some_and(|r| r.outcome == RepairOutcome::Proven),
         repair: repair.map_or_else(String::new, |key| language.text(key)),
     })
 }

@@ -3,6 +3,7 @@
 use crate::report::Source;
 use crate::report::duties;
 use crate::report::facts::visible;
+use crate::report::repair::Repair;
 use crate::report::tables::{limit, measured};
 use crate::report::words;
 use crate::results::{Finding, Signal, Verdict};
@@ -29,6 +30,8 @@ pub(super) struct Group {
     pub title: String,
     pub signal: &'static str,
     pub undecided: bool,
+    /// Settled by a repair on this visit, as the readings as left prove.
+    pub mended: bool,
     /// How many findings.
     pub count: usize,
     pub items: Vec<Item>,
@@ -59,21 +62,23 @@ pub(super) struct Item {
     places: String,
 }
 
-/// All groups, in the order of the findings given.
-pub(super) fn groups(source: &Source, shown: &[&Finding], language: &Language) -> Vec<Group> {
+/// All groups, in the order of the findings given, what is mended behind the rest.
+pub(super) fn groups(source: &Source, shown: &[&Finding], repair: Option<&Repair>, language: &Language) -> Vec<Group> {
     let titles: HashMap<&str, &str> = source.rules.iter().map(|r| (r.rule.as_str(), r.title.as_str())).collect();
-    let mut order: Vec<(String, Vec<&Finding>)> = Vec::new();
-    let mut known: HashMap<(&str, Signal, Verdict, String), usize> = HashMap::new();
+    let mut order: Vec<(String, bool, Vec<&Finding>)> = Vec::new();
+    let mut known: HashMap<(&str, Signal, Verdict, bool, String), usize> = HashMap::new();
     for f in shown {
         let advice = language.say(&f.advice);
+        let mended = repair.is_some_and(|r| r.settles(f));
         let next = order.len();
-        let at = *known.entry((f.rule, f.signal, f.verdict, advice.clone())).or_insert(next);
+        let at = *known.entry((f.rule, f.signal, f.verdict, mended, advice.clone())).or_insert(next);
         match order.get_mut(at) {
-            Some((_, findings)) => findings.push(f),
-            None => order.push((advice, vec![f])),
+            Some((_, _, findings)) => findings.push(f),
+            None => order.push((advice, mended, vec![f])),
         }
     }
-    order.into_iter().filter_map(|(advice, findings)| group(&titles, advice, &findings, language)).collect()
+    order.sort_by_key(|(_, mended, _)| *mended);
+    order.into_iter().filter_map(|(advice, mended, findings)| group(&titles, advice, mended, &findings, language)).collect()
 }
 
 /// The groups that a document tells, and how many findings the others hold.
@@ -82,7 +87,7 @@ pub(super) fn told(mut groups: Vec<Group>) -> (Vec<Group>, usize) {
     (groups, rest.iter().map(|g| g.count).sum())
 }
 
-fn group(titles: &HashMap<&str, &str>, advice: String, findings: &[&Finding], language: &Language) -> Option<Group> {
+fn group(titles: &HashMap<&str, &str>, advice: String, mended: bool, findings: &[&Finding], language: &Language) -> Option<Group> {
     let first = *findings.first()?;
     let mut items = items(findings, language);
     let rest = items.split_off(items.len().min(MOST_ITEMS));
@@ -92,6 +97,7 @@ fn group(titles: &HashMap<&str, &str>, advice: String, findings: &[&Finding], la
         title: titles.get(first.rule).map_or_else(|| first.rule.to_owned(), |t| (*t).to_owned()),
         signal: first.signal.word(),
         undecided: first.verdict == Verdict::Undecided,
+        mended,
         count: findings.len(),
         more: rest.iter().map(|i| i.count).sum(),
         who: duty.map_or_else(String::new, |d| language.text(d.key())),
