@@ -48,6 +48,14 @@ pub(super) fn digits(ohms: f64) -> u8 {
     if ohms < 10.0 { 2 } else { 0 }
 }
 
+/// A text with a full stop where it ends in a word.
+pub(super) fn ended(mut text: String) -> String {
+    if text.ends_with(char::is_alphanumeric) {
+        text.push('.');
+    }
+    text
+}
+
 /// Names as a sentence lists them; beyond `most` only how many.
 pub(super) fn listed(names: &[String], most: usize, language: &Language) -> String {
     let mut list: Vec<Arg> = names.iter().take(most).map(|n| Arg::from(n.as_str())).collect();

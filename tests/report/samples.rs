@@ -4,8 +4,7 @@ use crate::outline;
 use midwire::intake::{Beside, BesideError, Content, Input};
 use midwire::pipeline::{self, Checked, ReportOptions, Settings};
 use midwire::report::BUILT_IN_TEMPLATES;
-use midwire::report::document::{Block, Document, Inline, PageSize};
-use std::collections::BTreeSet;
+use midwire::report::document::{Document, PageSize};
 use std::path::{Path, PathBuf};
 
 const SAMPLES: [&str; 9] = [

@@ -1,9 +1,10 @@
 //! Findings as a reader wants them: what is alike is told once, with its places.
 
+use super::causes;
 use crate::report::Source;
 use crate::report::duties;
 use crate::report::facts::visible;
-use crate::report::repair::Repair;
+use crate::report::repair::{Repair, may_follow};
 use crate::report::tables::{limit, measured};
 use crate::report::words;
 use crate::results::{Finding, Signal, Verdict};
@@ -32,6 +33,8 @@ pub(super) struct Group {
     pub undecided: bool,
     /// Settled by a repair on this visit, as the readings as left prove.
     pub mended: bool,
+    /// May go away by itself once the cause that was found is settled.
+    pub follows: bool,
     /// How many findings.
     pub count: usize,
     pub items: Vec<Item>,
@@ -78,7 +81,14 @@ pub(super) fn groups(source: &Source, shown: &[&Finding], repair: Option<&Repair
         }
     }
     order.sort_by_key(|(_, mended, _)| *mended);
-    order.into_iter().filter_map(|(advice, mended, findings)| group(&titles, advice, mended, &findings, language)).collect()
+    let cause = causes::found(source);
+    let follows = |findings: &[&Finding]| cause.is_some_and(|c| findings.iter().all(|f| may_follow(f, c)));
+    order
+        .into_iter()
+        .filter_map(|(advice, mended, findings)| {
+            Some(Group { mended, follows: follows(&findings), ..group(&titles, advice, &findings, language)? })
+        })
+        .collect()
 }
 
 /// The groups that a document tells, and how many findings the others hold.
@@ -87,7 +97,7 @@ pub(super) fn told(mut groups: Vec<Group>) -> (Vec<Group>, usize) {
     (groups, rest.iter().map(|g| g.count).sum())
 }
 
-fn group(titles: &HashMap<&str, &str>, advice: String, mended: bool, findings: &[&Finding], language: &Language) -> Option<Group> {
+fn group(titles: &HashMap<&str, &str>, advice: String, findings: &[&Finding], language: &Language) -> Option<Group> {
     let first = *findings.first()?;
     let mut items = items(findings, language);
     let rest = items.split_off(items.len().min(MOST_ITEMS));
@@ -97,7 +107,8 @@ fn group(titles: &HashMap<&str, &str>, advice: String, mended: bool, findings: &
         title: titles.get(first.rule).map_or_else(|| first.rule.to_owned(), |t| (*t).to_owned()),
         signal: first.signal.word(),
         undecided: first.verdict == Verdict::Undecided,
-        mended,
+        mended: false,
+        follows: false,
         count: findings.len(),
         more: rest.iter().map(|i| i.count).sum(),
         who: duty.map_or_else(String::new, |d| language.text(d.key())),
@@ -105,7 +116,7 @@ fn group(titles: &HashMap<&str, &str>, advice: String, mended: bool, findings: &
         basis: first.basis.clone(),
         places: words::listed(&places(findings, None), MOST_PLACES, language),
         items,
-        advice,
+        advice: words::ended(advice),
     })
 }
 
@@ -154,7 +165,7 @@ fn places(findings: &[&Finding], except: Option<&str>) -> Vec<String> {
 fn item(f: &Finding, language: &Language) -> Item {
     let cells: Vec<String> = f.cells.iter().map(ToString::to_string).collect();
     Item {
-        says: language.say(&f.says),
+        says: words::ended(language.say(&f.says)),
         location: f.location.clone().unwrap_or_default(),
         state: f.state.clone().filter(|s| s != Stage::AsFound.name()).unwrap_or_default(),
         as_left: f.stage == Some(Stage::AsLeft),
