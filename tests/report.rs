@@ -6,6 +6,8 @@ mod hostile;
 mod made;
 #[path = "report/outline.rs"]
 mod outline;
+#[path = "report/prose.rs"]
+mod prose;
 #[path = "report/samples.rs"]
 mod samples;
 #[path = "rules/site.rs"]

@@ -138,10 +138,8 @@ fn block(b: &Block, text: &str, out: &mut String) {
             out.push_str(&format!("table {} {} ", table.name, neutral(&table.caption, text)));
             table.rows.iter().flat_map(|r| &r.cells).for_each(|c| cell(c, text, out));
         }
-        Block::Figure { caption, .. } => {
-            out.push_str("figure ");
-            inlines(caption, text, out);
-        }
+        // Figures shorten names to fit; their own tests hold them.
+        Block::Figure { .. } => out.push_str("figure"),
         Block::Photos(photos) => photos.iter().for_each(|p| out.push_str(&neutral(&p.caption, text))),
         Block::Facts(pairs) => pairs.iter().for_each(|(label, value)| {
             out.push_str(label);

@@ -43,6 +43,10 @@ neutral = [{ run = "SVC", low = 0.0, amperes = 0.2 }, { run = "5/7", low = 2.1, 
 next = [{ at = "5/7", quantity = "L1-N", load = ["L1", 1500], tells_apart = ["5/7", "SVC"] }]
 "#;
 
+/// The house after its repair: read again as left, and the fault ruled out.
+const AS_LEFT: &str = r#"  { at = "5/7", state = "heater on", left = true, V = { L1-N = 119.8, L2-N = 119.9, L1-L2 = 239.7, N-G = 0.4 } },
+"#;
+
 pub struct Made {
     pub fixture: Fixture,
     pub problems: Vec<Problem>,
@@ -61,6 +65,14 @@ impl Made {
 
     pub fn house() -> Self {
         Self::of(HOUSE)
+    }
+
+    pub fn repaired() -> Self {
+        let fixture = HOUSE.replacen("]\nobservations", &format!("{AS_LEFT}]\nobservations"), 1) + "repair = \"proven\"\n";
+        let mut made = Self::of(&fixture);
+        let work = Work { date: None, location: Some(at("5/7")), done: at("Neutral splice remade"), parts: Some(at("one splice")) };
+        made.fixture.visit.work.push(work);
+        made
     }
 
     /// The house with a text wherever a workbook can hold one.
