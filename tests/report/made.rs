@@ -36,7 +36,7 @@ observations = [{ at = "5/7", text = "lamp flares", signal = "CAUTION", advice =
 exposure = [{ run = "5/7", legs = [{ leg = "L1", volts = 200.3, at = "5/7", watts = 180 }] }]
 [diagnosis]
 ranking = [
-  { kind = "neutral", runs = ["5/7"], p = 0.93, ohms = [3.4, 2.1] },
+  { kind = "neutral", runs = ["5/7"], p = 0.93, ohms = [2.1, 3.4] },
   { kind = "none", p = 0.07 },
 ]
 neutral = [{ run = "SVC", low = 0.0, amperes = 0.2 }, { run = "5/7", low = 2.1, amperes = 5.8 }]
@@ -50,8 +50,6 @@ const AS_LEFT: &str = r#"  { at = "5/7", state = "heater on", left = true, V = {
 pub struct Made {
     pub fixture: Fixture,
     pub problems: Vec<Problem>,
-    pub rules: Vec<RuleBasis>,
-    pub file: String,
 }
 
 pub fn at(text: &str) -> Located<String> {
@@ -60,7 +58,7 @@ pub fn at(text: &str) -> Located<String> {
 
 impl Made {
     pub fn of(fixture: &str) -> Self {
-        Self { fixture: Fixture::read(fixture), problems: Vec::new(), rules: Vec::new(), file: "field.xlsx".to_owned() }
+        Self { fixture: Fixture::read(fixture), problems: Vec::new() }
     }
 
     pub fn house() -> Self {
@@ -118,8 +116,15 @@ impl Made {
 
     pub fn report(&self, file: &str, template: &str) -> Result<Document, TemplateError> {
         let findings = self.findings();
+        let language = Language::english();
+        let pages = midwire::rules::manual_pages(&Rulebook::built_in(), &language);
+        let rules: Vec<RuleBasis> = pages
+            .into_iter()
+            .filter(|page| findings.iter().any(|f| f.rule == page.id))
+            .map(|page| RuleBasis { rule: page.id.to_owned(), title: page.title, limits: String::new(), basis: page.basis })
+            .collect();
         let source = Source {
-            file: &self.file,
+            file: "field.xlsx",
             sha256: "143d98d3fb1719b3d92d046d116d4b942d2e85e6da5f18bbbbd1135636524bc6",
             program: "midwire",
             visit: &self.fixture.visit,
@@ -128,9 +133,8 @@ impl Made {
             balance: self.fixture.balance.as_ref(),
             diagnosis: self.fixture.diagnosis.as_ref(),
             exposure: &self.fixture.exposure,
-            rules: &self.rules,
+            rules: &rules,
         };
-        let language = Language::english();
         report::build(
             &source,
             &Options {
