@@ -10,7 +10,7 @@ mod binary;
 mod bounds;
 mod bytes;
 mod compound;
-mod csv;
+mod csv_folder;
 mod draft;
 mod kind;
 mod ods;
@@ -49,7 +49,7 @@ pub(super) fn read(content: &Content) -> Result<Output<Workbook>, Refusal> {
         _ if size == 0 => Err(Refusal::Empty),
         _ if size > MOST_BYTES => Err(megabytes("it is more than", MOST_BYTES, "long")),
         Content::File(bytes) => file(bytes).map(|value| Output { value, problems: Vec::new() }),
-        Content::Folder(files) => csv::read(files, &mut Budget::new()),
+        Content::Folder(files) => csv_folder::read(files, &mut Budget::new()),
     };
     output.map_err(shortened)
 }
