@@ -86,7 +86,7 @@ fn package(archive: &Archive, budget: &mut Budget) -> Result<Workbook, Refusal> 
         return ods::read(archive, budget);
     }
     let relations = relations::of(archive, "")?;
-    let main = relations.iter().find(|r| r.kind == "officeDocument").map_or("xl/workbook.xml", |r| r.target.as_str());
+    let main = relations::part(&relations, "officeDocument").unwrap_or("xl/workbook.xml");
     match main.rsplit_once('.') {
         Some((_, "bin")) if archive.has(main) => xlsb::read(archive, main, budget),
         Some((_, "xml")) if archive.has(main) && xlsx::is_book(archive, main)? => xlsx::read(archive, main, budget),
