@@ -17,6 +17,8 @@ fn the_system_is_named_computed_or_assumed_and_said() {
         ("System|240/120", "240/120", ""),
         ("System|230", "230", ""),
         ("Service|120/208", "120/208", ""),
+        ("Service|120/240 V 200 A", "120/240", ""),
+        ("Service|200 A\nSystem|208Y/120", "208Y/120", ""),
         ("Client|Orla Penhallow", "120/240", "warning workbook system-assumed"),
         ("System|", "120/240", "warning workbook system-assumed"),
         ("System|n/a", "120/240", "warning workbook system-assumed"),
@@ -103,6 +105,12 @@ fn one_workbook_is_one_visit() {
     let out = Book::new().sheet("Visit", &twice).sheet("R", READINGS).visit();
     assert_eq!(problems(&out.problems), "error Visit!B4 item-twice");
     assert_eq!(out.value.site.date.map(|d| d.value.day), Some(14));
+    let again = "Date:|14 Sep 2026\n\nLocation|L1-N\nSVC|120";
+    let out = Book::new().sheet("Visit", first).sheet("R", again).visit();
+    assert_eq!(problems(&out.problems), "");
+    let other = again.replace("14 Sep", "15 Sep");
+    let out = Book::new().sheet("Visit", first).sheet("R", &other).visit();
+    assert_eq!(problems(&out.problems), "error R!B1 second-visit-dated");
     let dated = "Date|Location|L1-N\n@2026-09-14|SVC|120\n@2026-09-15|SVC|121\n@2026-09-15|9|119";
     let out = Book::new().sheet("Visit", first).sheet("R", dated).visit();
     assert_eq!(problems(&out.problems), "error R!A3 other-date");
