@@ -1,7 +1,7 @@
 //! The Visit sheet: items and entries, under a header or as a form without one.
 
 use super::{Tables, system};
-use crate::diag::{Located, Severity};
+use crate::diag::{Located, Problem, Severity};
 use crate::intake::cell::{Expected, Reader, did_you_mean, plain_text};
 use crate::intake::grid::{Sheet, Value, Workbook};
 use crate::intake::header::Field;
@@ -11,6 +11,7 @@ use crate::quantity::{Unit, Volts};
 use crate::visit::{Leg, Site, System};
 use crate::wording::Sentence;
 use std::collections::{BTreeMap, BTreeSet};
+use std::sync::Arc;
 
 /// What the Visit sheet yields.
 pub(super) struct VisitSheet {
@@ -233,7 +234,8 @@ fn system_of<'a>(entries: &BTreeMap<Item, Field<'a>>, three_legs: bool, reader: 
                 let message = Sentence::new("intake.nominal-pair").with("other", ln.value.to_string());
                 reader.at(Severity::Error, &ll.cell, ll.value.to_string(), message);
             }
-            assumed(nominal.0.or(nominal.1), three_legs, reader)
+            let sheet = entries.values().next().map(|field| field.cell().sheet);
+            assumed(nominal.0.or(nominal.1), sheet, three_legs, reader)
         }),
     }
 }
@@ -265,16 +267,15 @@ fn with_nominal(system: System, nominal: Nominal, reader: &mut Reader<'_>) -> Sy
     fitting.unwrap_or(system)
 }
 
-fn assumed(stated: Option<Located<f64>>, three_legs: bool, reader: &mut Reader<'_>) -> System {
+/// The system that is assumed where the workbook is silent, said at the one voltage it states or at its Visit sheet.
+fn assumed(stated: Option<Located<f64>>, sheet: Option<Arc<str>>, three_legs: bool, reader: &mut Reader<'_>) -> System {
     let message = Sentence::new("intake.system-assumed");
-    let hint = three_legs.then(|| Sentence::new("intake.system-assumed-three-legs"));
-    match stated {
-        Some(volts) => reader.at(Severity::Warning, &volts.cell, volts.value.to_string(), message).hint = hint,
-        None => {
-            let mut problem = crate::diag::Problem::in_workbook(Severity::Warning, "", message);
-            problem.hint = hint;
-            reader.problems.push(problem);
-        }
-    }
+    let mut problem = match (stated, sheet) {
+        (Some(volts), _) => Problem::at(Severity::Warning, &volts.cell, volts.value.to_string(), message),
+        (None, Some(sheet)) => Problem::in_sheet(Severity::Warning, &sheet, "", message),
+        (None, None) => Problem::in_workbook(Severity::Warning, "", message),
+    };
+    problem.hint = three_legs.then(|| Sentence::new("intake.system-assumed-three-legs"));
+    reader.problems.push(problem);
     System::split_phase_120_240()
 }
