@@ -85,6 +85,7 @@ pub(super) enum Column {
     Quantity,
     Value,
     Unit,
+    Reckoned,
     Test,
     Observation,
     SignalWord,
@@ -128,7 +129,14 @@ struct Section {
 }
 
 #[derive(Deserialize)]
+struct LeaveOut {
+    sheets: Vec<String>,
+}
+
+#[derive(Deserialize)]
+#[serde(rename_all = "kebab-case")]
 struct File {
+    leave_out: LeaveOut,
     items: BTreeMap<Item, Vec<String>>,
     heads: BTreeMap<HeadWord, Vec<String>>,
     entries: BTreeMap<String, BTreeMap<String, Vec<String>>>,
@@ -196,6 +204,7 @@ pub(super) struct Words {
     own: HashMap<(Kind, String), What>,
     units: HashMap<What, Scale>,
     forced: HashMap<String, Option<Kind>>,
+    prose: HashSet<String>,
     /// Entries of a mapping.
     pub fixed: Fixed,
 }
@@ -289,6 +298,7 @@ impl Words {
             own: HashMap::new(),
             units: HashMap::new(),
             forced: HashMap::new(),
+            prose: file.leave_out.sheets.iter().map(|name| normal(name)).collect(),
             fixed: Fixed::none(),
         })
     }
@@ -321,6 +331,16 @@ impl Words {
     /// What a mapping says a sheet is: a table, or nothing to be read.
     pub fn forced(&self, sheet: &str) -> Option<Option<Kind>> {
         self.forced.get(&normal(sheet)).copied()
+    }
+
+    /// A sheet that is read by people alone, where it holds no table.
+    pub fn is_prose(&self, sheet: &str) -> bool {
+        self.prose.contains(&normal(sheet))
+    }
+
+    /// A sheet that is read by people alone, where it holds no table.
+    pub fn is_prose(&self, sheet: &str) -> bool {
+        self.prose.contains(&normal(sheet))
     }
 
     pub fn set_column(&mut self, kind: Kind, text: &str, what: What) {

@@ -140,9 +140,9 @@ fn layout(words: &Words, kind: Kind, texts: &BTreeMap<u32, String>) -> Layout {
     layout
 }
 
-/// A length may stand in feet and in metres beside each other.
+/// A length may stand in feet and in metres beside each other, and a sheet may reckon as much as it likes.
 fn both(column: Column, unit: Option<Scale>, layout: &Layout) -> bool {
-    column == Column::Length && layout.placed.iter().all(|p| p.what != What::Named(column) || p.unit != unit)
+    column == Column::Reckoned || column == Column::Length && layout.placed.iter().all(|p| p.what != What::Named(column) || p.unit != unit)
 }
 
 /// The meaning of one header text in a kind of table, with the unit it states or a mapping gives it.

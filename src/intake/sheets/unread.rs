@@ -23,7 +23,7 @@ pub(super) fn say<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, reader: &m
         hidden(sheet, reader);
         let read = tables.0.iter().any(|t| std::ptr::eq(t.sheet, sheet));
         let form = reader.problems.iter().any(|p| p.sheet.as_ref() == Some(&sheet.name));
-        let left_out = reader.words.forced(&sheet.name) == Some(None);
+        let left_out = reader.words.forced(&sheet.name) == Some(None) || reader.words.is_prose(&sheet.name);
         if !read && !form && !left_out && !sheet.cells.is_empty() && !is_form(sheet, reader.words) {
             reader.problems.push(Problem::in_sheet(Severity::Warning, &sheet.name, "", Sentence::new("intake.no-table")));
         }
