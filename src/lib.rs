@@ -11,9 +11,13 @@
 //! else gets bytes and values. DEVELOPERS.md has the map: what each module may use and what it must not know.
 
 pub mod balance;
+pub mod blank;
+pub mod cli;
 pub mod diag;
 pub mod electrics;
 pub mod intake;
+pub mod network;
+pub mod pipeline;
 pub mod quantity;
 pub mod render;
 pub mod report;

@@ -1,1 +1,5 @@
-fn main() {}
+//! The program: everything is in [`midwire::cli`].
+
+fn main() -> std::process::ExitCode {
+    midwire::cli::main()
+}

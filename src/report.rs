@@ -6,12 +6,22 @@
 pub mod document;
 pub mod drawing;
 
+mod facts;
+mod figures;
+mod sheets;
+mod tables;
+mod template;
+mod words;
+
+pub use facts::visible;
+
 use crate::diag::Problem;
 use crate::results::{Balance, Diagnosis, Exposure, Finding};
 use crate::visit::Visit;
 use crate::wording::Language;
-use document::{Document, PageSize};
+use document::{Document, Meta, PageSize};
 use drawing::Measure;
+use template::{Context, Front, Places};
 
 /// What a report is made from: everything the phases before it found.
 #[derive(Clone, Copy)]
@@ -81,12 +91,71 @@ pub struct TemplateError {
 }
 
 /// The built-in templates: name, what it is for, text.
-pub const BUILT_IN_TEMPLATES: &[(&str, &str, &str)] = &[];
+pub const BUILT_IN_TEMPLATES: &[(&str, &str, &str)] = &[
+    ("client", "for the client: is it safe, what to do, who does it, by when; then all that stands behind it", include_str!("../templates/client.md.tera")),
+    ("record", "of a service call: as found and as left side by side, work done, what proves the repair", include_str!("../templates/record.md.tera")),
+    ("letter", "one page: what was found and what to do", include_str!("../templates/letter.md.tera")),
+];
+
+/// Characters of the hash that the footer shows.
+const HASH_SHOWN: usize = 12;
 
 /// The document of a checked visit.
 ///
 /// # Errors
 /// The template can't be used.
-pub fn build(_source: &Source, _options: &Options) -> Result<Document, TemplateError> {
-    todo!("the report is being built")
+pub fn build(source: &Source, options: &Options) -> Result<Document, TemplateError> {
+    let language = options.language;
+    let date = issue_date(source, options);
+    let tables = tables::build(source, language);
+    let figures = figures::build(source, language, options.measure, options.page.text_width());
+    let places = Places {
+        figures: figures.into_iter().map(|f| (f.name, f.caption, f.drawing)).collect(),
+        facts: facts::all(source, language, date.as_deref()),
+        photos: facts::photos(source),
+        sign_off: facts::sign_off(source, language),
+        tables,
+    };
+    let table_names: Vec<&str> = places.tables.iter().map(|t| t.name.as_str()).collect();
+    let figure_names: Vec<&str> = places.figures.iter().map(|f| f.0).collect();
+    let context = Context::new(source, language, date.as_deref(), &table_names, &figure_names);
+    let (_, _, client) = BUILT_IN_TEMPLATES[0];
+    let (file, text) = options.template.unwrap_or(("client.md.tera", client));
+    let (front, blocks) = template::fill(file, text, &context, &places)?;
+    let meta = meta(source, options, &front, date);
+    Ok(Document { sheets: sheets::plan(&front, &places, language, &meta), meta, blocks })
+}
+
+/// The date of issue: as asked for, else the latest revision's, else the visit's.
+fn issue_date(source: &Source, options: &Options) -> Option<String> {
+    let revision = source.visit.revisions.iter().filter_map(|r| r.date.as_ref()).map(|d| d.value).max();
+    let own = revision.or(source.visit.site.date.as_ref().map(|d| d.value)).map(|d| d.to_string());
+    options.date.clone().or(own)
+}
+
+fn meta(source: &Source, options: &Options, front: &Front, date: Option<String>) -> Meta {
+    let language = options.language;
+    let site = &source.visit.site;
+    let text = |l: &Option<crate::diag::Located<String>>| l.as_ref().map_or_else(String::new, |l| visible(&l.value));
+    let joined = |parts: [String; 2]| parts.into_iter().filter(|p| !p.is_empty()).collect::<Vec<_>>().join(" · ");
+    let title = if front.title.is_empty() { language.text("report.title") } else { front.title.clone() };
+    let company = text(&site.company);
+    let hash: String = source.sha256.chars().take(HASH_SHOWN).collect();
+    Meta {
+        author: text(&site.prepared_by),
+        subject: joined([text(&site.address), site.date.as_ref().map_or_else(String::new, |d| d.value.to_string())]),
+        language: language.tag.clone(),
+        date,
+        input_sha256: source.sha256.to_owned(),
+        producer: source.program.to_owned(),
+        header_left: if company.is_empty() { title.clone() } else { company },
+        header_right: joined([text(&site.job), text(&site.client)]),
+        footer_left: format!("{} {hash}… · {}", language.text("report.input"), source.program),
+        page_words: language.text("report.page-words").replace("<page>", "{page}").replace("<pages>", "{pages}"),
+        page: options.page,
+        accent: options.accent,
+        logo: None,
+        decimal_mark: language.number(0.5, 1).chars().nth(1).unwrap_or('.'),
+        title,
+    }
 }

@@ -43,10 +43,8 @@ const MAY_USE: &[(&str, &[&str])] = &[
 
 /// Library, as the code names it, and the only places that may: a module, or a file or folder within one.
 const LIBRARIES: &[(&str, &[&str])] = &[
-    ("calamine", &["intake/workbook"]),
-    ("zip", &["intake/workbook"]),
     ("quick_xml", &["intake/workbook"]),
-    ("csv", &["intake/workbook"]),
+    ("csv", &["cli/batch"]),
     ("encoding_rs", &["intake/workbook"]),
     ("chardetng", &["intake/workbook"]),
     ("rust_xlsxwriter", &["render/xlsx"]),
@@ -56,7 +54,7 @@ const LIBRARIES: &[(&str, &[&str])] = &[
     ("subsetter", &["render/pdf"]),
     ("notosans", &["render/pdf"]),
     ("typst_assets", &["render/pdf"]),
-    ("flate2", &["render/pdf"]),
+    ("flate2", &["render/pdf", "intake/workbook"]),
     ("exif", &["render/pdf"]),
     ("tera", &["report/template"]),
     ("pulldown_cmark", &["report/template"]),

@@ -33,6 +33,9 @@ use bounds::{Budget, MOST_BYTES, megabytes};
 use compound::Compound;
 use kind::Kind;
 
+/// Most characters of what a refusal says.
+const LONGEST: usize = 200;
+
 /// Reads an input into plain cells.
 ///
 /// # Errors
@@ -42,11 +45,23 @@ pub(super) fn read(content: &Content) -> Result<Output<Workbook>, Refusal> {
         Content::File(bytes) => bytes.len(),
         Content::Folder(files) => files.iter().map(|(_, bytes)| bytes.len()).sum(),
     };
-    match content {
+    let output = match content {
         _ if size == 0 => Err(Refusal::Empty),
         _ if size > MOST_BYTES => Err(megabytes("it is more than", MOST_BYTES, "long")),
         Content::File(bytes) => file(bytes).map(|value| Output { value, problems: Vec::new() }),
         Content::Folder(files) => csv::read(files, &mut Budget::new()),
+    };
+    output.map_err(shortened)
+}
+
+/// A refusal whose words are no longer than a line or two: names in them come from the file.
+fn shortened(refusal: Refusal) -> Refusal {
+    let short = |text: String| if text.chars().count() > LONGEST { text.chars().take(LONGEST).chain(['…']).collect() } else { text };
+    match refusal {
+        Refusal::NotAWorkbook(text) => Refusal::NotAWorkbook(short(text)),
+        Refusal::Damaged(text) => Refusal::Damaged(short(text)),
+        Refusal::TooLarge(text) => Refusal::TooLarge(short(text)),
+        other => other,
     }
 }
 
@@ -67,21 +82,23 @@ fn package(archive: &Archive, budget: &mut Budget) -> Result<Workbook, Refusal> 
             _ => Err(Refusal::NotAWorkbook(format!("a file of the type {}", media.trim()))),
         };
     }
+    if archive.has(ods::CONTENT) && archive.has(ods::MANIFEST) {
+        return ods::read(archive, budget);
+    }
     let relations = relations::of(archive, "")?;
     let main = relations.iter().find(|r| r.kind == "officeDocument").map_or("xl/workbook.xml", |r| r.target.as_str());
     match main.rsplit_once('.') {
         Some((_, "bin")) if archive.has(main) => xlsb::read(archive, main, budget),
-        Some((_, "xml")) if archive.has(main) && !archive.has("word/document.xml") => xlsx::read(archive, main, budget),
-        _ => Err(Refusal::NotAWorkbook(unlike(archive).to_owned())),
+        Some((_, "xml")) if archive.has(main) && xlsx::is_book(archive, main)? => xlsx::read(archive, main, budget),
+        _ => Err(Refusal::NotAWorkbook(unlike(main).to_owned())),
     }
 }
 
-/// What a package without a workbook looks like.
-fn unlike(archive: &Archive) -> &'static str {
-    let has = |folder: &str| archive.names().any(|name| name.starts_with(folder));
-    match () {
-        () if has("word/") => "a word processor document",
-        () if has("ppt/") => "a presentation",
-        () => "a zip archive without a workbook in it",
+/// What a main part that is none of a workbook belongs to.
+fn unlike(main: &str) -> &'static str {
+    match main.split('/').next() {
+        Some("word") => "a word processor document",
+        Some("ppt") => "a presentation",
+        _ => "a zip archive without a workbook in it",
     }
 }

@@ -65,6 +65,23 @@ pub enum PageSize {
     A4,
 }
 
+impl PageSize {
+    /// Width and height in points.
+    #[must_use]
+    pub fn points(self) -> (f64, f64) {
+        match self {
+            Self::Letter => (612.0, 792.0),
+            Self::A4 => (595.276, 841.89),
+        }
+    }
+
+    /// Width of the text between margins of 54 pt, in points.
+    #[must_use]
+    pub fn text_width(self) -> f64 {
+        self.points().0 - 108.0
+    }
+}
+
 /// A block of the body.
 #[derive(Clone, Debug)]
 pub enum Block {

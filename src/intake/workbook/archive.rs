@@ -5,7 +5,7 @@
 //! directory is believed, its entries are looked at and nothing is copied; a part is inflated as it is read, never held, and all
 //! that was inflated is counted against one bound. Sizes and checksums are held against what really came.
 
-use super::bounds::{MOST_INFLATED, MOST_PARTS, at_most};
+use super::bounds::{MOST_INFLATED, MOST_PARTS, MOST_STEPS, at_most};
 use super::bytes::{u16_at, u32_at};
 use crate::intake::Refusal;
 use flate2::Crc;
@@ -26,7 +26,26 @@ const END_LENGTH: usize = 22;
 pub struct Archive<'a> {
     bytes: &'a [u8],
     entries: BTreeMap<String, Entry>,
-    left: Cell<u64>,
+    allowance: Allowance,
+}
+
+/// What may still be read of a package, over all its parts.
+#[derive(Debug)]
+pub struct Allowance {
+    bytes: Cell<u64>,
+    steps: Cell<u32>,
+}
+
+impl Allowance {
+    /// Takes one step through a part.
+    ///
+    /// # Errors
+    /// There were too many.
+    pub fn step(&self) -> Result<(), Refusal> {
+        let left = self.steps.get().checked_sub(1);
+        self.steps.set(left.ok_or_else(|| Refusal::TooLarge(format!("its parts hold more than {MOST_STEPS} pieces")))?);
+        Ok(())
+    }
 }
 
 #[derive(Clone, Copy, Debug)]
@@ -55,7 +74,7 @@ impl<'a> Archive<'a> {
             entries.insert(name, entry);
             at = next;
         }
-        Ok(Self { bytes, entries, left: Cell::new(MOST_INFLATED) })
+        Ok(Self { bytes, entries, allowance: Allowance { bytes: Cell::new(MOST_INFLATED), steps: Cell::new(MOST_STEPS) } })
     }
 
     /// Whether there is such a part. Names are compared as the formats ask: without regard to case.
@@ -83,7 +102,7 @@ impl<'a> Archive<'a> {
             8 => Source::Deflated(Box::new(DeflateDecoder::new(packed))),
             other => return Err(damaged(&format!("{name} is compressed by method {other}, which no workbook uses"))),
         };
-        Ok(Some(Part { source, crc: Crc::new(), entry: *entry, came: 0, left: &self.left }))
+        Ok(Some(Part { source, crc: Crc::new(), entry: *entry, came: 0, allowance: &self.allowance }))
     }
 
     /// A small part as a whole.
@@ -105,7 +124,14 @@ pub struct Part<'a> {
     crc: Crc,
     entry: Entry,
     came: u64,
-    left: &'a Cell<u64>,
+    allowance: &'a Allowance,
+}
+
+impl<'a> Part<'a> {
+    /// What may still be read.
+    pub fn allowance(&self) -> &'a Allowance {
+        self.allowance
+    }
 }
 
 enum Source<'a> {
@@ -121,8 +147,8 @@ impl Read for Part<'_> {
         };
         self.came += n as u64;
         self.crc.update(&buffer[..n]);
-        let left = self.left.get().checked_sub(n as u64).ok_or_else(|| io::Error::from(io::ErrorKind::QuotaExceeded))?;
-        self.left.set(left);
+        let left = self.allowance.bytes.get().checked_sub(n as u64);
+        self.allowance.bytes.set(left.ok_or(io::ErrorKind::QuotaExceeded)?);
         let size = u64::from(self.entry.size);
         if self.came > size || (n == 0 && !buffer.is_empty() && self.came < size) {
             return Err(io::Error::new(io::ErrorKind::InvalidData, "its length is not the one stated"));
@@ -152,12 +178,12 @@ fn key(name: &str) -> String {
     name.trim_start_matches(['/', '\\']).replace('\\', "/").to_lowercase()
 }
 
-/// Where the end record begins: the one whose comment ends with the file, the last if there are several.
+/// Where the end record begins: the last whose comment fits in the file. Bytes after it do no harm; mail and storage pad files.
 fn end_record(bytes: &[u8]) -> Option<usize> {
     let last = bytes.len().checked_sub(END_LENGTH)?;
     let first = last.saturating_sub(usize::from(u16::MAX));
-    let ends_with_file = |at: &usize| u16_at(bytes, at + 20).is_some_and(|comment| at + END_LENGTH + usize::from(comment) == bytes.len());
-    (first..=last).rev().filter(|at| u32_at(bytes, *at) == Some(END)).find(ends_with_file)
+    let fits = |at: &usize| u16_at(bytes, at + 20).is_some_and(|comment| at + END_LENGTH + usize::from(comment) <= bytes.len());
+    (first..=last).rev().filter(|at| u32_at(bytes, *at) == Some(END)).find(fits)
 }
 
 /// The entry of the directory at an offset, and where the next one begins.
@@ -168,7 +194,7 @@ fn entry(bytes: &[u8], at: usize) -> Option<(String, Entry, usize)> {
     let [name, extra, comment] = [28, 30, 32].map(|field| u16_at(bytes, at + field).map(usize::from));
     let start = at + 46;
     let text = bytes.get(start..start + name?)?;
-    let entry = Entry {
+    let mut entry = Entry {
         locked: u16_at(bytes, at + 8)? & 1 != 0,
         method: u16_at(bytes, at + 10)?,
         crc: u32_at(bytes, at + 16)?,
@@ -176,7 +202,23 @@ fn entry(bytes: &[u8], at: usize) -> Option<(String, Entry, usize)> {
         size: u32_at(bytes, at + 24)?,
         offset: u32_at(bytes, at + 42)?,
     };
+    entry.widen(bytes.get(start + name?..start + name? + extra?)?);
     Some((key(&String::from_utf8_lossy(text)), entry, start + name? + extra? + comment?))
+}
+
+impl Entry {
+    /// Takes the fields that some writers keep in eight bytes behind the name, which then hold all ones (APPNOTE 4.5.3). No part that
+    /// is read needs more than four of them.
+    fn widen(&mut self, mut extra: &[u8]) {
+        while let (Some(kind), Some(length)) = (u16_at(extra, 0), u16_at(extra, 2)) {
+            let mut at = 4;
+            for field in [&mut self.size, &mut self.packed, &mut self.offset].into_iter().filter(|f| kind == 1 && **f == u32::MAX) {
+                *field = u32_at(extra, at).unwrap_or(u32::MAX);
+                at += 8;
+            }
+            extra = extra.get(4 + usize::from(length)..).unwrap_or_default();
+        }
+    }
 }
 
 /// The packed bytes of an entry. The lengths before them are those of the local header, which may differ from the directory's.

@@ -3,7 +3,7 @@
 use crate::intake::grid::Value;
 
 /// A number packed into four bytes: the high bits of a floating-point number or a whole number, and whether it is in hundredths
-/// (MS-XLS 2.5.217, MS-XLSB 2.5.123).
+/// (RkNumber, MS-XLS 2.5.217).
 pub fn small_number(packed: u32) -> f64 {
     let number = if packed & 2 != 0 { f64::from(packed.cast_signed() >> 2) } else { f64::from_bits(u64::from(packed & !3) << 32) };
     if packed & 1 != 0 { number / 100.0 } else { number }
@@ -31,7 +31,7 @@ pub fn error(code: u8) -> Value {
 mod tests {
     use super::*;
 
-    /// The example of MS-XLS 2.5.217: a whole number 1 in hundredths, and the four forms by hand.
+    /// Each of the four forms, packed by hand: 1 and 12/100 by the high bits of their floating-point forms, whole numbers shifted by two.
     #[test]
     fn packed_numbers() {
         assert_eq!(small_number(0x3ff0_0000), 1.0);

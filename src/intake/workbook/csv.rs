@@ -8,13 +8,12 @@ mod fields;
 
 use super::bounds::{Budget, MOST_SHEETS, at_most};
 use super::draft::Draft;
-use crate::diag::{CellRef, Output, Problem, Severity};
+use crate::diag::{Output, Problem, Severity};
 use crate::intake::Refusal;
 use crate::intake::grid::{Sheet, Value, Workbook};
 use crate::wording::Sentence;
 use fields::{Ending, Fields};
 use std::path::Path;
-use std::sync::Arc;
 
 /// Characters of a cell that are shown in a problem.
 const SHOWN: usize = 40;
@@ -48,11 +47,10 @@ fn sheet(name: &str, text: &str, budget: &mut Budget, problems: &mut Vec<Problem
     let mut draft = Draft::new(name, false);
     let (delimiter, text) = fields::delimiter(text);
     let (mut row, mut col) = (0, 0);
+    let mut unclosed = Vec::new();
     for field in Fields::new(text, delimiter) {
         if field.is_unclosed {
-            let cell = CellRef::new(&Arc::from(name), row, col);
-            let found: String = field.text.chars().take(SHOWN).collect();
-            problems.push(Problem::at(Severity::Warning, &cell, found, Sentence::new("workbook.unclosed")));
+            unclosed.push((row, col));
         }
         draft.put(row, col, Value::Text(field.text.into_owned()), budget)?;
         match field.ending {
@@ -60,5 +58,13 @@ fn sheet(name: &str, text: &str, budget: &mut Budget, problems: &mut Vec<Problem
             Ending::Record => (row, col) = (row + 1, 0),
         }
     }
-    draft.finish()
+    let sheet = draft.finish()?;
+    if let Some(&(row, col)) = unclosed.first() {
+        // Said at the first such cell alone: a column of inch marks would say it in every row.
+        let found = sheet.get(row, col).and_then(|value| if let Value::Text(text) = value { Some(text.as_str()) } else { None });
+        let found: String = found.unwrap_or_default().chars().take(SHOWN).collect();
+        let message = Sentence::new("workbook.unclosed").with("n", unclosed.len());
+        problems.push(Problem::at(Severity::Warning, &sheet.at(row, col), found, message));
+    }
+    Ok(sheet)
 }

@@ -1,6 +1,6 @@
 //! A sheet while it is read: what every format puts its cells, hidden stretches and merged areas into.
 
-use super::bounds::{Budget, COLUMNS, MOST_ENTRIES, MOST_MERGED, ROWS, at_most};
+use super::bounds::{Budget, COLUMNS, MOST_ENTRIES, ROWS, at_most};
 use crate::diag::column_letters;
 use crate::intake::Refusal;
 use crate::intake::grid::{Area, Cell, Sheet, Value};
@@ -59,12 +59,12 @@ impl Draft {
     }
 
     /// Merges an area; one of a single cell is none.
-    pub fn merge(&mut self, area: Area) -> Result<(), Refusal> {
-        if (area.top, area.left) == (area.bottom, area.right) {
-            return Ok(());
+    pub fn merge(&mut self, area: Area, budget: &mut Budget) -> Result<(), Refusal> {
+        if (area.top, area.left) != (area.bottom, area.right) {
+            budget.merged()?;
+            self.sheet.merged.push(area);
         }
-        self.sheet.merged.push(area);
-        at_most(self.sheet.merged.len(), MOST_MERGED, "merged areas on one sheet")
+        Ok(())
     }
 
     /// The sheet, cells in order.

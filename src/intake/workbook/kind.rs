@@ -10,12 +10,11 @@ pub enum Kind {
 }
 
 /// First bytes of files that people take for workbooks, and what to call them.
-const OTHERS: [(&[u8], &str); 20] = [
+const OTHERS: [(&[u8], &str); 19] = [
     (b"%PDF", "a PDF document"),
     (b"\xff\xd8\xff", "a JPEG picture"),
     (b"\x89PNG", "a PNG picture"),
     (b"GIF8", "a GIF picture"),
-    (b"BM", "a BMP picture"),
     (b"II*\0", "a TIFF picture"),
     (b"MM\0*", "a TIFF picture"),
     (b"RIFF", "a picture, sound or film"),
@@ -24,7 +23,7 @@ const OTHERS: [(&[u8], &str); 20] = [
     (b"7z\xbc\xaf\x27\x1c", "a 7z archive"),
     (b"Rar!", "a RAR archive"),
     (b"\x7fELF", "a program"),
-    (b"MZ", "a program"),
+    (b"MZ\x90", "a program"),
     (b"SQLite format 3", "a database"),
     (b"\x09\x00\x04\x00", "a sheet of a spreadsheet program from before 1993"),
     (b"\x09\x02\x06\x00", "a sheet of a spreadsheet program from before 1993"),

@@ -4,14 +4,16 @@ mod paragraph;
 mod table;
 
 use super::archive::Archive;
-use super::bounds::{Budget, MOST_ENTRIES, MOST_SHEETS, at_most};
+use super::bounds::{Budget, MOST_NAMED, MOST_SHEETS, at_most};
 use super::xml::{Node, Xml};
 use crate::intake::Refusal;
 use crate::intake::grid::Workbook;
 use std::collections::BTreeSet;
 
-const CONTENT: &str = "content.xml";
-const MANIFEST: &str = "META-INF/manifest.xml";
+/// The part with the cells.
+pub const CONTENT: &str = "content.xml";
+/// The part that lists the others.
+pub const MANIFEST: &str = "META-INF/manifest.xml";
 
 /// Reads a workbook.
 ///
@@ -32,7 +34,7 @@ pub fn read(archive: &Archive, budget: &mut Budget) -> Result<Workbook, Refusal>
                 b"style" => style = tag.get("name")?.unwrap_or_default(),
                 b"table-properties" if tag.get("display")?.as_deref() == Some("false") => {
                     hidden.insert(std::mem::take(&mut style));
-                    at_most(hidden.len(), MOST_ENTRIES, "styles")?;
+                    at_most(hidden.len(), MOST_NAMED, "styles that hide a sheet")?;
                 }
                 // Changes kept for review, and copies of other workbooks' tables, hold tables that are none of this workbook's.
                 b"tracked-changes" | b"dde-links" => xml.skip()?,

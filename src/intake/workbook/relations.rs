@@ -1,7 +1,7 @@
 //! The relations between the parts of an Open Packaging Conventions package: which part is which, and where it is.
 
 use super::archive::Archive;
-use super::bounds::{MOST_PARTS, at_most};
+use super::bounds::{MOST_NAMED, at_most};
 use super::xml::{Node, Xml};
 use crate::intake::Refusal;
 
@@ -33,7 +33,7 @@ pub fn of(archive: &Archive, part: &str) -> Result<Vec<Relation>, Refusal> {
                 if let (Some(id), Some(kind), Some(target), false) = (id?, kind?, target?, external) {
                     let kind = kind.rsplit('/').next().unwrap_or_default().to_owned();
                     relations.push(Relation { id, kind, target: resolve(folder, &target) });
-                    at_most(relations.len(), MOST_PARTS, "parts")?;
+                    at_most(relations.len(), MOST_NAMED, "related parts")?;
                 }
             }
             Node::End => return Ok(relations),

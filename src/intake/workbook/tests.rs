@@ -1,5 +1,6 @@
 //! Workbooks of other writers, read cell by cell; and files made to break a reader.
 
+mod another;
 mod formats;
 mod hostile;
 mod package;

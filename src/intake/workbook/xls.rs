@@ -43,8 +43,12 @@ pub fn read(file: &Compound, budget: &mut Budget) -> Result<Workbook, Refusal> {
         Some(stream) => stream,
         None => file.stream("Book")?.ok_or_else(|| Refusal::NotAWorkbook(unlike(file).to_owned()))?,
     };
-    let globals = globals(&stream)?;
-    let sheets = globals.sheets.iter().map(|entry| sheet::read(&stream, entry, &globals, budget));
+    records(&stream, budget)
+}
+
+fn records(stream: &[u8], budget: &mut Budget) -> Result<Workbook, Refusal> {
+    let globals = globals(stream)?;
+    let sheets = globals.sheets.iter().map(|entry| sheet::read(stream, entry, &globals, budget));
     Ok(Workbook { sheets: sheets.collect::<Result<_, _>>()? })
 }
 
@@ -115,4 +119,39 @@ impl Globals {
 
 fn damaged(what: &str) -> Refusal {
     Refusal::Damaged(what.to_owned())
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::intake::grid::Value;
+
+    fn record(kind: u16, data: &[u8]) -> Vec<u8> {
+        [&kind.to_le_bytes()[..], &u16::try_from(data.len()).unwrap().to_le_bytes(), data].concat()
+    }
+
+    /// No writer at hand writes BIFF5 any more, so this is put together by hand, the layout from memory: 8-bit text in the code page
+    /// named, here 1251.
+    #[test]
+    fn the_older_form_has_text_in_a_code_page() {
+        let globals = |start: u32| {
+            let sheet = [&start.to_le_bytes()[..], &[0, 0, 3, 0xcb, b'1', b'N']].concat();
+            let parts =
+                [(record::BOF, vec![0, 5, 5, 0]), (record::CODE_PAGE, vec![0xe3, 4]), (record::SHEET, sheet), (record::END, vec![])];
+            parts.iter().flat_map(|(kind, data)| record(*kind, data)).collect::<Vec<_>>()
+        };
+        let start = globals(0).len();
+        let cells = [
+            (record::BOF, vec![0, 5, 0x10, 0]),
+            (record::LABEL, vec![2, 0, 1, 0, 0, 0, 4, 0, 0xd9, 0xe8, 0xf2, b' ']),
+            (record::RICH_LABEL, vec![3, 0, 1, 0, 0, 0, 2, 0, b'O', b'L', 1, 0, 0]),
+            (record::END, vec![]),
+        ];
+        let cells = cells.iter().flat_map(|(kind, data)| record(*kind, data));
+        let stream: Vec<u8> = globals(u32::try_from(start).unwrap()).into_iter().chain(cells).collect();
+        let book = records(&stream, &mut Budget::new()).unwrap();
+        assert_eq!(book.sheets[0].name.as_ref(), "Л1N");
+        assert_eq!(book.sheets[0].get(2, 1), Some(&Value::Text("Щит ".to_owned())));
+        assert_eq!(book.sheets[0].get(3, 1), Some(&Value::Text("OL".to_owned())));
+    }
 }

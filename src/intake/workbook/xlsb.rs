@@ -112,7 +112,7 @@ impl Context {
                 }
                 record::COLUMNS if data.u16(16)? & 1 != 0 => draft.hide_columns(data.u32(0)?, data.u32(4)?)?,
                 record::MERGED => {
-                    draft.merge(Area { top: data.u32(0)?, bottom: data.u32(4)?, left: data.u32(8)?, right: data.u32(12)? })?;
+                    draft.merge(Area { top: data.u32(0)?, bottom: data.u32(4)?, left: data.u32(8)?, right: data.u32(12)? }, budget)?;
                 }
                 _ if in_cells => {
                     if let Some(cell) = record.cell()? {

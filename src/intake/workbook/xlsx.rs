@@ -12,6 +12,21 @@ use super::xml::{Node, Xml};
 use crate::intake::Refusal;
 use crate::intake::grid::Workbook;
 
+/// Whether a package's main part is a workbook, and not a document or a presentation.
+///
+/// # Errors
+/// The part is broken.
+pub fn is_book(archive: &Archive, main: &str) -> Result<bool, Refusal> {
+    let mut xml = open(archive, main)?;
+    loop {
+        match xml.next()? {
+            Node::Open(tag) => return Ok(tag.name() == b"workbook"),
+            Node::End => return Ok(false),
+            Node::Close | Node::Text(_) => {}
+        }
+    }
+}
+
 /// What the cells of all sheets refer to.
 struct Book {
     from_1904: bool,

@@ -1,8 +1,8 @@
 //! XML as the workbook formats use it, read as a stream: no document type, no entities but the five of XML, bounded depth, and
 //! no tag or run of text beyond a bound.
 
-use super::archive::{Part, damage};
-use super::bounds::{DEEPEST, MOST_TOKEN};
+use super::archive::{Allowance, Part, damage};
+use super::bounds::{DEEPEST, MOST_NAME, MOST_TOKEN};
 use crate::intake::Refusal;
 use quick_xml::events::{BytesStart, Event};
 use quick_xml::{Reader, XmlVersion, escape};
@@ -14,6 +14,7 @@ pub struct Xml<'a> {
     reader: Reader<Metered<'a>>,
     buffer: Vec<u8>,
     part: &'a str,
+    allowance: &'a Allowance,
     depth: usize,
 }
 
@@ -33,14 +34,16 @@ pub enum Node<'b> {
 pub struct Tag<'b> {
     start: BytesStart<'b>,
     part: &'b str,
+    allowance: &'b Allowance,
 }
 
 impl<'a> Xml<'a> {
     /// Begins with a part; `name` is for messages.
     pub fn new(name: &'a str, part: Part<'a>) -> Self {
+        let allowance = part.allowance();
         let mut reader = Reader::from_reader(Metered { inner: BufReader::with_capacity(1 << 16, part), token: 0 });
         reader.config_mut().expand_empty_elements = true;
-        Self { reader, buffer: Vec::new(), part: name, depth: 0 }
+        Self { reader, buffer: Vec::new(), part: name, allowance, depth: 0 }
     }
 
     /// The next step. Before [`Node::End`] comes, the part has been read to its end and its checksum has been compared.
@@ -48,7 +51,8 @@ impl<'a> Xml<'a> {
     /// # Errors
     /// The XML is broken, ends early, or is of a kind no workbook holds.
     pub fn next(&mut self) -> Result<Node<'_>, Refusal> {
-        let part = self.part;
+        let (part, allowance) = (self.part, self.allowance);
+        allowance.step()?;
         self.buffer.clear();
         self.reader.get_mut().token = 0;
         match self.reader.read_event_into(&mut self.buffer).map_err(|e| refusal(part, &e))? {
@@ -57,7 +61,7 @@ impl<'a> Xml<'a> {
                 if self.depth > DEEPEST {
                     return Err(Refusal::TooLarge(format!("{part} nests elements more than {DEEPEST} deep")));
                 }
-                Ok(Node::Open(Tag { start, part }))
+                Ok(Node::Open(Tag { start, part, allowance }))
             }
             Event::End(_) => {
                 self.depth -= 1;
@@ -105,6 +109,7 @@ impl Tag<'_> {
     /// An attribute is malformed or holds an entity.
     pub fn each(&self, mut take: impl FnMut(&[u8], Cow<str>)) -> Result<(), Refusal> {
         for attribute in self.start.attributes().with_checks(false) {
+            self.allowance.step()?;
             let attribute = attribute.map_err(|e| Refusal::Damaged(format!("{}: {e}", self.part)))?;
             let value = attribute.normalized_value(XmlVersion::Implicit1_0).map_err(|e| refusal(self.part, &e))?;
             take(attribute.key.into_inner(), value);
@@ -112,10 +117,10 @@ impl Tag<'_> {
         Ok(())
     }
 
-    /// The value of an attribute, by its name without a prefix.
+    /// The value of an attribute that names or numbers something, by its name without a prefix.
     ///
     /// # Errors
-    /// As [`Tag::each`].
+    /// As [`Tag::each`], or it is too long for a name.
     pub fn get(&self, name: &str) -> Result<Option<String>, Refusal> {
         let mut found = None;
         self.each(|key, value| {
@@ -123,7 +128,12 @@ impl Tag<'_> {
                 found = Some(value.into_owned());
             }
         })?;
-        Ok(found)
+        match found {
+            Some(value) if value.len() > MOST_NAME => {
+                Err(Refusal::TooLarge(format!("{} holds a name of more than {MOST_NAME} bytes", self.part)))
+            }
+            found => Ok(found),
+        }
     }
 }
 

@@ -4,6 +4,9 @@ use chardetng::{EncodingDetector, Iso2022JpDetection, Utf8Detection};
 use encoding_rs::Encoding;
 use std::borrow::Cow;
 
+/// Bytes from the first that is not ASCII on that are looked at to guess.
+const SAMPLE: usize = 1 << 20;
+
 /// A file as text.
 pub struct Decoded<'a> {
     /// The text, without a byte order mark.
@@ -25,7 +28,8 @@ pub fn decode(bytes: &[u8]) -> Option<Decoded<'_>> {
         (None, Ok(text)) => Decoded { text: text.into(), guess: None, has_gaps: false },
         (None, Err(_)) => {
             let mut detector = EncodingDetector::new(Iso2022JpDetection::Deny);
-            detector.feed(bytes, true);
+            let telling = bytes.iter().position(|b| !b.is_ascii()).map_or(0..0, |at| at..bytes.len().min(at + SAMPLE));
+            detector.feed(&bytes[telling], true);
             let encoding = detector.guess(None, Utf8Detection::Deny);
             let (text, has_gaps) = encoding.decode_without_bom_handling(bytes);
             Decoded { text, guess: Some(encoding.name()), has_gaps }

@@ -85,10 +85,10 @@ impl Table<'_, '_> {
         if hidden {
             self.draft.hide_rows(first, self.row - 1)?;
         }
-        let cells = self.draft.since(start).to_vec();
-        if cells.is_empty() {
+        if repeated == 1 || self.draft.len() == start {
             return Ok(());
         }
+        let cells = self.draft.since(start).to_vec();
         for row in first + 1..self.row {
             for cell in &cells {
                 self.draft.put(row, cell.col, cell.value.clone(), self.budget)?;
@@ -139,7 +139,7 @@ impl Table<'_, '_> {
         if bottom < self.row || right < col {
             return Ok(());
         }
-        self.draft.merge(Area { top: self.row, left: col, bottom, right })
+        self.draft.merge(Area { top: self.row, left: col, bottom, right }, self.budget)
     }
 }
 

@@ -205,3 +205,11 @@ fn a_folder_of_csv_files_of_an_office() {
     assert_eq!(said.len(), 1, "what was guessed is said");
     assert!(said[0].contains("windows-1252"), "{}", said[0]);
 }
+
+#[test]
+fn marks_that_nothing_closes_are_said_once() {
+    let (sheets, said) = folder(&[("Readings.csv", b"Location,Remarks\n5/7a,\"2 inch\n5/7b,\"3 inch\n")]);
+    assert_eq!(sheets[0].1[2..], [r#"A2 "5/7a""#, r#"B2 "\"2 inch""#, r#"A3 "5/7b""#, r#"B3 "\"3 inch""#]);
+    assert_eq!(said.len(), 1);
+    assert!(said[0].starts_with("2 texts begin with a quotation mark that is never closed"), "{}", said[0]);
+}

@@ -6,15 +6,22 @@ use std::io::Write;
 
 /// A package of parts, deflated.
 pub fn zip(parts: &[(&str, &[u8])]) -> Vec<u8> {
+    zip_repeated(&parts.iter().map(|(name, content)| (*name, *content, 1)).collect::<Vec<_>>())
+}
+
+/// A package of parts, each so many times its content.
+pub fn zip_repeated(parts: &[(&str, &[u8], usize)]) -> Vec<u8> {
     let mut bytes = Vec::new();
     let mut directory = Vec::new();
-    for (name, content) in parts {
+    for (name, content, times) in parts {
         let mut encoder = DeflateEncoder::new(Vec::new(), flate2::Compression::fast());
-        encoder.write_all(content).unwrap();
-        let packed = encoder.finish().unwrap();
         let mut crc = Crc::new();
-        crc.update(content);
-        let [packed_length, length, name_length] = [packed.len(), content.len(), name.len()].map(|n| u32::try_from(n).unwrap());
+        for _ in 0..*times {
+            encoder.write_all(content).unwrap();
+            crc.update(content);
+        }
+        let packed = encoder.finish().unwrap();
+        let [packed_length, length, name_length] = [packed.len(), content.len() * times, name.len()].map(|n| u32::try_from(n).unwrap());
         let mut head = vec![20, 0, 0, 0, 8, 0, 0, 0, 0, 0];
         for number in [crc.sum(), packed_length, length, name_length] {
             head.extend(number.to_le_bytes());

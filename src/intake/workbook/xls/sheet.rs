@@ -97,7 +97,7 @@ impl Reading<'_> {
     fn merge(&mut self, data: Data) -> Result<(), Refusal> {
         for area in data.after(2)?.0.chunks_exact(8).take(data.u16(0)?.into()).map(Data) {
             let [top, bottom, left, right] = [area.u16(0)?, area.u16(2)?, area.u16(4)?, area.u16(6)?].map(u32::from);
-            self.draft.merge(Area { top, left, bottom, right })?;
+            self.draft.merge(Area { top, left, bottom, right }, self.budget)?;
         }
         Ok(())
     }

@@ -56,7 +56,9 @@ impl Records<'_> {
     pub fn each(archive: &Archive, name: &str, mut take: impl FnMut(&Record) -> Result<(), Refusal>) -> Result<(), Refusal> {
         let part = archive.part(name)?.ok_or_else(|| Refusal::Damaged(format!("{name} is missing")))?;
         let mut records = Records { part: BufReader::with_capacity(1 << 16, part), buffer: Vec::new() };
+        let allowance = records.part.get_ref().allowance();
         while !records.part.fill_buf().map_err(|e| damage(name, &e))?.is_empty() {
+            allowance.step()?;
             let [kind, length] = [2, 4].map(|most| records.variable(most));
             let (kind, length) = (kind.map_err(|e| damage(name, &e))?, length.map_err(|e| damage(name, &e))? as usize);
             if length > MOST_TOKEN {
@@ -97,7 +99,7 @@ pub struct CellRecord<'b> {
 }
 
 impl<'b> Record<'b> {
-    /// The record as that of a cell, if it is one: column, format and flags, value (MS-XLSB 2.5.9); or without the column.
+    /// The record as that of a cell, if it is one: column, format and flags, value; or without the column.
     pub fn cell(&self) -> Result<Option<CellRecord<'b>>, Short> {
         let (kind, col, rest) = match self.kind {
             BLANK..=FORMULA_ERROR | RICH_LABEL => (self.kind, Some(self.data.u32(0)?), self.data.after(4)?),

@@ -1,7 +1,7 @@
 //! A worksheet part: its cells, hidden rows and columns, merged areas.
 
 use super::super::archive::Archive;
-use super::super::bounds::{Budget, MOST_ENTRIES, at_most};
+use super::super::bounds::{Budget, MOST_ENTRIES, add, at_most};
 use super::super::draft::Draft;
 use super::super::serial::{self, Kind};
 use super::super::texts::Texts;
@@ -87,7 +87,7 @@ impl Reading<'_> {
                     b"sheetData" => self.rows()?,
                     b"mergeCell" => {
                         if let Some(area) = tag.get("ref")?.as_deref().and_then(area) {
-                            self.draft.merge(area)?;
+                            self.draft.merge(area, self.budget)?;
                         }
                     }
                     // Extensions hold parts of cells' names without being cells.
@@ -155,7 +155,7 @@ impl Reading<'_> {
             match self.xml.next()? {
                 Node::Open(tag) => match tag.name() {
                     b"v" => stored = Some(text(&mut self.xml)?),
-                    b"is" => rich(&mut self.xml, inline.get_or_insert_default())?,
+                    b"is" => inline = Some(rich(&mut self.xml)?),
                     b"f" => {
                         let shared = tag.get("si")?.and_then(|index| index.parse().ok());
                         formula = Some(Formula { shared, text: text(&mut self.xml)? });
@@ -181,7 +181,10 @@ impl Reading<'_> {
     fn whole(&mut self, formula: Formula) -> Result<String, Refusal> {
         let Formula { shared, text } = formula;
         match shared {
-            Some(index) if !text.is_empty() => drop(self.masters.insert(index, text.clone())),
+            Some(index) if !text.is_empty() => {
+                self.budget.text(text.len())?;
+                self.masters.insert(index, text.clone());
+            }
             Some(index) if text.is_empty() => {
                 return Ok(format!("={}", self.masters.get(&index).map_or("", String::as_str)));
             }
@@ -236,7 +239,7 @@ fn text(xml: &mut Xml) -> Result<String, Refusal> {
     let mut text = String::new();
     loop {
         match xml.next()? {
-            Node::Text(piece) => text.push_str(&piece),
+            Node::Text(piece) => add(&mut text, &piece)?,
             Node::Open(_) => xml.skip()?,
             Node::Close | Node::End => return Ok(text),
         }

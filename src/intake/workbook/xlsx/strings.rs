@@ -1,6 +1,7 @@
 //! Text in Office Open XML: the table of shared texts, runs of rich text, and characters written as `_x000D_`.
 
 use super::super::archive::Archive;
+use super::super::bounds::add;
 use super::super::texts::Texts;
 use super::super::xml::{Node, Xml};
 use crate::intake::Refusal;
@@ -12,13 +13,10 @@ use crate::intake::Refusal;
 pub fn read(archive: &Archive, name: &str) -> Result<Texts, Refusal> {
     let mut xml = super::open(archive, name)?;
     let mut texts = Texts::default();
-    let mut text = String::new();
     loop {
         match xml.next()? {
             Node::Open(tag) if tag.name() == b"si" => {
-                text.clear();
-                rich(&mut xml, &mut text)?;
-                texts.push(&text)?;
+                texts.push(&rich(&mut xml)?)?;
             }
             Node::End => return Ok(texts),
             _ => {}
@@ -30,7 +28,8 @@ pub fn read(archive: &Archive, name: &str) -> Result<Texts, Refusal> {
 ///
 /// # Errors
 /// The part is broken.
-pub fn rich(xml: &mut Xml, text: &mut String) -> Result<(), Refusal> {
+pub fn rich(xml: &mut Xml) -> Result<String, Refusal> {
+    let mut text = String::new();
     let mut depth = 1;
     let mut in_text = false;
     while depth > 0 {
@@ -41,13 +40,13 @@ pub fn rich(xml: &mut Xml, text: &mut String) -> Result<(), Refusal> {
                 _ => depth += 1,
             },
             Node::Close => (in_text, depth) = (false, depth - 1),
-            Node::Text(piece) if in_text => text.push_str(&piece),
+            Node::Text(piece) if in_text => add(&mut text, &piece)?,
             Node::Text(_) => {}
             Node::End => break,
         }
     }
-    unescape(text);
-    Ok(())
+    unescape(&mut text);
+    Ok(text)
 }
 
 /// Puts the character for each `_xHHHH_` (ECMA-376 part 1, 22.9.2.19); an underscore is itself written `_x005F_` before such a piece.

@@ -1,0 +1,35 @@
+//! Runs of text.
+
+use super::mark;
+use super::markup::Markup;
+use crate::report::document::Inline;
+
+/// Writes a run of text.
+pub(super) fn write(page: &mut Markup, text: &[Inline]) {
+    for inline in text {
+        match inline {
+            Inline::Text(text) => page.text(text),
+            Inline::Strong(text) => page.element("strong", &[], |page| write(page, text)),
+            Inline::Emphasis(text) => page.element("em", &[], |page| write(page, text)),
+            Inline::Link { href, text } => link(page, href, text),
+            Inline::Signal(signal) => mark::signal(page, *signal),
+            Inline::Break => page.void("br", &[]),
+        }
+    }
+}
+
+/// A link within the document, to a secure page or to a mail address; the text of any other stands alone.
+fn link(page: &mut Markup, href: &str, text: &[Inline]) {
+    if let Some(anchor) = href.strip_prefix('#') {
+        page.element("a", &[("href", &format!("#{}", identifier(anchor)))], |page| write(page, text));
+    } else if href.starts_with("https://") || href.starts_with("mailto:") {
+        page.element("a", &[("href", href), ("rel", "noopener noreferrer")], |page| write(page, text));
+    } else {
+        write(page, text);
+    }
+}
+
+/// An anchor as an identifier: blanks and what has a meaning in addresses become `-`.
+pub(super) fn identifier(anchor: &str) -> String {
+    anchor.chars().map(|c| if c.is_alphanumeric() || matches!(c, '-' | '_' | '.') { c } else { '-' }).collect()
+}

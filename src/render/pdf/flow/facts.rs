@@ -1,0 +1,85 @@
+//! Label and value pairs in two columns, and lines to sign on.
+
+use super::super::shape::{self, Line, Span};
+use super::super::strip::{Mark, Paint, Strip};
+use super::{BODY, Flow, LEADING, Place, baseline};
+use crate::report::document::Inline;
+use crate::report::drawing::Colour;
+
+/// Width of the labels.
+const LABEL: f32 = 78.0;
+/// Between the two columns.
+const GUTTER: f32 = 18.0;
+/// Values this much wider than a column take a row of their own.
+const NARROWEST: f32 = 300.0;
+/// Height of a line to sign on.
+const SIGN: f32 = 30.0;
+
+impl Flow<'_> {
+    /// Pairs, two abreast where they fit.
+    pub(super) fn facts(&mut self, facts: &[(String, Vec<Inline>)], place: Place) {
+        let list = self.structure.add(place.node, "L");
+        let half = if place.width < NARROWEST { place.width } else { (place.width - GUTTER) / 2.0 };
+        let mut open: Option<Strip> = None;
+        for (label, value) in facts {
+            let spans = self.spans(value, self.ink());
+            let shaped = shape::shape(&spans, BODY);
+            let fits = half < place.width && shaped.widths().1 <= half - LABEL;
+            let width = if fits { half } else { place.width };
+            let lines = shaped.lines(width - LABEL);
+            if !fits {
+                self.strips.extend(open.take());
+            }
+            let second = open.is_some();
+            let x = place.x + if second { half + GUTTER } else { 0.0 };
+            let mut strip = open.take().unwrap_or_default();
+            self.pair(&mut strip, label, lines, &spans, (x, width), list);
+            if fits && !second { open = Some(strip) } else { self.strips.push(strip) }
+        }
+        self.strips.extend(open);
+    }
+
+    fn pair(&mut self, strip: &mut Strip, label: &str, lines: Vec<Line>, spans: &[Span], (x, width): (f32, f32), list: usize) {
+        let item = self.structure.add(list, "LI");
+        let label_node = self.structure.add(item, "Lbl");
+        let body = self.structure.add(item, "LBody");
+        let quiet = [Span::new(label, self.colour(Colour::Quiet))];
+        let top = 2.5;
+        if let Some(line) = shape::shape(&quiet, BODY).lines(LABEL * 2.0).into_iter().next() {
+            self.set(strip, line, &quiet, (x, top + baseline(BODY)), label_node);
+        }
+        let count = lines.len().max(1) as f32;
+        for (i, line) in lines.into_iter().enumerate() {
+            self.set(strip, line, spans, (x + LABEL, top + baseline(BODY) + i as f32 * BODY * LEADING), body);
+        }
+        strip.height = strip.height.max(2.0 * top + count * BODY * LEADING);
+        let y = strip.height;
+        let rule = Paint::Line { points: vec![(x, y), (x + width, y)], width: 0.4, colour: self.colour(Colour::Faint), dash: None, round: false };
+        strip.marks.push(Mark { node: None, paints: vec![rule] });
+    }
+
+    /// Lines with their labels below, two abreast.
+    pub(super) fn sign_off(&mut self, lines: &[(String, Option<String>)], place: Place) {
+        let list = self.structure.add(place.node, "L");
+        let half = (place.width - GUTTER) / 2.0;
+        let rows = lines.chunks(2).count();
+        for (r, pair) in lines.chunks(2).enumerate() {
+            let mut strip = Strip { height: SIGN + BODY * LEADING, gap: 4.0, keep: r + 1 < rows, ..Strip::default() };
+            for (i, (label, known)) in pair.iter().enumerate() {
+                let x = place.x + i as f32 * (half + GUTTER);
+                let item = self.structure.add(list, "LI");
+                let (label_node, body) = (self.structure.add(item, "Lbl"), self.structure.add(item, "LBody"));
+                let quiet = [Span::new(label, self.colour(Colour::Quiet))];
+                let value = [Span::new(known.as_deref().unwrap_or_default(), self.ink())];
+                for (spans, y, node) in [(&quiet, SIGN + baseline(BODY) - 1.0, label_node), (&value, SIGN - 5.0, body)] {
+                    if let Some(line) = shape::shape(spans, BODY - 0.5).lines(half).into_iter().next() {
+                        self.set(&mut strip, line, spans, (x, y), node);
+                    }
+                }
+                let rule = Paint::Line { points: vec![(x, SIGN), (x + half, SIGN)], width: 0.6, colour: self.ink(), dash: None, round: false };
+                strip.marks.push(Mark { node: None, paints: vec![rule] });
+            }
+            self.strips.push(strip);
+        }
+    }
+}

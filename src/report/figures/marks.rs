@@ -1,0 +1,56 @@
+//! Marks on a beam: their shape says when a reading was taken, their width how sure it is.
+
+use super::canvas::Canvas;
+use crate::report::drawing::Colour;
+use crate::visit::{ReadingRow, Stage, name_key};
+
+/// Narrowest mark that can be told apart by shape, in points.
+pub(super) const LEAST_WIDTH: f64 = 3.6;
+const HEIGHT: f64 = 10.0;
+const OUTLINE: f64 = 1.1;
+
+/// When a set of readings was taken: filled before a repair, open after it; a bar with what was on as found, a lozenge in a state
+/// of its own.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, PartialOrd, Ord)]
+pub(super) struct Kind {
+    pub is_left: bool,
+    pub is_own_state: bool,
+}
+
+impl Kind {
+    pub fn of(row: &ReadingRow) -> Self {
+        Self { is_left: row.stage == Stage::AsLeft, is_own_state: !is_default_state(row) }
+    }
+
+    /// Its line in the legend.
+    pub fn key(self) -> &'static str {
+        match (self.is_left, self.is_own_state) {
+            (false, false) => "figure.as-found",
+            (false, true) => "figure.as-found-state",
+            (true, false) => "figure.as-left",
+            (true, true) => "figure.as-left-state",
+        }
+    }
+}
+
+/// The workbook names no load state of its own for the row.
+pub(super) fn is_default_state(row: &ReadingRow) -> bool {
+    [Stage::AsFound, Stage::AsLeft].iter().any(|s| name_key(&row.state) == s.name())
+}
+
+/// Draws a mark about a point; its width is `width`, but never less than what can be seen.
+pub(super) fn mark(canvas: &mut Canvas, at: (f64, f64), width: f64, kind: Kind, colour: Colour) {
+    let (x, y) = at;
+    let half = width.max(LEAST_WIDTH) / 2.0;
+    let tall = HEIGHT / 2.0;
+    let inset = if kind.is_left { OUTLINE / 2.0 } else { 0.0 };
+    let (fill, stroke) = if kind.is_left { (Colour::Paper, Some((OUTLINE, colour))) } else { (colour, None) };
+    let (half, tall) = (half - inset, tall - inset);
+    let outline = if kind.is_own_state {
+        let waist = half.max(2.6);
+        vec![(x, y - tall), (x + waist, y), (x, y + tall), (x - waist, y)]
+    } else {
+        vec![(x - half, y - tall), (x + half, y - tall), (x + half, y + tall), (x - half, y + tall)]
+    };
+    canvas.polygon(&outline, Some(fill), stroke);
+}

@@ -1,0 +1,47 @@
+//! What a template can place: tables, figures, facts, photos, a sign-off.
+
+use crate::report::document::{Block, CaptionedImage, Inline, Table};
+use crate::report::drawing::Drawing;
+use std::sync::Arc;
+
+/// Computed things by name.
+pub(in crate::report) struct Places {
+    /// Tables that have rows.
+    pub tables: Vec<Arc<Table>>,
+    /// Figures with their captions; a name may stand for several.
+    pub figures: Vec<(&'static str, String, Arc<Drawing>)>,
+    /// Label and value pairs, by name.
+    pub facts: Vec<(&'static str, Vec<(String, String)>)>,
+    /// Photos that could be read.
+    pub photos: Vec<CaptionedImage>,
+    /// Lines to sign on.
+    pub sign_off: Vec<(String, Option<String>)>,
+}
+
+impl Places {
+    /// The blocks of a place; none where there is nothing of that name.
+    pub(super) fn at(&self, scheme: &str, name: &str, caption: &str) -> Vec<Block> {
+        match scheme {
+            "table" => self.tables.iter().filter(|t| t.name == name).map(|t| Block::Table(captioned(t, caption))).collect(),
+            "figure" => self.figures.iter().filter(|f| f.0 == name).map(|f| figure(f, caption)).collect(),
+            "facts" => self.facts.iter().filter(|f| f.0 == name && !f.1.is_empty()).map(|f| facts(&f.1)).collect(),
+            "photos" if !self.photos.is_empty() => vec![Block::Photos(self.photos.clone())],
+            "signoff" => vec![Block::SignOff(self.sign_off.clone())],
+            _ => Vec::new(),
+        }
+    }
+}
+
+/// The table itself where the caption stays, so that all renderers share it.
+fn captioned(table: &Arc<Table>, caption: &str) -> Arc<Table> {
+    if caption.is_empty() { Arc::clone(table) } else { Arc::new(Table { caption: caption.to_owned(), ..(**table).clone() }) }
+}
+
+fn figure(figure: &(&'static str, String, Arc<Drawing>), caption: &str) -> Block {
+    let caption = if caption.is_empty() { figure.1.clone() } else { caption.to_owned() };
+    Block::Figure { caption: vec![Inline::Text(caption)], drawing: Arc::clone(&figure.2) }
+}
+
+fn facts(facts: &[(String, String)]) -> Block {
+    Block::Facts(facts.iter().map(|(label, value)| (label.clone(), vec![Inline::Text(value.clone())])).collect())
+}

@@ -1,0 +1,10 @@
+//! The renderers, each read back by something that did not write it.
+
+#[path = "render/html.rs"]
+mod html;
+#[path = "render/marked.rs"]
+mod marked;
+#[path = "render/specimen.rs"]
+mod specimen;
+#[path = "render/xlsx.rs"]
+mod xlsx;
