@@ -338,11 +338,6 @@ impl Words {
         self.prose.contains(&normal(sheet))
     }
 
-    /// A sheet that is read by people alone, where it holds no table.
-    pub fn is_prose(&self, sheet: &str) -> bool {
-        self.prose.contains(&normal(sheet))
-    }
-
     pub fn set_column(&mut self, kind: Kind, text: &str, what: What) {
         self.own.insert((kind, normal(text)), what);
         self.any_column.insert(normal(text));
