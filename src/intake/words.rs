@@ -147,7 +147,7 @@ struct File {
 /// Words for one kind of thing: normalised spelling → thing, and the name each thing goes by.
 #[derive(Clone, Debug)]
 pub(super) struct Names<T> {
-    spellings: HashMap<String, T>,
+    spellings: HashMap<String, (T, usize)>,
     labels: BTreeMap<T, String>,
 }
 
@@ -155,8 +155,8 @@ impl<T: Copy + Ord> Names<T> {
     fn new(lists: BTreeMap<T, Vec<String>>) -> Self {
         let mut names = Self { spellings: HashMap::new(), labels: BTreeMap::new() };
         for (thing, words) in lists {
-            for word in &words {
-                names.spellings.entry(normal(word)).or_insert(thing);
+            for (rank, word) in words.iter().enumerate() {
+                names.spellings.entry(normal(word)).or_insert((thing, rank));
             }
             names.labels.extend(words.into_iter().next().map(|label| (thing, label)));
         }
@@ -165,7 +165,12 @@ impl<T: Copy + Ord> Names<T> {
 
     /// The thing a text names.
     pub fn get(&self, text: &str) -> Option<T> {
-        self.spellings.get(&normal(text)).copied()
+        self.spellings.get(&normal(text)).map(|(thing, _)| *thing)
+    }
+
+    /// How far down its list a spelling stands: of two columns that can be the same, the one named more to the point is.
+    pub fn rank(&self, text: &str) -> usize {
+        self.spellings.get(&normal(text)).map_or(usize::MAX, |(_, rank)| *rank)
     }
 
     /// The name a thing goes by.
@@ -182,7 +187,7 @@ impl<T: Copy + Ord> Names<T> {
 
     /// Another spelling; it takes the place of what it meant before.
     pub fn add(&mut self, text: &str, thing: T) {
-        self.spellings.insert(normal(text), thing);
+        self.spellings.insert(normal(text), (thing, 0));
     }
 
     /// The names all things go by.

@@ -4,7 +4,8 @@ use super::Tables;
 use super::known::nearest_run;
 use super::legs::{Pending, PendingLoad};
 use crate::diag::{Located, Problem, Severity};
-use crate::intake::cell::{Expected, LegsText, Reader, did_you_mean, legs, plain_text};
+use crate::intake::cell::{Expected, LegsText, Reader, did_you_mean, larger_first, legs, plain_text, poles_as_date};
+use crate::intake::grid::Value;
 use crate::intake::header::heads::Head;
 use crate::intake::header::{Field, Row, Table, What};
 use crate::intake::words::{Column, Kind};
@@ -114,7 +115,11 @@ fn run<'a>(row: &Row<'a>, system: &System, reader: &mut Reader<'a>, circuits: &m
 
 /// The rating, and the common disconnect that a breaker of two or three poles is.
 fn breaker(field: Field<'_>, reader: &mut Reader<'_>) -> (Option<Located<Amperes>>, Option<Located<bool>>) {
-    if let Some((amperes, poles)) = with_poles(&plain_text(field.value)) {
+    let text = larger_first(field.value).unwrap_or_else(|| plain_text(field.value));
+    if let Some((amperes, poles)) = with_poles(&text) {
+        if matches!(field.value, Value::DateTime(_)) {
+            reader.read_from_date(field, &text);
+        }
         return (Some(Located::new(Amperes(amperes), field.cell())), (poles > 1).then(|| Located::new(true, field.cell())));
     }
     let amperes = reader.number(field, &Expected::new(Unit::Ampere, BREAKER.0, BREAKER.1));
@@ -147,10 +152,7 @@ fn run_legs<'a>(
     if reader.broken(field) {
         return None;
     }
-    let text = match crate::intake::cell::poles_as_date(field.value) {
-        Some(poles) => poles,
-        None => plain_text(field.value),
-    };
+    let text = poles_as_date(field.value).unwrap_or_else(|| plain_text(field.value));
     if crate::quantity::parse::not_measured(&text) {
         return None;
     }

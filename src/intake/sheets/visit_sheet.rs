@@ -111,6 +111,15 @@ fn labels<'a>(sheet: &'a Sheet, tables: &Tables<'a>, words: &Words) -> Vec<Line<
     };
     let mut lines = Vec::new();
     for (row, cells) in sheet.rows().take_while(|(row, _)| *row < FORM_ROWS) {
+        // Items side by side have their entries below them.
+        if cells.len() >= FORM_ITEMS && cells.iter().all(|c| item(&c.value).is_some() && !in_table(row, c.col)) {
+            lines.extend(cells.iter().map(|c| Line {
+                item: item(&c.value),
+                label: Field::new(sheet, row, c.col, &c.value),
+                entry: sheet.get(row + 1, c.col).map(|value| Field::new(sheet, row + 1, c.col, value)),
+            }));
+            continue;
+        }
         let mut cells = cells.iter().filter(|c| !in_table(row, c.col)).peekable();
         while let Some(label) = cells.next() {
             let Some(found) = item(&label.value) else { continue };

@@ -160,9 +160,9 @@ pub(super) fn circuits(visit: &Visit) -> String {
 
 /// The problems by place and kind, a line each: `error Readings!B2 letters`. The language file must have words for each.
 pub(super) fn problems(problems: &[Problem]) -> String {
-    let english = Language::english();
+    static ENGLISH: std::sync::LazyLock<Language> = std::sync::LazyLock::new(Language::english);
     let line = |p: &Problem| {
-        let words = [Some(&p.message), p.hint.as_ref()].into_iter().flatten().map(|s| english.say(s)).collect::<String>();
+        let words = [Some(&p.message), p.hint.as_ref()].into_iter().flatten().map(|s| ENGLISH.say(s)).collect::<String>();
         assert!(!words.is_empty() && !words.contains(['⟨', '⟩']), "{words}");
         let place = match (&p.cell, &p.sheet) {
             (Some(cell), _) => cell.to_string(),

@@ -207,7 +207,7 @@ fn names_that_became_dates_are_named() {
     assert_eq!(readings(&out.value), "1/3: L1-N 120.1");
     assert_eq!(out.value.rows[0].run, Some(1));
     assert_eq!(out.value.tree.order, [0, 1, 2]);
-    assert_eq!(problems(&out.problems), "warning Circuits!A3 name-as-date\nwarning Circuits!B4 name-as-date\nwarning R!A2 name-as-date");
+    assert_eq!(problems(&out.problems), "warning Circuits!A3 made-a-date\nwarning Circuits!B4 made-a-date\nwarning R!A2 made-a-date");
 }
 
 #[test]

@@ -1,7 +1,8 @@
-//! Headers and merged areas without number.
+//! Headers and merged areas without number, and anything at all.
 
 use super::book::{Book, VISIT, value};
 use crate::intake::grid::{Area, Cell};
+use proptest::prelude::*;
 
 fn filled(mut book: Book, rows: impl Iterator<Item = Vec<String>>) -> Book {
     let sheet = book.last();
@@ -27,4 +28,91 @@ fn headers_in_every_row_are_not_all_tables() {
     let rows = (0..20_000).map(|i| vec!["'Location".to_owned(), format!("'L{}-N", 1 + i % 2), "'x".to_owned()]);
     let out = filled(Book::new().sheet("Visit", VISIT).sheet("R", "Location|L1-N|L2-N"), rows).visit();
     assert!(out.value.rows.is_empty());
+}
+
+/// What cells of field sheets are made of, and what they are not.
+fn any_cell() -> impl Strategy<Value = String> {
+    let words = [
+        "",
+        "",
+        "Location",
+        "Circuit",
+        "Fed from",
+        "Legs",
+        "Wire",
+        "Length ft",
+        "Breaker",
+        "Load W L1",
+        "L1-N",
+        "L2-N",
+        "VAB",
+        "N-G",
+        "I N",
+        "Quantity",
+        "Value",
+        "Unit",
+        "Item",
+        "Entry",
+        "System",
+        "Visit date",
+        "Test",
+        "Observation",
+        "Photo",
+        "File",
+        "Instrument",
+        "Measures",
+        "SVC",
+        "9",
+        "120.1",
+        "119,6 V",
+        "12o.1",
+        "OL",
+        "<0.5",
+        "2P",
+        "1,3",
+        "12/2 NM",
+        "4/0 Al",
+        "120/240",
+        "@2026-01-03",
+        "@09:04",
+        "#REF!",
+        "=A1",
+        "TRUE",
+        "total",
+        "panel.png",
+        "L1 \u{b2}\u{2713}",
+        "1e999",
+    ];
+    prop_oneof![6 => proptest::sample::select(words.to_vec()).prop_map(str::to_owned), 1 => "'[^|\\n]{1,12}"]
+}
+
+/// Headers of tables, so that most grids hold one.
+const HEADERS: [&str; 9] = [
+    "Circuit|Fed from|Legs|Breaker A|Tie|Wire|Length ft|Load W L1|Load W",
+    "Location|State|Time|Instrument|L1-N|N-G|H-N|L-L|Remarks",
+    "Location|Quantity|Value|Unit|Stage",
+    "Item|Entry",
+    "Instrument|Measures|Calibrated until|Accuracy|Resolution",
+    "Location|Test|Value|Unit|Remarks",
+    "Location|Observation|Signal word|Photo",
+    "File|Location|Caption",
+    "Date|Location|Work done|Issue|Reason",
+];
+
+proptest! {
+    #![proptest_config(ProptestConfig { cases: 200, failure_persistence: None, ..ProptestConfig::default() })]
+    #[test]
+    fn no_grid_stops_the_reader(
+        header in proptest::sample::select(HEADERS.to_vec()),
+        rows in proptest::collection::vec(proptest::collection::vec(any_cell(), 1..10), 1..12),
+        at in 0usize..4,
+    ) {
+        let mut lines: Vec<String> = rows.iter().map(|row| row.join("|")).collect();
+        lines.insert(at.min(lines.len()), header.to_owned());
+        let mut book = Book::new().sheet("A", &lines.join("\n")).sheet("R", "Location|L1-N\nSVC|120");
+        book.last().merged.push(Area { top: 0, left: 0, bottom: 3, right: 1 });
+        let out = book.visit();
+        // Each problem can be put into words.
+        prop_assert_eq!(super::book::problems(&out.problems).lines().count(), out.problems.len());
+    }
 }

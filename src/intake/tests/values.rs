@@ -166,6 +166,8 @@ fn breakers() {
             ("30A/2P", "30 A tied"),
             ("2P-30A", "30 A tied"),
             ("1P 20A", "20 A"),
+            ("@2026-01-20", "20 A; made-a-date"),
+            ("@2026-09-14", "date-not-number"),
             ("n/a", ""),
         ],
     );
@@ -212,7 +214,7 @@ fn wires() {
             ("250 kcmil Cu", "250 kcmil Cu"),
             ("2.5mm\u{b2}", "2.5 mm2 Cu; no-metal"),
             ("2.5 mm2 Cu", "2.5 mm2 Cu"),
-            ("@2026-12-02", "12 Cu; wire-as-date; no-metal"),
+            ("@2026-12-02", "12 Cu; made-a-date; no-metal"),
             ("2.5", "wire-no-unit"),
             ("13 Cu", "no-such-size"),
             ("12 Cu/Al", "two-metals"),

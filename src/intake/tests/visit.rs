@@ -43,7 +43,10 @@ fn items_are_read_under_a_header_or_as_a_form() {
     let items = "Job number|AF-2101\nClient|Orla Penhallow\nSite address|4 Quarry Lane, Alder Ferry\nVisit date|@2026-09-14\nPurpose|Home inspection\nPrepared by|Ines Marlow\nLicence|Inspector 0417\nCompany|Kestrel & Rowe Electrical\nSystem|120/240\nService rating|200 A\nSupplied by|Ferry Valley Light & Water\nCode in force|as adopted\nWeather|dry\nRemarks|none of note";
     let form = format!("Kestrel & Rowe Electrical\n\n{}", items.replace('|', ":|"));
     let beside = "Job no.|AF-2101||Customer|Orla Penhallow\nAddress|4 Quarry Lane, Alder Ferry||Date|@2026-09-14\nType of visit|inspection||Inspector|Ines Marlow\nLicense|Inspector 0417||Contractor|Kestrel & Rowe Electrical\nSystem|120/240||Main breaker|200 A\nUtility|Ferry Valley Light & Water||Code|as adopted\nWeather|dry||Notes|none of note";
-    for sheet in [format!("Item|Entry\n{items}"), items.to_owned(), form, beside.to_owned()] {
+    let pairs = items.lines().filter_map(|line| line.split_once('|'));
+    let (heads, entries): (Vec<&str>, Vec<&str>) = pairs.unzip();
+    let across = format!("{}\n{}", heads.join("|"), entries.join("|"));
+    for sheet in [format!("Item|Entry\n{items}"), items.to_owned(), form, beside.to_owned(), across] {
         let out = Book::new().sheet("Any", &sheet).sheet("R", READINGS).visit();
         let site = out.value.site;
         let texts = [
