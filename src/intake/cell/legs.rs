@@ -79,7 +79,7 @@ impl Parsed {
         if let Ok(number) = word.parse::<u32>() {
             self.bare = true;
             self.poles.push(number);
-            return (number >= 1 && number <= 84).then_some(());
+            return (1..=84).contains(&number).then_some(());
         }
         let mut rest = word;
         while !rest.is_empty() {

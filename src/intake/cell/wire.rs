@@ -1,7 +1,6 @@
 //! Conductors: `12 Cu`, `#12 CU`, `12/2 NM`, `4/0 AL SER`, `250 kcmil`, `2.5 mm2 Cu`.
 
-use super::date::serial_date;
-use super::{Reader, plain_text};
+use super::{Reader, larger_first, plain_text};
 use crate::diag::Located;
 use crate::intake::grid::Value;
 use crate::intake::header::Field;
@@ -39,14 +38,9 @@ impl Reader<'_> {
         if self.broken(field) {
             return None;
         }
-        let mut text = plain_text(field.value);
-        if let Value::DateTime(serial) = field.value
-            && let Some(date) = serial_date(*serial)
-        {
-            // 12/2 and its like became a date; the gauge is the larger of the two.
-            text = format!("{}/{}", date.month.max(date.day), date.month.min(date.day));
-            self.warning(field, Sentence::new("intake.wire-as-date").with("likely", text.as_str())).hint =
-                Some(Sentence::new("intake.name-as-date-hint"));
+        let text = larger_first(field.value).unwrap_or_else(|| plain_text(field.value));
+        if matches!(field.value, Value::DateTime(_)) {
+            self.read_from_date(field, &text);
         } else if crate::quantity::parse::not_measured(&text) {
             return None;
         }
