@@ -10,7 +10,8 @@ use midwire::results::{Cause, CauseKind, Diagnosis, ExposedLeg, Exposure};
 use midwire::rulebook::Rulebook;
 use midwire::rules::{self, Facts};
 use midwire::visit::{
-    Between, Leg, Legs, Load, Metal, Quantity, Reading, ReadingRow, Run, Site, Stage, System, Tree, Visit, Wire, WireSize,
+    Between, Instrument, Leg, Legs, Load, Measures, Metal, Quantity, Reading, ReadingRow, Run, Site, Stage, System, Tree, Visit, Wire,
+    WireSize,
 };
 use midwire::wording::Language;
 use std::sync::Arc;
@@ -84,6 +85,22 @@ impl House {
             cell: at(0),
         });
         self.visit.tree = Tree::new(&self.visit.runs);
+        self
+    }
+
+    /// The voltmeter all readings were taken with: ±(0.5 % + so many counts of 0.1 V).
+    pub fn meter(mut self, counts: f64) -> Self {
+        let at = |col| cell("Instruments", 1, col);
+        self.visit.instruments.push(Instrument {
+            name: Located::new("M1".to_owned(), at(0)),
+            measures: Located::new(Measures::Volts, at(1)),
+            serial: None,
+            calibrated_until: None,
+            accuracy_percent: Some(Located::new(0.5, at(4))),
+            accuracy_counts: Some(Located::new(counts, at(5))),
+            resolution: Some(Located::new(0.1, at(6))),
+            cell: at(0),
+        });
         self
     }
 

@@ -93,7 +93,8 @@ impl<'a> Canvas<'a> {
     /// The text as far as it fits, with an ellipsis where it was cut; empty where nothing of it fits.
     fn fitted(&self, text: &str, style: Style, room: f64) -> String {
         let text = clean(text);
-        let fits = |t: &str| self.measure.width(t, style.size, style.bold) <= room;
+        // A column is often as wide as its widest entry: rounding must not cut that one.
+        let fits = |t: &str| self.measure.width(t, style.size, style.bold) <= room + 1e-6;
         if fits(&text) {
             return text;
         }

@@ -1,6 +1,6 @@
 //! Leg load: the volt-amperes on each leg, circuit by circuit, as they are and after the suggested moves.
 
-use super::canvas::{Canvas, Style};
+use super::canvas::{Canvas, Style, clean};
 use super::{Figure, Scene};
 use crate::quantity::{Unit, VoltAmperes};
 use crate::report::drawing::{Anchor, Colour};
@@ -24,7 +24,9 @@ const MARGIN: f64 = 3.0;
 const MOST_MOVES: usize = 12;
 
 pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
-    let Some(balance) = scene.source.balance.filter(|b| b.legs.iter().any(|l| l.va.0 > 0.0)) else {
+    let Some(balance) =
+        scene.source.balance.filter(|b| b.legs.iter().chain(&b.after).all(|l| l.va.0.is_finite()) && b.legs.iter().any(|l| l.va.0 > 0.0))
+    else {
         return Vec::new();
     };
     let chart = Chart::new(scene, balance);
@@ -88,6 +90,10 @@ impl<'a> Chart<'a> {
 
     fn draw(&self, canvas: &mut Canvas) -> f64 {
         let balance = self.balance;
+        let lines = if balance.moves.is_empty() { 1.0 } else { 2.0 };
+        let one = lines * (BAR + GAP) - GAP + LEG_GAP;
+        // Under the bars, so that it crosses no name.
+        self.mean(canvas, HEAD + one * balance.legs.len() as f64 - LEG_GAP + 3.0);
         let mut y = HEAD;
         for (i, leg) in balance.legs.iter().enumerate() {
             canvas.text((0.0, y + BAR / 2.0 + RISE), leg.leg.name(), Style::NAME, Anchor::Start, 22.0);
@@ -103,7 +109,6 @@ impl<'a> Chart<'a> {
             }
             y += BAR + LEG_GAP;
         }
-        self.mean(canvas, y - LEG_GAP + 3.0);
         y += 4.0;
         for sentence in self.summary() {
             y = canvas.paragraph((0.0, y), &self.scene.say(&sentence), Style::PLAIN, self.scene.width, 2);
@@ -204,9 +209,12 @@ impl<'a> Chart<'a> {
     }
 
     fn moved(&self, m: &Move) -> String {
-        let sentence =
-            Sentence::new("figure.move").with("run", self.scene.name(m.run)).with("from", m.from.as_str()).with("to", m.to.as_str());
-        self.scene.say(&sentence)
+        let serves = self.scene.source.visit.runs.get(m.run).and_then(|r| r.serves.as_ref());
+        let sentence = match serves {
+            Some(serves) => Sentence::new("figure.move-serves").with("serves", clean(&serves.value)),
+            None => Sentence::new("figure.move"),
+        };
+        self.scene.say(&sentence.with("run", self.scene.name(m.run)).with("from", m.from.as_str()).with("to", m.to.as_str()))
     }
 
     /// Lists the moves; returns the height of the drawing.

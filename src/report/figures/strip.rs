@@ -277,8 +277,9 @@ impl<'a> Strip<'a> {
             None => {}
         }
         let counts = self.scene.source.visit.accuracy_of(set.row, Quantity::line_neutral(self.legs[0])).counts();
-        let width = 2.0 * position_uncertainty(set.volts, counts) * (right - left);
-        mark(canvas, (at, y), width.min(right - left), Kind::of(set.row), colour);
+        // The neutral cannot be off the beam, however unsure its place is.
+        let (share, unsure) = (position(set.volts), position_uncertainty(set.volts, counts));
+        mark(canvas, (at, y), (self.x(share - unsure), self.x(share + unsure)), Kind::of(set.row), colour);
         let style = if fault.is_some() { Style::VALUE.loud(colour) } else { Style::VALUE };
         let say = |v: f64| self.scene.language.quantity(v, 1, Unit::Volt);
         canvas.text((left - 7.0, y + RISE), &say(set.volts[0]), style, Anchor::End, left - 15.0 - self.labels);
@@ -291,7 +292,7 @@ impl<'a> Strip<'a> {
         kinds.dedup();
         let mut x = 6.0;
         for kind in kinds {
-            mark(canvas, (x, y - RISE + 0.5), 0.0, kind, Colour::Ink);
+            mark(canvas, (x, y - RISE + 0.5), (x, x), kind, Colour::Ink);
             x = canvas.run(x + 7.0, y, &self.scene.say(&Sentence::new(kind.key())), Style::QUIET, self.scene.width) + 16.0;
         }
     }
