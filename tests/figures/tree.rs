@@ -92,7 +92,7 @@ fn a_ring_and_a_loose_run_are_listed_with_their_sources() {
         .run("Y", "X", "L1 L2", "")
         .run("Z", "nowhere", "L1", "shed");
     let figure = &house.figure("run-tree")[0];
-    for said in ["A", "X", "Y", "Z", "from Y", "from X", "from nowhere"] {
+    for said in ["A", "X", "Y", "Z", "from Y", "from X", "from nowhere · shed"] {
         assert!(figure.drawing.shapes.iter().any(|s| matches!(s, Shape::Text { text, .. } if text == said)), "{said}");
     }
 }

@@ -54,7 +54,7 @@ pub(super) fn pieces(leg: &LegLoad, moves: &[Move], has_room: impl Fn(&Piece) ->
     let piece = |&(run, va): &(usize, VoltAmperes)| Piece { run: Some(run), va: va.0, count: 1, is_moved: is_moved(run) };
     let (moved, mut rest): (Vec<Piece>, Vec<Piece>) = leg.circuits.iter().filter(|c| c.1.0 > 0.0).map(piece).partition(|p| p.is_moved);
     rest.sort_by(|a, b| b.va.total_cmp(&a.va));
-    let small = rest.split_off(rest.iter().position(|p| !has_room(p)).unwrap_or(rest.len()));
+    let (mut rest, small): (Vec<Piece>, Vec<Piece>) = rest.into_iter().partition(has_room);
     match small.as_slice() {
         [] => {}
         [one] => rest.push(one.clone()),
@@ -143,7 +143,7 @@ impl<'a> Chart<'a> {
 
     /// The piece can be named.
     fn has_room(&self, canvas: &Canvas, piece: &Piece) -> bool {
-        self.room(piece) >= ROOMY || canvas.width_of(&self.label(piece), Style::NAME) <= self.room(piece)
+        self.room(piece) >= ROOMY || canvas.width_of(&self.label(piece), Style::PLAIN.loud(Colour::Ink)) <= self.room(piece)
     }
 
     fn label(&self, piece: &Piece) -> String {
@@ -155,11 +155,8 @@ impl<'a> Chart<'a> {
 
     fn piece(&self, canvas: &mut Canvas, piece: &Piece, at: (f64, f64), width: f64) {
         let (x, y) = at;
-        let (fill, ink, quiet) = match (piece.is_moved, piece.run) {
-            (true, _) => (Colour::Accent, Colour::Paper, Colour::Paper),
-            (false, Some(_)) => (Colour::Band, Colour::Ink, Colour::Quiet),
-            (false, None) => (Colour::Faint, Colour::Ink, Colour::Quiet),
-        };
+        let (fill, ink, quiet) =
+            if piece.is_moved { (Colour::Accent, Colour::Paper, Colour::Paper) } else { (Colour::Band, Colour::Ink, Colour::Quiet) };
         canvas.rect(x, y, ((width - JOINT).max(0.3), BAR), 0.0, fill);
         if self.has_room(canvas, piece) {
             let (base, end) = (y + BAR / 2.0 + RISE, x + MARGIN + self.room(piece));

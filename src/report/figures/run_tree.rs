@@ -244,7 +244,9 @@ impl<'a> Chart<'a> {
         }
         branches::trunks(canvas, twigs, &middles, start..finish, HEAD);
         for i in page.clone() {
-            self.stroke(canvas, twigs, i, middles[i] - start + HEAD);
+            let y = middles[i] - start + HEAD;
+            self.shade(canvas, &twigs[i], y);
+            self.stroke(canvas, twigs, i, y);
         }
         for i in page.clone() {
             self.row(canvas, &twigs[i], middles[i] - start + HEAD);
@@ -256,6 +258,14 @@ impl<'a> Chart<'a> {
         Colour::Signal(self.scene.leading_signal())
     }
 
+    /// The rows the readings point at lie on a shaded ground, so that they are found in grey too.
+    fn shade(&self, canvas: &mut Canvas, twig: &Twig, y: f64) {
+        if self.is_leading[twig.run] {
+            let left = twig.x() + 5.0;
+            canvas.rect(left, y - ROW / 2.0 + 1.0, (self.scene.width - left, ROW - 2.0), 2.0, Colour::Band);
+        }
+    }
+
     /// A suspect's own stroke, over the thin line of the tree: as heavy as it is likely.
     fn stroke(&self, canvas: &mut Canvas, twigs: &[Twig], i: usize, y: f64) {
         let twig = &twigs[i];
@@ -264,10 +274,12 @@ impl<'a> Chart<'a> {
             return;
         }
         let x = twig.x();
-        let from = twig.parent.filter(|_| !twig.is_apart).and_then(|p| twigs.get(p)).map(Twig::x);
+        let from = twig.parent.and_then(|p| twigs.get(p)).map(Twig::x);
         let path = match from {
+            Some(_) if twig.is_apart => vec![(x - branches::STEP, y), (x, y)],
             Some(from) if from < x => vec![(from, y - ROW / 2.0), (from, y), (x, y)],
-            _ => vec![(x, y - ROW + 4.0), (x, y)],
+            Some(_) => vec![(x, y - ROW + 4.0), (x, y)],
+            None => vec![(x, y - ROW / 2.0), (x, y)],
         };
         let colour = if self.is_leading[twig.run] { self.signal() } else { Colour::Quiet };
         canvas.rounded(&path, THIN + HEAVY * probability.min(1.0), colour);
@@ -280,9 +292,9 @@ impl<'a> Chart<'a> {
         node(canvas, (twig.x(), y), run, is_leading.then_some(colour));
         let base = y + RISE;
         let mut end = canvas.run(twig.x() + 8.0, base, &run.name.value, Style { colour, ..Style::NAME }, self.labels);
-        let serves = self.serves(twig, run);
-        if !serves.is_empty() {
-            end = canvas.run(end + 6.0, base, &serves, Style::QUIET, self.labels);
+        let said = self.said(twig, run);
+        if !said.is_empty() {
+            end = canvas.run(end + 6.0, base, &said, Style::QUIET, self.labels);
         }
         let entries: Vec<(&Column, String)> = self.columns.iter().map(|c| (c, self.entry(c.shows, twig.run))).collect();
         for (column, entry) in entries.iter().rev().filter(|(_, e)| !e.is_empty()) {
@@ -306,15 +318,10 @@ impl<'a> Chart<'a> {
         }
     }
 
-    /// What the run serves; of a run that hangs on no line, where it is fed from.
-    fn serves(&self, twig: &Twig, run: &Run) -> String {
-        match (&run.serves, &run.fed_from) {
-            (_, Some(source)) if twig.is_apart || twig.parent.is_none() => {
-                self.scene.say(&Sentence::new("figure.from").with("run", clean(&source.value)))
-            }
-            (Some(serves), _) => serves.value.clone(),
-            _ => String::new(),
-        }
+    /// Where the run is fed from, if no line shows it, and what it serves.
+    fn said(&self, twig: &Twig, run: &Run) -> String {
+        let serves = run.serves.as_ref().map(|s| clean(&s.value));
+        self.scene.source_of(twig).into_iter().chain(serves).collect::<Vec<_>>().join(" · ")
     }
 }
 

@@ -131,18 +131,20 @@ fn arrange<'a>(scene: &Scene<'a>, rows: &[&'a ReadingRow], legs: [Leg; 2]) -> (V
             is_first,
             twig: row.run.and(twig),
             has_note: is_first && row.run.is_some() && row.run.as_ref() == noted,
-            said: said(scene, row, is_first, is_only),
+            said: said(scene, row, twig.filter(|_| is_first && row.run.is_some()).and_then(|t| twigs.get(t)), is_only),
         });
     }
     (sets, twigs)
 }
 
-/// What stands behind the name: what the run serves, once; when the readings were taken, where that is not plain.
-fn said(scene: &Scene, row: &ReadingRow, is_first: bool, is_only: bool) -> String {
-    let run = row.run.and_then(|r| scene.source.visit.runs.get(r)).filter(|_| is_first);
+/// What stands behind the name: where the run is fed from, if no line shows it, and what it serves, once; when the readings were
+/// taken, where that is not plain.
+fn said(scene: &Scene, row: &ReadingRow, twig: Option<&Twig>, is_only: bool) -> String {
+    let source = twig.and_then(|t| scene.source_of(t));
+    let run = twig.and_then(|t| scene.source.visit.runs.get(t.run));
     let serves = run.and_then(|r| r.serves.as_ref()).map(|s| clean(&s.value));
     let is_plain = is_only && Kind::of(row) == Kind::default();
-    let parts: Vec<String> = serves.into_iter().chain((!is_plain).then(|| taken(row))).collect();
+    let parts: Vec<String> = source.into_iter().chain(serves).chain((!is_plain).then(|| taken(row))).collect();
     parts.join(" · ")
 }
 

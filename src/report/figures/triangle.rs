@@ -60,6 +60,9 @@ pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
     });
     let alt = alternative(scene, &judgements, &all, farthest);
     let mut caption = scene.say(&Sentence::new("figure.triangle"));
+    if !grid.has_third {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.triangle-two")));
+    }
     if rows.len() < all.len() {
         let left_out = Sentence::new("figure.position-left-out").with("n", rows.len()).with("of", all.len());
         caption = format!("{caption} {}", scene.say(&left_out));
