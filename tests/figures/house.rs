@@ -32,6 +32,7 @@ pub struct House {
     pub visit: Visit,
     pub diagnosis: Option<Diagnosis>,
     pub exposure: Vec<Exposure>,
+    pub width: f64,
 }
 
 pub fn leg(name: &str) -> Leg {
@@ -62,7 +63,7 @@ impl House {
             work: Vec::new(),
             revisions: Vec::new(),
         };
-        Self { visit, diagnosis: None, exposure: Vec::new() }
+        Self { visit, diagnosis: None, exposure: Vec::new(), width: WIDTH }
     }
 
     /// A run; `from` is empty for the utility.
@@ -191,7 +192,7 @@ impl House {
             exposure: &self.exposure,
             rules: &[],
         };
-        figures::build(&source, &Language::english(), measure, WIDTH)
+        figures::build(&source, &Language::english(), measure, self.width)
     }
 
     /// The figures of one name.

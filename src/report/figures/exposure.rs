@@ -33,6 +33,12 @@ pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
     let heights: Vec<f64> = shown.iter().map(|e| height(e)).collect();
     let pages = pages(&heights, MOST_HEIGHT - HEAD - FOOT);
     let mut caption = scene.say(&Sentence::new("figure.exposure"));
+    if chart.band.is_some() {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.exposure-shaded")));
+    }
+    if shown.iter().flat_map(|e| &e.legs).any(|l| l.low.is_some()) {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.exposure-range")));
+    }
     if shown.len() < all.len() {
         let left_out = Sentence::new("figure.exposure-left-out").with("n", shown.len()).with("of", all.len());
         caption = format!("{caption} {}", scene.say(&left_out));

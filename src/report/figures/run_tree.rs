@@ -29,6 +29,8 @@ const COLUMN_GAP: f64 = 13.0;
 /// Widest column.
 const WIDEST: f64 = 64.0;
 const LEAST_LEADER: f64 = 24.0;
+/// Of the width, what the tree and its labels have at least.
+const LEAST_LABELS: f64 = 0.3;
 
 pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
     let visit = scene.source.visit;
@@ -144,8 +146,8 @@ fn has_volts(scene: &Scene, row: &ReadingRow) -> bool {
     scene.source.visit.system.legs().iter().any(|l| row.value(Quantity::line_neutral(*l)).is_some())
 }
 
-/// What a column shows of a run.
-#[derive(Clone, Copy)]
+/// What a column shows of a run, in the order of the columns.
+#[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
 enum Shows {
     Probability,
     Wire,
@@ -189,21 +191,30 @@ impl<'a> Chart<'a> {
         chart
     }
 
-    /// Places the columns that have something to show, from the right.
+    /// Places the columns that have something to show, from the right. Where the width is scarce those about how a run is built
+    /// give way first.
     fn place_columns(&mut self, shown: &[usize]) {
         let canvas = Canvas::new(self.scene.measure);
-        let volts = self.scene.source.visit.system.legs().iter().map(|l| Shows::Volts(*l));
-        let all: Vec<Shows> = [Shows::Probability, Shows::Wire, Shows::Length, Shows::Breaker].into_iter().chain(volts).collect();
-        let mut end = self.scene.width;
-        for shows in all.into_iter().rev() {
-            let entries = shown.iter().map(|run| canvas.width_of(&self.entry(shows, *run), Style::PLAIN.loud(Colour::Ink)));
-            let widest = entries.fold(0.0, f64::max);
-            if widest > 0.0 {
-                let head = self.head_of(shows);
-                let width = widest.max(canvas.width_of(&head, Style::QUIET)).min(WIDEST);
-                self.columns.push(Column { shows, head, start: end - width, end });
-                end -= width + COLUMN_GAP;
+        let width = |shows: Shows| {
+            let widest =
+                shown.iter().map(|run| canvas.width_of(&self.entry(shows, *run), Style::PLAIN.loud(Colour::Ink))).fold(0.0, f64::max);
+            if widest > 0.0 { widest.max(canvas.width_of(&self.head_of(shows), Style::QUIET)).min(WIDEST) + COLUMN_GAP } else { 0.0 }
+        };
+        let volts: Vec<Shows> = self.scene.source.visit.system.legs().iter().map(|l| Shows::Volts(*l)).collect();
+        let by_worth = [Shows::Probability].into_iter().chain(volts.iter().copied()).chain([Shows::Wire, Shows::Breaker, Shows::Length]);
+        let mut left = (1.0 - LEAST_LABELS) * self.scene.width;
+        let mut kept: Vec<(Shows, f64)> = Vec::new();
+        for (shows, width) in by_worth.map(|s| (s, width(s))).filter(|(_, w)| *w > 0.0) {
+            if width <= left {
+                left -= width;
+                kept.push((shows, width));
             }
+        }
+        kept.sort_by_key(|(shows, _)| *shows);
+        let mut end = self.scene.width;
+        for (shows, width) in kept.into_iter().rev() {
+            self.columns.push(Column { shows, head: self.head_of(shows), start: end - width + COLUMN_GAP, end });
+            end -= width;
         }
         self.labels = end;
     }

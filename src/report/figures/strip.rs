@@ -72,6 +72,9 @@ pub(super) fn figures(scene: &Scene, first: Leg, second: Leg) -> Vec<Figure> {
     let pages = pages(&heights, MOST_HEIGHT - HEAD - FOOT);
     let alt = alternative(scene, &judgements, &all, farthest(scene, &rows, legs));
     let mut caption = scene.say(&Sentence::new("figure.position").with("first", first.name()).with("second", second.name()));
+    if !judgements.is_empty() {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.position-shaded")));
+    }
     if rows.len() < all.len() {
         let left_out = Sentence::new("figure.position-left-out").with("n", rows.len()).with("of", all.len());
         caption = format!("{caption} {}", scene.say(&left_out));

@@ -60,6 +60,9 @@ pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
     });
     let alt = alternative(scene, &judgements, &all, farthest);
     let mut caption = scene.say(&Sentence::new("figure.triangle"));
+    if !judgements.is_empty() {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.triangle-circle")));
+    }
     if !grid.has_third {
         caption = format!("{caption} {}", scene.say(&Sentence::new("figure.triangle-two")));
     }
