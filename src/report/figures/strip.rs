@@ -108,7 +108,7 @@ fn farthest(scene: &Scene, rows: &[&ReadingRow], legs: [Leg; 2]) -> Option<Sente
             .with("second", legs[1].name())
             .with("a", scene.language.quantity(volts[0], 1, Unit::Volt))
             .with("b", scene.language.quantity(volts[1], 1, Unit::Volt))
-            .number("percent", 100.0 * position(volts), 0, Unit::Percent),
+            .number("percent", 100.0 * position(volts), 1, Unit::Percent),
     )
 }
 
