@@ -58,7 +58,7 @@ fn can_be_drawn(exposure: &Exposure) -> bool {
 }
 
 /// The least and the most volts of a leg; twice the same where there is one solution.
-pub(super) fn ends(leg: &ExposedLeg) -> [f64; 2] {
+fn ends(leg: &ExposedLeg) -> [f64; 2] {
     [leg.low.unwrap_or(leg.volts).0, leg.volts.0]
 }
 

@@ -38,18 +38,18 @@ pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
 
 /// One piece of a bar: a circuit, or several too small to be drawn apart.
 #[derive(Clone, Debug, PartialEq)]
-pub(super) struct Piece {
+struct Piece {
     /// The circuit; `None` for others together.
-    pub run: Option<usize>,
-    pub va: f64,
+    run: Option<usize>,
+    va: f64,
     /// Circuits in it.
-    pub count: usize,
-    pub is_moved: bool,
+    count: usize,
+    is_moved: bool,
 }
 
 /// A leg's circuits as pieces: the greatest first, then those too small for `has_room` together, and last those that move, so that
 /// the bars before and after differ at their end.
-pub(super) fn pieces(leg: &LegLoad, moves: &[Move], has_room: impl Fn(&Piece) -> bool) -> Vec<Piece> {
+fn pieces(leg: &LegLoad, moves: &[Move], has_room: impl Fn(&Piece) -> bool) -> Vec<Piece> {
     let is_moved = |run: usize| moves.iter().any(|m| m.run == run);
     let piece = |&(run, va): &(usize, VoltAmperes)| Piece { run: Some(run), va: va.0, count: 1, is_moved: is_moved(run) };
     let (moved, mut rest): (Vec<Piece>, Vec<Piece>) = leg.circuits.iter().filter(|c| c.1.0 > 0.0).map(piece).partition(|p| p.is_moved);

@@ -44,13 +44,13 @@ struct Set<'a> {
 }
 
 /// Where the neutral sits: the first leg's share of the sum of both.
-pub(super) fn position([first, second]: [f64; 2]) -> f64 {
+fn position([first, second]: [f64; 2]) -> f64 {
     first / (first + second)
 }
 
 /// Expanded uncertainty of the position. One instrument's gain error raises both readings alike and cancels; the counts are
 /// independent (JCGM 100, 5.1.2).
-pub(super) fn position_uncertainty([first, second]: [f64; 2], counts: f64) -> f64 {
+fn position_uncertainty([first, second]: [f64; 2], counts: f64) -> f64 {
     let sum = first + second;
     2.0 * counts * (math::hypot(first, second) / sum) / sum
 }

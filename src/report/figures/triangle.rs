@@ -25,15 +25,15 @@ type Point = (f64, f64);
 
 /// The lines and the neutral as points in volts: L1 and L2 (on a high-leg delta L1 and L3) on the level, the third above.
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) struct Place {
-    pub corners: [Point; 3],
-    pub neutral: Point,
+struct Place {
+    corners: [Point; 3],
+    neutral: Point,
     /// Where it belongs in this triangle.
-    pub nominal: Point,
+    nominal: Point,
 }
 
 impl Place {
-    pub fn shift(&self) -> f64 {
+    fn shift(&self) -> f64 {
         math::hypot(self.neutral.0 - self.nominal.0, self.neutral.1 - self.nominal.1)
     }
 }
@@ -93,7 +93,7 @@ fn between(a: Leg, b: Leg) -> Quantity {
 }
 
 /// Places lines and neutral by the readings; `None` where they were not all read or form no triangle.
-pub(super) fn place(scene: &Scene, row: &ReadingRow) -> Option<Place> {
+fn place(scene: &Scene, row: &ReadingRow) -> Option<Place> {
     let arrangement = scene.source.visit.system.arrangement;
     let [a, b, c] = order(arrangement);
     let to_neutral = |leg| volts(row, Quantity::line_neutral(leg));
