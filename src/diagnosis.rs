@@ -1,0 +1,103 @@
+//! Which cause explains the readings, and what they leave open.
+//!
+//! The circuit list makes a network (see [`crate::network`]); what the list leaves uncertain, the supply and the meters are its
+//! unknowns, each with a prior. Every cause that can be named, nothing wrong among them, is fitted to all readings at once and
+//! weighed by its evidence, so that a cause must explain every reading and pays for every liberty it takes. docs/diagnosis.md has
+//! the method, its parameters with their reasons, and measured figures.
+//!
+//! Bounds on any input: readings, spans and the work of the fits are capped (see [`settings`]); what was given up is reported as
+//! not ruled out, never as sound.
+
+mod cholesky;
+mod evidence;
+mod fit;
+mod hypotheses;
+mod interval;
+mod model;
+mod next_reading;
+mod observation;
+mod parameter;
+mod reduce;
+mod repair;
+mod scan;
+mod settings;
+mod site;
+
+pub use settings::DiagnosisSettings;
+
+use crate::network;
+use crate::quantity::Ohms;
+use crate::results::{Cause, Diagnosis, NeutralInterval};
+use crate::visit::{Stage, Visit};
+use evidence::{Weighed, rank};
+use hypotheses::evaluate;
+use interval::Ends;
+use site::Site;
+
+/// Diagnoses a visit: the readings as found, and where there are readings as left, what they show of the repair. Where there are
+/// none as found those as left are diagnosed.
+///
+/// `None` where there is nothing to fit: no circuit list that makes a network, or fewer than two readings on it.
+#[must_use]
+pub fn diagnose(visit: &Visit, settings: &DiagnosisSettings) -> Option<Diagnosis> {
+    let (stage, found) = match examine(visit, Stage::AsFound, settings, None) {
+        Some(found) => (Stage::AsFound, found),
+        None => (Stage::AsLeft, examine(visit, Stage::AsLeft, settings, None)?),
+    };
+    let repair = found.ranking.first().filter(|_| stage == Stage::AsFound).and_then(|cause| {
+        let left = examine(visit, Stage::AsLeft, settings, Some(cause))?;
+        repair::evidence(visit, cause, &left)
+    });
+    let ends: Vec<(usize, Ends)> = found.neutral.iter().map(|n| (n.run, (n.low.0, n.high.map(|h| h.0)))).collect();
+    let next = next_reading::propose(visit, settings, &found.ranking, &ends);
+    Some(Diagnosis { ranking: found.ranking, neutral: found.neutral, next, load_steps: network::load_steps(visit), repair })
+}
+
+/// What one stage's readings say.
+struct Examined {
+    ranking: Vec<Cause>,
+    neutral: Vec<NeutralInterval>,
+    /// Interval of the resistance that was asked about.
+    asked: Option<Ends>,
+}
+
+/// Examines one stage; `about` is a cause whose resistance is to be bounded whatever the readings say.
+fn examine(visit: &Visit, stage: Stage, settings: &DiagnosisSettings, about: Option<&Cause>) -> Option<Examined> {
+    let sites: Vec<(f64, Site)> =
+        settings::TRUST.iter().map(|t| Some((t.prior, Site::new(visit, stage, settings, t)?))).collect::<Option<_>>()?;
+    let mut levels = evaluate(&sites)?;
+    let mut ranked = rank(visit, &levels);
+    for weighed in &mut ranked {
+        weighed.cause.ohms = interval::of_cause(&levels, weighed);
+    }
+    let mut bounds = interval::Bounds::new(&mut levels, &ranked)?;
+    let ends = bounds.neutrals();
+    let asked = about.and_then(|cause| bounds.of(cause));
+    let site = &sites.first()?.1;
+    Some(Examined { neutral: neutral_intervals(visit, site, &ends), ranking: listed(ranked), asked })
+}
+
+/// Causes below this probability are left out of the ranking, and what they had is shared out.
+const LISTED: f64 = 1e-4;
+
+fn listed(ranked: Vec<Weighed>) -> Vec<Cause> {
+    let mut causes: Vec<Cause> = ranked.into_iter().map(|w| w.cause).filter(|c| c.probability >= LISTED).collect();
+    let total: f64 = causes.iter().map(|c| c.probability).sum();
+    causes.iter_mut().for_each(|c| c.probability /= total);
+    causes
+}
+
+/// Intervals run by run. Runs no reading speaks of are not bounded; their neutral's current is what the circuit list makes it.
+fn neutral_intervals(visit: &Visit, site: &Site, ends: &[Option<(Ends, f64)>]) -> Vec<NeutralInterval> {
+    let mut span_of = vec![None; visit.runs.len()];
+    for (span, runs) in site.reduced.runs.iter().enumerate() {
+        runs.iter().for_each(|r| span_of[*r] = Some(span));
+    }
+    let of_run = |&run: &usize| {
+        visit.runs[run].has_neutral().then_some(())?;
+        let known = span_of[run].and_then(|s| ends.get(s).copied().flatten());
+        let ((low, high), amperes) = known.unwrap_or_else(|| ((0.0, None), site.listed_neutral_amperes(run)));
+        Some(NeutralInterval { run, low: Ohms(low), high: high.map(Ohms), amperes })
+    };
+    visit.tree.order.iter().filter_map(of_run).collect()
+}

@@ -1,0 +1,241 @@
+//! Evidence along added ohms, from none to open.
+//!
+//! From a fit the curve is continued value by value in both directions, each fit beginning where the last ended. So it follows
+//! the readings round mirror images (a neutral's volts are read without their sign) and out of local minima. A direction is left
+//! when the evidence has fallen far below its best.
+
+use super::fit::{Fit, fit, fit_above};
+use super::model::{Added, Model, OPEN, Task, added_prior};
+use super::settings::ADDED;
+use crate::quantity::math;
+
+/// Steps of the grid, each doubling the last value.
+const STEPS: usize = 9;
+/// Fall of ln evidence below the curve's best at which a direction is left.
+const FALLEN: f64 = 4.0;
+/// ln of the likelihood ratio that bounds a 95 % interval: half the 95 % point of χ² with one degree of freedom.
+pub(super) const INTERVAL: f64 = 1.92;
+/// Mean square residual (with the unknowns' own) below which the readings are explained.
+pub(super) const EXPLAINS: f64 = 2.0;
+/// Iterations of a continued fit.
+const NEAR: usize = 4;
+/// Iterations of a fit from afar.
+const SEARCH: usize = 15;
+
+/// One value along the curve.
+#[derive(Clone, Debug)]
+pub(super) struct Node {
+    /// Added ohms; [`OPEN`] for open.
+    pub ohms: f64,
+    /// The fit there.
+    pub fit: Fit,
+}
+
+/// The evidence along added ohms of one conductor.
+#[derive(Clone, Debug, Default)]
+pub(super) struct Curve {
+    /// By rising ohms, open last. Values given up are missing.
+    pub nodes: Vec<Node>,
+}
+
+/// What is scanned.
+#[derive(Clone, Debug)]
+pub(super) struct Scan<'t> {
+    /// What the hypothesis changes besides.
+    pub base: &'t Task,
+    /// Span and slot of the conductor.
+    pub at: (usize, usize),
+}
+
+impl Scan<'_> {
+    /// Added ohms of a value as a task.
+    pub fn task(&self, ohms: f64) -> Task {
+        self.base.with(Added { span: self.at.0, slot: self.at.1, ohms: Some(ohms) })
+    }
+
+    /// Follows the curve up from the fit without added ohms, until it has fallen.
+    pub fn from_none(&self, model: &mut Model, from: &Fit) -> Curve {
+        let mut curve = Curve::default();
+        self.follow(model, &mut curve, from, true, from.evidence);
+        curve
+    }
+
+    /// The most probable added ohms, looked for from several starts until the readings are explained; the fit with them held there.
+    /// Fits that can't come within reach of an evidence are given up.
+    pub fn search(&self, model: &mut Model, starts: &[&[f64]], least: f64) -> Option<(f64, Fit)> {
+        let explained = EXPLAINS * model.residuals.len() as f64;
+        let mut best: Option<(f64, Fit)> = None;
+        for (start, ohms) in starts.iter().flat_map(|s| [(s, 2.0), (s, OPEN), (s, 16.0)]) {
+            model.restart();
+            let found = if ohms >= OPEN {
+                fit_above(model, &self.task(OPEN), start, SEARCH, least).map(|fit| (OPEN, fit))
+            } else {
+                self.free(model, start, ohms, least)
+            };
+            let Some(found) = found else { continue };
+            if best.as_ref().is_none_or(|b| found.1.evidence > b.1.evidence) {
+                best = Some(found);
+            }
+            if best.as_ref().is_some_and(|b| b.1.cost < explained) {
+                break;
+            }
+        }
+        best
+    }
+
+    /// Follows the curve both ways from its peak.
+    pub fn about_peak(&self, model: &mut Model, start: &[f64], ohms: f64) -> Curve {
+        let mut curve = Curve::default();
+        model.restart();
+        let found = if ohms >= OPEN { None } else { self.free(model, start, ohms, f64::NEG_INFINITY) };
+        let Some((ohms, at)) = found.or_else(|| Some((ohms, fit(model, &self.task(ohms), start, SEARCH)?))) else { return curve };
+        curve.put(ohms, at.clone());
+        self.follow_from(model, &mut curve, ohms, &at);
+        self.refine(model, &mut curve);
+        curve
+    }
+
+    /// The most probable added ohms from a start, and the fit with them held there.
+    fn free(&self, model: &mut Model, start: &[f64], ohms: f64, least: f64) -> Option<(f64, Fit)> {
+        let task = self.base.with(Added { span: self.at.0, slot: self.at.1, ohms: None });
+        let (mean, spread) = added_prior();
+        let mut z = start.to_vec();
+        z.push((math::ln(ohms) - mean) / spread);
+        let found = fit_above(model, &task, &z, SEARCH, least)?;
+        let ohms = math::exp(mean + spread * found.z.last()?).clamp(ADDED.0, ADDED.1);
+        let held = fit(model, &self.task(ohms), &found.z[..start.len()], NEAR)?;
+        Some((ohms, held))
+    }
+
+    fn follow_from(&self, model: &mut Model, curve: &mut Curve, ohms: f64, at: &Fit) {
+        let best = curve.height();
+        let above: Vec<f64> = grid().filter(|g| *g > ohms * 1.001).chain([OPEN]).collect();
+        let below: Vec<f64> = grid().rev().filter(|g| *g < ohms * 0.999).collect();
+        for side in [above, below] {
+            let mut from = at.clone();
+            let mut best = best;
+            for value in side {
+                let Some(fit) = fit(model, &self.task(value), &from.z, NEAR) else { break };
+                from = fit.clone();
+                curve.put(value, fit);
+                best = best.max(from.evidence);
+                if from.evidence < best - FALLEN {
+                    break;
+                }
+            }
+        }
+    }
+
+    fn follow(&self, model: &mut Model, curve: &mut Curve, from: &Fit, _up: bool, best: f64) {
+        let mut from = from.clone();
+        let mut best = best;
+        for value in grid().chain([OPEN]) {
+            let Some(fit) = fit(model, &self.task(value), &from.z, NEAR) else { break };
+            from = fit.clone();
+            curve.put(value, fit);
+            best = best.max(from.evidence);
+            if from.evidence < best - FALLEN {
+                break;
+            }
+        }
+    }
+
+    /// Adds values about the peak, where the curve is narrower than the grid.
+    fn refine(&self, model: &mut Model, curve: &mut Curve) {
+        for _ in 0..8 {
+            let Some(peak) = curve.peak() else { return };
+            if curve.nodes[peak].ohms >= OPEN {
+                return;
+            }
+            let height = curve.nodes[peak].fit.evidence;
+            let neighbours = [peak.checked_sub(1), (peak + 1 < curve.nodes.len()).then_some(peak + 1)];
+            let steepest = neighbours
+                .into_iter()
+                .flatten()
+                .filter(|&k| curve.nodes[k].ohms < OPEN && height - curve.nodes[k].fit.evidence > 1.0)
+                .map(|k| math::ln(curve.nodes[k].ohms / curve.nodes[peak].ohms))
+                .filter(|gap| gap.abs() > 0.02)
+                .max_by(|a, b| a.abs().total_cmp(&b.abs()));
+            let Some(gap) = steepest else { return };
+            let ohms = curve.nodes[peak].ohms * math::exp(gap / 2.0);
+            let start = curve.nodes[peak].fit.z.clone();
+            match fit(model, &self.task(ohms), &start, NEAR) {
+                Some(fit) => curve.put(ohms, fit),
+                None => return,
+            };
+        }
+    }
+}
+
+/// The values, doubling.
+fn grid() -> impl DoubleEndedIterator<Item = f64> {
+    (0..=STEPS).map(|k| ADDED.0 * math::exp(math::ln(ADDED.1 / ADDED.0) * k as f64 / STEPS as f64))
+}
+
+impl Curve {
+    /// Puts in a value, or improves it; whether it was better than what stood there.
+    fn put(&mut self, ohms: f64, fit: Fit) -> bool {
+        let at = self.nodes.partition_point(|n| n.ohms < ohms * (1.0 - 1e-9));
+        match self.nodes.get_mut(at).filter(|n| n.ohms <= ohms * (1.0 + 1e-9)) {
+            Some(node) if node.fit.evidence >= fit.evidence => false,
+            Some(node) => {
+                node.fit = fit;
+                true
+            }
+            None => {
+                self.nodes.insert(at, Node { ohms, fit });
+                true
+            }
+        }
+    }
+
+    /// The most probable value.
+    pub fn peak(&self) -> Option<usize> {
+        (0..self.nodes.len()).max_by(|&a, &b| self.nodes[a].fit.evidence.total_cmp(&self.nodes[b].fit.evidence))
+    }
+
+    /// ln evidence at a value: straight between the nodes over the logarithm of the ohms, nothing outside them.
+    pub fn at(&self, ohms: f64) -> f64 {
+        let above = self.nodes.partition_point(|n| n.ohms < ohms * (1.0 - 1e-9));
+        match (above.checked_sub(1).and_then(|k| self.nodes.get(k)), self.nodes.get(above)) {
+            (_, Some(n)) if n.ohms <= ohms * (1.0 + 1e-9) => n.fit.evidence,
+            (Some(a), Some(b)) if b.ohms < OPEN => {
+                let share = math::ln(ohms / a.ohms) / math::ln(b.ohms / a.ohms);
+                a.fit.evidence + share * (b.fit.evidence - a.fit.evidence)
+            }
+            _ => f64::NEG_INFINITY,
+        }
+    }
+
+    /// Best ln evidence.
+    pub fn height(&self) -> f64 {
+        self.peak().map_or(f64::NEG_INFINITY, |p| self.nodes[p].fit.evidence)
+    }
+
+    /// ln of the evidence averaged over the prior of the added ohms: log-uniform, and a share for open.
+    pub fn average(&self, open: f64) -> f64 {
+        let range = math::ln(ADDED.1 / ADDED.0);
+        let mut parts = Vec::with_capacity(self.nodes.len());
+        for pair in self.nodes.windows(2).filter(|p| p[1].ohms < OPEN) {
+            let (a, b) = (pair[0].fit.evidence, pair[1].fit.evidence);
+            let width = math::ln(pair[1].ohms / pair[0].ohms);
+            parts.push(mean_exponential(a, b) + math::ln(width / range * (1.0 - open)));
+        }
+        if let Some(node) = self.nodes.last().filter(|n| n.ohms >= OPEN) {
+            parts.push(node.fit.evidence + math::ln(open));
+        }
+        log_sum(&parts)
+    }
+}
+
+/// ln of the mean of eˣ over x running straight from a to b.
+fn mean_exponential(a: f64, b: f64) -> f64 {
+    let (high, fall) = (a.max(b), (a - b).abs());
+    if fall < 1e-6 { high } else { high + math::ln((1.0 - math::exp(-fall)) / fall) }
+}
+
+/// ln Σ eˣ.
+pub(super) fn log_sum(x: &[f64]) -> f64 {
+    let high = x.iter().copied().fold(f64::NEG_INFINITY, f64::max);
+    if high == f64::NEG_INFINITY { high } else { high + math::ln(x.iter().map(|x| math::exp(x - high)).sum()) }
+}
