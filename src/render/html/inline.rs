@@ -20,19 +20,14 @@ pub(super) fn write(page: &mut Markup, text: &[Inline]) {
 
 /// Text in which the names of quantities (`L1-N`, `N-G`) are kept on one line.
 pub(super) fn words(page: &mut Markup, text: &str) {
-    let mut plain = 0;
-    for (at, word) in text.match_indices(' ').map(|(at, _)| at).chain([text.len()]).scan(0, |begin, end| {
-        let word = (*begin, &text[*begin..end]);
-        *begin = end + 1;
-        Some(word)
-    }) {
+    for (n, word) in text.split(' ').enumerate() {
+        page.text(if n > 0 { " " } else { "" });
         if is_quantity(word) {
-            page.text(&text[plain..at]);
             page.element("span", &[("class", "whole")], |page| page.text(word));
-            plain = at + word.len();
+        } else {
+            page.text(word);
         }
     }
-    page.text(&text[plain..]);
 }
 
 /// Two short names joined by a hyphen, with or without a mark behind them.
