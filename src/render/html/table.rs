@@ -11,6 +11,8 @@ const WIDE: usize = 8;
 /// The longest name that is kept on one line.
 const LONGEST_NAME: usize = 34;
 
+/// The longest text of a column whose cells are kept on one line.
+const LONGEST_WORD: usize = 10;
 /// The longest text of a column that needs no room of its own.
 const LONGEST_SHORT: usize = 18;
 
@@ -43,8 +45,8 @@ struct Shape<'a> {
     first: bool,
     /// Most decimals of its numbers.
     decimals: u8,
-    /// Whether its texts are short enough to need no room of their own.
-    short: bool,
+    /// Characters of its longest text.
+    longest: usize,
     /// Whether any of its numbers has an uncertainty, which then stands in a column of its own.
     uncertain: bool,
 }
@@ -58,13 +60,14 @@ impl<'a> Shape<'a> {
             })
         };
         let decimals = numbers().map(|n| n.decimals).max().unwrap_or(0);
-        let long = |cell: &Cell| match cell {
-            Cell::Text(text) => text.chars().count() > LONGEST_SHORT,
-            Cell::Rich(_) => true,
-            _ => false,
+        let length = |cell: &Cell| match cell {
+            Cell::Text(text) => text.chars().count(),
+            Cell::Rich(_) => usize::MAX,
+            _ => 0,
         };
-        let short = !table.rows.iter().filter(|row| !row.group).filter_map(|row| row.cells.get(index)).any(long);
-        Self { column, first: index == 0, decimals, short, uncertain: numbers().any(|n| n.uncertainty.is_some()) }
+        let cells = table.rows.iter().filter(|row| !row.group).filter_map(|row| row.cells.get(index));
+        let longest = cells.map(length).max().unwrap_or(0);
+        Self { column, first: index == 0, decimals, longest, uncertain: numbers().any(|n| n.uncertainty.is_some()) }
     }
 
     fn span(&self) -> usize {
@@ -74,7 +77,8 @@ impl<'a> Shape<'a> {
     fn class(&self) -> &'static str {
         match self.column.kind {
             ColumnKind::Name => "name",
-            ColumnKind::Text if self.short => "short",
+            ColumnKind::Text if self.longest <= LONGEST_WORD => "name",
+            ColumnKind::Text if self.longest <= LONGEST_SHORT => "short",
             ColumnKind::Text => "text",
             ColumnKind::Number => "number",
             ColumnKind::Signal | ColumnKind::Verdict => "word",
