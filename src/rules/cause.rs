@@ -11,7 +11,7 @@ use crate::wording::{Arg, Sentence};
 /// From this probability on a cause is taken as shown.
 pub(super) const SURE: Setting = Setting::new("sure-percent", 80.0, Unit::Percent, (0.0, 100.0));
 /// From this probability on a cause that is not the most probable one is said nevertheless.
-pub(super) const WORTH: Setting = Setting::new("worth-percent", 20.0, Unit::Percent, (0.0, 100.0));
+pub(super) const WORTH: Setting = Setting::new("worth-percent", 30.0, Unit::Percent, (0.0, 100.0));
 
 /// Cells of readings listed with a finding, at most.
 const MOST_CELLS: usize = 24;
