@@ -55,6 +55,13 @@ fn the_leading_set_stands_out_by_colour_weight_and_shape() {
 }
 
 #[test]
+fn no_probability_is_shown_as_certainty() {
+    let figure =
+        chain(&["A", "B"]).cause(CauseKind::Neutral, &["B"], 0.999_999).cause(CauseKind::None, &[], 1e-6).figure("run-tree").remove(0);
+    assert!(figure.caption.contains("neutral of B, over 99.9 % probable"), "{}", figure.caption);
+}
+
+#[test]
 fn without_a_diagnosis_or_a_fault_all_runs_are_thin() {
     assert!(strokes(&chain(&["A", "B"]).figure("run-tree")[0].drawing).is_empty());
     let none = chain(&["A", "B"]).cause(CauseKind::None, &[], 1.0).figure("run-tree").remove(0);
