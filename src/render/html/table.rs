@@ -18,6 +18,8 @@ const LONGEST_SHORT: usize = 18;
 
 /// Writes a table; one without rows says so.
 pub(super) fn write(page: &mut Markup, table: &Table, decimal_mark: char) {
+    // A document without a language has no decimal mark.
+    let decimal_mark = if decimal_mark == '\0' { '.' } else { decimal_mark };
     if table.rows.is_empty() || table.columns.is_empty() {
         return page.element("div", &[("class", "table empty")], |page| {
             page.element("p", &[("class", "caption")], |page| page.text(&table.caption));
