@@ -34,14 +34,15 @@ pub(super) struct Level<'a> {
 /// Groups the hypotheses of all levels into causes and ranks them.
 pub(super) fn rank(visit: &Visit, levels: &[Level]) -> Vec<Weighed> {
     let mut groups: Vec<(CauseKind, Option<usize>, Vec<(usize, usize)>, Vec<f64>)> = Vec::new();
-    let mut add = |kind: CauseKind, class: Option<usize>, member: (usize, usize), weight: f64| {
-        match groups.iter_mut().find(|g| g.0 == kind && g.1 == class) {
-            Some(group) => {
-                group.2.push(member);
-                group.3.push(weight);
-            }
-            None => groups.push((kind, class, vec![member], vec![weight])),
+    let mut add = |kind: CauseKind, class: Option<usize>, member: (usize, usize), weight: f64| match groups
+        .iter_mut()
+        .find(|g| g.0 == kind && g.1 == class)
+    {
+        Some(group) => {
+            group.2.push(member);
+            group.3.push(weight);
         }
+        None => groups.push((kind, class, vec![member], vec![weight])),
     };
     for (l, level) in levels.iter().enumerate() {
         for (k, e) in level.all.iter().enumerate() {

@@ -237,8 +237,7 @@ pub(super) fn without(model: &mut Model, task: &Task, fit: &Fit, temperature: f6
     let mut scratch = Scratch::default();
     scratch.prepare(model, &fit.z, temperature);
     scratch.normal.factor(&scratch.products, temperature)?;
-    let mut weights: Vec<f64> =
-        (0..m).map(|k| model.residuals[k] - dot(&model.jacobian[k * n..][..n], &fit.z)).collect();
+    let mut weights: Vec<f64> = (0..m).map(|k| model.residuals[k] - dot(&model.jacobian[k * n..][..n], &fit.z)).collect();
     scratch.normal.solve(&mut weights);
     let mut all = Vec::with_capacity(m);
     for k in 0..m {

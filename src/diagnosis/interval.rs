@@ -126,7 +126,8 @@ impl<'l, 'a> Bounds<'l, 'a> {
             _ => return None,
         };
         let reduced = &self.levels[self.level].site.reduced;
-        let is_asked = |s: &usize| reduced.network.spans[*s].ohms[slot].is_some() && reduced.runs[*s].iter().any(|r| cause.runs.contains(r));
+        let is_asked =
+            |s: &usize| reduced.network.spans[*s].ohms[slot].is_some() && reduced.runs[*s].iter().any(|r| cause.runs.contains(r));
         let spans: Vec<usize> = (0..reduced.runs.len()).filter(is_asked).collect();
         let runs: usize = spans.iter().map(|s| reduced.runs[*s].len()).sum();
         if runs < cause.runs.len() || spans.is_empty() {

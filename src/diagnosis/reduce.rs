@@ -182,11 +182,8 @@ impl Lumps {
         let kind = r.load_kind.as_ref().map(|k| key(k.value));
         let (median, spread) = if legs.neutral { settings::UNLISTED } else { settings::UNLISTED_LINE_LINE };
         let lines: Vec<usize> = legs.iter().map(|l| l.index()).collect();
-        let pairs: Vec<(usize, usize)> = if legs.neutral {
-            lines.iter().map(|&l| (l, SLOTS - 1)).collect()
-        } else {
-            lines.windows(2).map(|w| (w[0], w[1])).collect()
-        };
+        let pairs: Vec<(usize, usize)> =
+            if legs.neutral { lines.iter().map(|&l| (l, SLOTS - 1)).collect() } else { lines.windows(2).map(|w| (w[0], w[1])).collect() };
         for (a, b) in pairs {
             self.by_place.entry((at, a, b, kind)).or_default().add_unstated(median, spread);
         }
