@@ -202,6 +202,14 @@ impl Field<'_> {
 }
 
 impl<'a> Field<'a> {
+    /// The same cell, read as another value.
+    pub fn with_value<'b>(self, value: &'b Value) -> Field<'b>
+    where
+        'a: 'b,
+    {
+        Field { value, ..self }
+    }
+
     /// A cell outside any table's columns.
     pub fn new(sheet: &'a Sheet, row: u32, col: u32, value: &'a Value) -> Self {
         Self { sheet, row, col, value, unit: None, square_millimetres: false }

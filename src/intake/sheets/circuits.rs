@@ -9,6 +9,7 @@ use crate::intake::grid::Value;
 use crate::intake::header::heads::Head;
 use crate::intake::header::{Field, Row, Table, What};
 use crate::intake::words::{Column, Kind};
+use crate::quantity::parse::written;
 use crate::quantity::{Amperes, Measured, Metres, Unit, Watts};
 use crate::visit::{Load, LoadKind, Run, System, Tree, TreeFault, name_key};
 use crate::wording::Sentence;
@@ -116,12 +117,17 @@ fn run<'a>(row: &Row<'a>, system: &System, reader: &mut Reader<'a>, circuits: &m
 /// The rating, and the common disconnect that a breaker of two or three poles is.
 fn breaker(field: Field<'_>, reader: &mut Reader<'_>) -> (Option<Located<Amperes>>, Option<Located<bool>>) {
     let text = larger_first(field.value).unwrap_or_else(|| plain_text(field.value));
-    if let Some((amperes, poles)) = with_poles(&text) {
+    let words = text.split_whitespace().filter(|word| reader.words.choice("breaker", word).is_none());
+    let bare = words.collect::<Vec<_>>().join(" ");
+    if let Some((amperes, poles)) = with_poles(&bare) {
         if matches!(field.value, Value::DateTime(_)) {
             reader.read_from_date(field, &text);
         }
         return (Some(Located::new(Amperes(amperes), field.cell())), (poles > 1).then(|| Located::new(true, field.cell())));
     }
+    let kind_aside = Value::Text(bare);
+    let plain = matches!(&kind_aside, Value::Text(bare) if *bare != text && written(bare).is_ok());
+    let field = if plain { field.with_value(&kind_aside) } else { field };
     let amperes = reader.number(field, &Expected::new(Unit::Ampere, BREAKER.0, BREAKER.1));
     (amperes.map(|a| a.map(Amperes)), None)
 }
