@@ -29,11 +29,14 @@ pub(super) fn readings(source: &Source, language: &Language) -> Option<Table> {
     }
     draft = draft.column("remarks", ColumnKind::Text, None);
     let judged = verdicts(source);
+    // A column that says `as found` in every row says nothing.
+    let stated = visit.rows.iter().any(|r| r.state != Stage::AsFound.name());
+    let staged = visit.rows.iter().any(|r| r.stage != Stage::AsFound);
     for row in &visit.rows {
         let mut cells = vec![
             text(&row.location.value),
-            text(&state(language, &row.state)),
-            text(&stage(language, row.stage)),
+            if stated { text(&state(language, &row.state)) } else { Cell::Empty },
+            if staged { text(&stage(language, row.stage)) } else { Cell::Empty },
             opt(row.time.as_ref(), |t| text(&t.value)),
         ];
         cells.extend(Quantity::ALL.map(|q| reading(source, row, q, &judged)));

@@ -31,6 +31,8 @@ pub struct Context {
     /// Findings in groups beyond those told.
     more_findings: usize,
     actions: Vec<actions::Action>,
+    /// How many of the actions may follow from the cause found.
+    follow_ups: usize,
     /// Actions beyond those told.
     more_actions: usize,
     diagnosis: Option<causes::Causes>,
@@ -96,6 +98,7 @@ impl Context {
             counts,
             findings,
             more_findings,
+            follow_ups: actions.iter().filter(|a| a.follows).count(),
             actions,
             more_actions,
             diagnosis: source.diagnosis.and_then(|d| causes::causes(source, d, language)),

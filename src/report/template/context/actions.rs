@@ -20,7 +20,7 @@ pub(super) struct Action {
     title: String,
     places: String,
     /// May go away by itself once the cause that was found is mended.
-    follows: bool,
+    pub follows: bool,
 }
 
 /// Each advice once, worst first, what may follow from the cause found behind the rest; and how many there are beyond those told.
