@@ -145,7 +145,8 @@ fn descend_from(
             if new_cost < cost + 1e-9 {
                 done = damping == 0.0 && is_whole && temperature == cold && (cost - new_cost - predicted).abs() < SETTLED;
                 let hoped = new_cost - HOPE * (cost - new_cost);
-                if temperature == cold && -0.5 * (hoped + determinant) - own < least {
+                // Colder only costs more: what is out of reach here is out of reach.
+                if -0.5 * (hoped + determinant) - own < least {
                     return None;
                 }
                 (z, squares) = (trial, new);

@@ -62,10 +62,10 @@ impl Scan<'_> {
 
     /// The most probable added ohms, looked for from several starts until the readings are explained; the fit with them held there.
     /// Fits that can't come within reach of an evidence are given up.
-    pub fn search(&self, model: &mut Model, starts: &[&[f64]], least: f64) -> Option<(f64, Fit)> {
+    pub fn search(&self, model: &mut Model, starts: &[(&[f64], f64)], least: f64) -> Option<(f64, Fit)> {
         let explained = EXPLAINS * model.residuals.len() as f64;
         let mut best: Option<(f64, Fit)> = None;
-        for (start, ohms) in starts.iter().flat_map(|s| [(s, 2.0), (s, OPEN), (s, 16.0)]) {
+        for &(start, ohms) in starts {
             model.restart();
             let found = if ohms >= OPEN {
                 fit_above(model, &self.task(OPEN), start, SEARCH, least).map(|fit| (OPEN, fit))
