@@ -41,11 +41,11 @@ pub(super) const UNLISTED_LINE_LINE: (f64, f64) = (3000.0, 0.6);
 pub(super) const SWITCHED: (f64, f64) = (300.0, 1.5);
 
 /// Exponent of the current of a load whose kind is not stated, between these: constant power −1, filament 0.55, resistive 1.
-pub(super) const EXPONENT_RANGE: (f64, f64) = (-0.95, 1.1);
+pub(super) const EXPONENT_RANGE: (f64, f64) = (-0.3, 1.05);
 
 /// Its place in that range, as a logit: median and spread. The median is a filament's; one spread up is nearly resistive, one down
 /// constant current.
-pub(super) const EXPONENT: (f64, f64) = (1.2, 1.3);
+pub(super) const EXPONENT: (f64, f64) = (0.8, 1.3);
 
 /// Spread of the supply's logarithm on a sound service: ANSI C84.1 range A is ±5 %, and few services lie near its ends.
 pub(super) const SUPPLY: f64 = 0.02;
