@@ -14,6 +14,7 @@ pub mod balance;
 pub mod blank;
 pub mod cli;
 pub mod diag;
+pub mod diagnosis;
 pub mod electrics;
 pub mod intake;
 pub mod network;

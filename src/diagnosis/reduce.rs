@@ -10,7 +10,7 @@ use super::model::exponent;
 use super::settings::{self, DiagnosisSettings};
 use crate::network::{self, Assumption, Law, Load, Network, SLOTS, Span, slot};
 use crate::quantity::math;
-use crate::visit::{Between, Conductor, Legs, LoadKind, Visit};
+use crate::visit::{Conductor, Legs, LoadKind, Visit};
 use std::collections::BTreeMap;
 
 /// A load of the reduced network and what is known of it.
@@ -305,13 +305,5 @@ impl Reduced {
                 self.class[k] = self.class[only[k]];
             }
         }
-    }
-}
-
-/// The slots of a quantity's conductors, where it is a voltage between two of them.
-pub(super) fn slots_of(between: Between) -> (usize, usize) {
-    match between {
-        Between::LineNeutral(leg) => (leg.index(), SLOTS - 1),
-        Between::LineLine(a, b) => (a.index(), b.index()),
     }
 }

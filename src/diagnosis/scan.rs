@@ -56,7 +56,7 @@ impl Scan<'_> {
     /// Follows the curve up from the fit without added ohms, until it has fallen.
     pub fn from_none(&self, model: &mut Model, from: &Fit) -> Curve {
         let mut curve = Curve::default();
-        self.follow(model, &mut curve, from, true, from.evidence);
+        self.follow(model, &mut curve, from, grid().chain([OPEN]));
         curve
     }
 
@@ -90,7 +90,8 @@ impl Scan<'_> {
         let found = if ohms >= OPEN { None } else { self.free(model, start, ohms, f64::NEG_INFINITY) };
         let Some((ohms, at)) = found.or_else(|| Some((ohms, fit(model, &self.task(ohms), start, SEARCH)?))) else { return curve };
         curve.put(ohms, at.clone());
-        self.follow_from(model, &mut curve, ohms, &at);
+        self.follow(model, &mut curve, &at, grid().filter(|g| *g > ohms * 1.001).chain([OPEN]));
+        self.follow(model, &mut curve, &at, grid().rev().filter(|g| *g < ohms * 0.999));
         self.refine(model, &mut curve);
         curve
     }
@@ -107,33 +108,14 @@ impl Scan<'_> {
         Some((ohms, held))
     }
 
-    fn follow_from(&self, model: &mut Model, curve: &mut Curve, ohms: f64, at: &Fit) {
-        let best = curve.height();
-        let above: Vec<f64> = grid().filter(|g| *g > ohms * 1.001).chain([OPEN]).collect();
-        let below: Vec<f64> = grid().rev().filter(|g| *g < ohms * 0.999).collect();
-        for side in [above, below] {
-            let mut from = at.clone();
-            let mut best = best;
-            for value in side {
-                let Some(fit) = fit(model, &self.task(value), &from.z, NEAR) else { break };
-                from = fit.clone();
-                curve.put(value, fit);
-                best = best.max(from.evidence);
-                if from.evidence < best - FALLEN {
-                    break;
-                }
-            }
-        }
-    }
-
-    fn follow(&self, model: &mut Model, curve: &mut Curve, from: &Fit, _up: bool, best: f64) {
-        let mut from = from.clone();
-        let mut best = best;
-        for value in grid().chain([OPEN]) {
-            let Some(fit) = fit(model, &self.task(value), &from.z, NEAR) else { break };
-            from = fit.clone();
-            curve.put(value, fit);
-            best = best.max(from.evidence);
+    /// Follows the curve along values, until it has fallen.
+    fn follow(&self, model: &mut Model, curve: &mut Curve, from: &Fit, values: impl Iterator<Item = f64>) {
+        let (mut from, mut best) = (from.clone(), from.evidence);
+        for ohms in values {
+            let Some(fit) = fit(model, &self.task(ohms), &from.z, NEAR) else { break };
+            best = best.max(fit.evidence);
+            from.clone_from(&fit);
+            curve.put(ohms, fit);
             if from.evidence < best - FALLEN {
                 break;
             }
@@ -173,19 +155,13 @@ fn grid() -> impl DoubleEndedIterator<Item = f64> {
 }
 
 impl Curve {
-    /// Puts in a value, or improves it; whether it was better than what stood there.
-    fn put(&mut self, ohms: f64, fit: Fit) -> bool {
+    /// Puts in a value, or improves it.
+    fn put(&mut self, ohms: f64, fit: Fit) {
         let at = self.nodes.partition_point(|n| n.ohms < ohms * (1.0 - 1e-9));
         match self.nodes.get_mut(at).filter(|n| n.ohms <= ohms * (1.0 + 1e-9)) {
-            Some(node) if node.fit.evidence >= fit.evidence => false,
-            Some(node) => {
-                node.fit = fit;
-                true
-            }
-            None => {
-                self.nodes.insert(at, Node { ohms, fit });
-                true
-            }
+            Some(node) if node.fit.evidence >= fit.evidence => {}
+            Some(node) => node.fit = fit,
+            None => self.nodes.insert(at, Node { ohms, fit }),
         }
     }
 
