@@ -67,7 +67,7 @@ pub(super) const ELECTRODE: (f64, f64) = (22.0, 0.8);
 pub(super) const SCATTER: f64 = 0.2;
 
 /// Added ohms that a fault may have, log-uniform between: less drowns in the spread of sound connections, more is as good as open.
-pub(super) const ADDED: (f64, f64) = (0.1, 51.2);
+pub(super) const ADDED: (f64, f64) = (0.2, 51.2);
 
 /// Share of faults that are open: a loose neutral burns on until it parts; of a hot leg an open is found before anyone measures.
 pub(super) const OPEN_NEUTRAL: f64 = 0.35;
@@ -80,9 +80,9 @@ pub(super) const TWO_WIRE: f64 = 5.0;
 
 /// Probability of each kind of cause before any reading. A diagnosis is asked for where something was noticed; what is noticed
 /// with lights that brighten and dim is a neutral more often than all else together, and one visit in three finds nothing.
-pub(super) const PRIOR_SOUND: f64 = 0.30;
+pub(super) const PRIOR_SOUND: f64 = 0.28;
 /// Of a neutral that legs share, over all runs with one.
-pub(super) const PRIOR_NEUTRAL: f64 = 0.42;
+pub(super) const PRIOR_NEUTRAL: f64 = 0.44;
 /// Of a hot leg, over all of them.
 pub(super) const PRIOR_HOT: f64 = 0.12;
 /// Of the supply, low or high.

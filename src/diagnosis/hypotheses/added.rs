@@ -137,9 +137,11 @@ fn search(benches: &mut [Bench], levels: &[Vec<Evaluated>]) -> Vec<(At, f64, Fit
 
 /// Fits a conductor along the whole curve, from where its peak was found.
 fn in_full(bench: &mut Bench, at: At, ohms: f64, start: &[f64]) -> Option<Evaluated> {
+    let least = bench.sound.evidence;
     let base = Task::default();
     let scan = Scan { base: &base, at };
-    let curve = scan.about_peak(&mut bench.model, start, ohms);
+    let near = bench.near.0.z.clone();
+    let curve = scan.about_peaks(&mut bench.model, &[(start, ohms), (&near, MODERATE)], least);
     let node = &curve.nodes[curve.peak()?];
     let (prior, open) = prior(bench.site, at);
     let (task, fit) = (scan.task(node.ohms), node.fit.clone());
