@@ -308,6 +308,18 @@ pub(super) fn scores(model: &mut Model, task: &Task, fit: &Fit, temperature: f64
     Some(all)
 }
 
+/// What a change of each of some unknowns would gain by itself, freed of its prior, to first order about a fit.
+pub(super) fn gains(model: &mut Model, task: &Task, fit: &Fit, temperature: f64, unknowns: &[usize]) -> Option<Vec<f64>> {
+    let (algebra, weights) = Algebra::about(model, task, fit, temperature)?;
+    let one = |&j: &usize| {
+        let mut d: Vec<f64> = (0..weights.len()).map(|k| model.row(k)[j]).collect();
+        let slope = dot(&d, &weights);
+        algebra.normal.solve_lower(&mut d);
+        Score { slope, bend: norm(&d) }.gain()
+    };
+    Some(unknowns.iter().map(one).collect())
+}
+
 /// The normal equations in the space of the readings.
 #[derive(Default)]
 struct Algebra {

@@ -103,6 +103,17 @@ impl<'a> Model<'a> {
         vec![0.0; self.parameters.len()]
     }
 
+    /// Unknowns that are watts of loads nobody wrote down, with the whitened value of so many watts.
+    pub fn extras(&self, watts: f64) -> Vec<(usize, f64)> {
+        let one = |(k, p): (usize, &Parameter)| match p.target {
+            Target::Watts(l) if self.reduced.loads[l].is_extra => {
+                Some((k, (math::ln(watts / self.reduced.network.loads[l].watts) - p.mean) / p.spread))
+            }
+            _ => None,
+        };
+        self.parameters.iter().enumerate().filter_map(one).collect()
+    }
+
     /// Forgets the last solutions, as after a jump.
     pub fn restart(&mut self) {
         self.spaces.iter_mut().for_each(Workspace::restart);
