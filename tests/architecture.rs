@@ -126,7 +126,7 @@ fn sources() -> Vec<Source> {
             let code = shipped.lines().map(|l| l.split_once("//").map_or(l, |(code, _)| code)).collect::<Vec<_>>().join("\n");
             Source { name, module, code, lines: text.lines().count() }
         })
-        .filter(|s| s.module != "lib" && s.module != "main")
+        .filter(|s| s.module != "lib" && s.module != "main" && !s.name.ends_with("/tests") && !s.name.contains("/tests/"))
         .collect()
 }
 
