@@ -8,11 +8,11 @@
 //! Bounds on any input: readings, spans and the work of the fits are capped (see [`settings`]); what was given up is reported as
 //! not ruled out, never as sound.
 
-mod cholesky;
 mod evidence;
 mod fit;
 mod hypotheses;
 mod interval;
+mod linear;
 mod model;
 mod next_reading;
 mod observation;
@@ -66,6 +66,18 @@ fn examine(visit: &Visit, stage: Stage, settings: &DiagnosisSettings, about: Opt
     let sites: Vec<(f64, Site)> =
         settings::TRUST.iter().map(|t| Some((t.prior, Site::new(visit, stage, settings, t)?))).collect::<Option<_>>()?;
     let mut levels = evaluate(&sites)?;
+    if std::env::var("DEBUG").is_ok() {
+        for level in &levels {
+            for e in &level.all {
+                eprintln!("{:?} ev {:.2} cost {:.1} peak {:?}", e.hypothesis, e.evidence, e.fit.cost, e.task.added.first().map(|a| a.ohms));
+                if std::env::var("CURVE").is_ok() {
+                    for n in &e.curve.nodes {
+                        eprintln!("     {:.2} {:.2} {:.1}", n.ohms, n.fit.evidence, n.fit.cost);
+                    }
+                }
+            }
+        }
+    }
     let mut ranked = rank(visit, &levels);
     for weighed in &mut ranked {
         weighed.cause.ohms = interval::of_cause(&levels, weighed);

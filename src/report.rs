@@ -8,7 +8,7 @@ pub mod drawing;
 
 mod duties;
 mod facts;
-mod figures;
+pub mod figures;
 mod repair;
 mod sheets;
 mod tables;

@@ -71,9 +71,9 @@ pub(super) struct Model<'a> {
     /// (predicted − read)/σ, one a reading; 0 for one left out.
     pub residuals: Vec<f64>,
     /// Their derivatives by z, a row a reading.
-    pub jacobian: Vec<f64>,
+    jacobian: Vec<f64>,
     /// Unknowns of the present task.
-    pub width: usize,
+    width: usize,
 }
 
 impl<'a> Model<'a> {
@@ -101,6 +101,17 @@ impl<'a> Model<'a> {
     /// The unknowns before any reading.
     pub fn start(&self) -> Vec<f64> {
         vec![0.0; self.parameters.len()]
+    }
+
+    /// Unknowns that are watts of loads nobody wrote down, with the whitened value of so many watts.
+    pub fn extras(&self, watts: f64) -> Vec<(usize, f64)> {
+        let one = |(k, p): (usize, &Parameter)| match p.target {
+            Target::Watts(l) if self.reduced.loads[l].is_extra => {
+                Some((k, (math::ln(watts / self.reduced.network.loads[l].watts) - p.mean) / p.spread))
+            }
+            _ => None,
+        };
+        self.parameters.iter().enumerate().filter_map(one).collect()
     }
 
     /// Forgets the last solutions, as after a jump.
@@ -193,11 +204,6 @@ impl<'a> Model<'a> {
         self.signs[k] = -self.signs[k];
     }
 
-    /// Volts or amperes of each observation at the last residuals, signed in phase.
-    pub fn predicted(&self) -> &[f64] {
-        &self.predicted
-    }
-
     /// Puts the unknowns into the network.
     fn take(&mut self, task: &Task, state: usize) {
         let nominal = &self.reduced.network;
@@ -241,11 +247,16 @@ impl<'a> Model<'a> {
             self.take(task, state);
             for k in 0..self.observations.list.len() {
                 if self.observations.list[k].state == state && task.misread != Some(k) {
-                    self.row(task, state, k)?;
+                    self.derive(task, state, k)?;
                 }
             }
         }
         Some(())
+    }
+
+    /// Derivatives of a residual by the whitened unknowns.
+    pub fn row(&self, k: usize) -> &[f64] {
+        &self.jacobian[k * self.width..][..self.width]
     }
 
     /// Derivatives of the residuals by ohms added in each conductor, at the last derivatives' solution.
@@ -262,7 +273,7 @@ impl<'a> Model<'a> {
         Some(all)
     }
 
-    fn row(&mut self, task: &Task, state: usize, k: usize) -> Option<()> {
+    fn derive(&mut self, task: &Task, state: usize, k: usize) -> Option<()> {
         let o = &self.observations.list[k];
         self.spaces[state].gradient(&self.network, o.observed, &mut self.gradient)?;
         let scale = 1.0 + self.error_of(o.row, o.gain);

@@ -17,9 +17,7 @@ pub(super) struct Observation {
     pub cell: CellRef,
     /// What was read.
     pub quantity: Quantity,
-    /// Where: the run of the visit.
-    pub run: usize,
-    /// That is a service run.
+    /// Read at the far end of a service run.
     pub is_service: bool,
     /// What it is in the network.
     pub observed: Observed,
@@ -81,7 +79,6 @@ pub(super) fn observe(visit: &Visit, rows: &[&ReadingRow], reduced: &Reduced) ->
             all.list.push(Observation {
                 cell: reading.cell.clone(),
                 quantity: reading.quantity,
-                run,
                 is_service: visit.tree.parent[run].is_none(),
                 observed,
                 value: value.abs(),

@@ -10,7 +10,7 @@ use super::model::exponent;
 use super::settings::{self, DiagnosisSettings};
 use crate::network::{self, Assumption, Law, Load, Network, SLOTS, Span, slot};
 use crate::quantity::math;
-use crate::visit::{Between, Conductor, Legs, LoadKind, Visit};
+use crate::visit::{Conductor, Legs, LoadKind, Visit};
 use std::collections::BTreeMap;
 
 /// A load of the reduced network and what is known of it.
@@ -23,6 +23,8 @@ pub(super) struct LumpedLoad {
     pub kind_unknown: bool,
     /// Switched on in one state alone.
     pub state: Option<usize>,
+    /// Nobody wrote it down and nothing points to it.
+    pub is_extra: bool,
 }
 
 /// The reduced network.
@@ -253,7 +255,7 @@ impl Reduced {
             let law = if kind.is_some() && lump.law.is_some() { law } else { Law::Power { exponent: exponent(settings::EXPONENT.0).0 } };
             let mut add = |watts: f64, unlisted: Option<f64>| {
                 self.network.loads.push(Load { at, between: (a, b), rated_volts, watts, law, power_factor });
-                self.loads.push(LumpedLoad { unlisted, kind_unknown: kind.is_none() || lump.law.is_none(), state: None });
+                self.loads.push(LumpedLoad { unlisted, kind_unknown: kind.is_none() || lump.law.is_none(), state: None, is_extra: false });
             };
             if lump.stated > 0.0 {
                 add(lump.stated, None);
@@ -271,7 +273,7 @@ impl Reduced {
         let rated_volts = rated_volts(&self.network, between);
         if rated_volts > 0.0 && [leg, SLOTS - 1].iter().all(|s| self.network.spans[at].ohms[*s].is_some()) {
             self.network.loads.push(Load { at, between, rated_volts, watts: median, law, power_factor: 1.0 });
-            self.loads.push(LumpedLoad { unlisted: Some(spread), kind_unknown: false, state });
+            self.loads.push(LumpedLoad { unlisted: Some(spread), kind_unknown: false, state, is_extra: state.is_none() });
         }
     }
 
@@ -302,13 +304,5 @@ impl Reduced {
                 self.class[k] = self.class[only[k]];
             }
         }
-    }
-}
-
-/// The slots of a quantity's conductors, where it is a voltage between two of them.
-pub(super) fn slots_of(between: Between) -> (usize, usize) {
-    match between {
-        Between::LineNeutral(leg) => (leg.index(), SLOTS - 1),
-        Between::LineLine(a, b) => (a.index(), b.index()),
     }
 }

@@ -10,7 +10,7 @@ use super::settings::ADDED;
 use crate::quantity::math;
 
 /// Steps of the grid, each doubling the last value.
-const STEPS: usize = 9;
+const STEPS: usize = 8;
 /// Fall of ln evidence below the curve's best at which a direction is left.
 const FALLEN: f64 = 4.0;
 /// ln of the likelihood ratio that bounds a 95 % interval: half the 95 % point of χ² with one degree of freedom.
@@ -18,7 +18,9 @@ pub(super) const INTERVAL: f64 = 1.92;
 /// Mean square residual (with the unknowns' own) below which the readings are explained.
 pub(super) const EXPLAINS: f64 = 2.0;
 /// Iterations of a continued fit.
-const NEAR: usize = 4;
+const NEAR: usize = 15;
+/// How much further below a continued fit is given up unfinished.
+const OUT_OF_REACH: f64 = 4.0;
 /// Iterations of a fit from afar.
 const SEARCH: usize = 15;
 
@@ -56,23 +58,18 @@ impl Scan<'_> {
     /// Follows the curve up from the fit without added ohms, until it has fallen.
     pub fn from_none(&self, model: &mut Model, from: &Fit) -> Curve {
         let mut curve = Curve::default();
-        self.follow(model, &mut curve, from, true, from.evidence);
+        self.follow(model, &mut curve, from, grid().chain([OPEN]));
         curve
     }
 
     /// The most probable added ohms, looked for from several starts until the readings are explained; the fit with them held there.
     /// Fits that can't come within reach of an evidence are given up.
-    pub fn search(&self, model: &mut Model, starts: &[&[f64]], least: f64) -> Option<(f64, Fit)> {
+    pub fn search(&self, model: &mut Model, starts: &[(&[f64], f64)], least: f64) -> Option<(f64, Fit)> {
         let explained = EXPLAINS * model.residuals.len() as f64;
         let mut best: Option<(f64, Fit)> = None;
-        for (start, ohms) in starts.iter().flat_map(|s| [(s, 2.0), (s, OPEN), (s, 16.0)]) {
+        for &(start, ohms) in starts {
             model.restart();
-            let found = if ohms >= OPEN {
-                fit_above(model, &self.task(OPEN), start, SEARCH, least).map(|fit| (OPEN, fit))
-            } else {
-                self.free(model, start, ohms, least)
-            };
-            let Some(found) = found else { continue };
+            let Some(found) = self.peak(model, start, ohms, least) else { continue };
             if best.as_ref().is_none_or(|b| found.1.evidence > b.1.evidence) {
                 best = Some(found);
             }
@@ -83,16 +80,30 @@ impl Scan<'_> {
         best
     }
 
-    /// Follows the curve both ways from its peak.
-    pub fn about_peak(&self, model: &mut Model, start: &[f64], ohms: f64) -> Curve {
+    /// Follows the curve both ways from the peaks found from several starts.
+    pub fn about_peaks(&self, model: &mut Model, starts: &[(&[f64], f64)], least: f64) -> Curve {
         let mut curve = Curve::default();
-        model.restart();
-        let found = if ohms >= OPEN { None } else { self.free(model, start, ohms, f64::NEG_INFINITY) };
-        let Some((ohms, at)) = found.or_else(|| Some((ohms, fit(model, &self.task(ohms), start, SEARCH)?))) else { return curve };
-        curve.put(ohms, at.clone());
-        self.follow_from(model, &mut curve, ohms, &at);
+        for &(start, ohms) in starts {
+            model.restart();
+            let Some((ohms, at)) = self.peak(model, start, ohms, least) else { continue };
+            if curve.at(ohms) > at.evidence - 0.1 {
+                continue;
+            }
+            curve.put(ohms, at.clone());
+            self.follow(model, &mut curve, &at, grid().filter(|g| *g > ohms * 1.001).chain([OPEN]));
+            self.follow(model, &mut curve, &at, grid().rev().filter(|g| *g < ohms * 0.999));
+        }
         self.refine(model, &mut curve);
         curve
+    }
+
+    /// The most probable added ohms from a start, or an open conductor fitted from it.
+    fn peak(&self, model: &mut Model, start: &[f64], ohms: f64, least: f64) -> Option<(f64, Fit)> {
+        if ohms >= OPEN {
+            fit_above(model, &self.task(OPEN), start, SEARCH, least).map(|fit| (OPEN, fit))
+        } else {
+            self.free(model, start, ohms, least)
+        }
     }
 
     /// The most probable added ohms from a start, and the fit with them held there.
@@ -107,33 +118,19 @@ impl Scan<'_> {
         Some((ohms, held))
     }
 
-    fn follow_from(&self, model: &mut Model, curve: &mut Curve, ohms: f64, at: &Fit) {
-        let best = curve.height();
-        let above: Vec<f64> = grid().filter(|g| *g > ohms * 1.001).chain([OPEN]).collect();
-        let below: Vec<f64> = grid().rev().filter(|g| *g < ohms * 0.999).collect();
-        for side in [above, below] {
-            let mut from = at.clone();
-            let mut best = best;
-            for value in side {
-                let Some(fit) = fit(model, &self.task(value), &from.z, NEAR) else { break };
-                from = fit.clone();
-                curve.put(value, fit);
-                best = best.max(from.evidence);
-                if from.evidence < best - FALLEN {
-                    break;
-                }
-            }
-        }
-    }
-
-    fn follow(&self, model: &mut Model, curve: &mut Curve, from: &Fit, _up: bool, best: f64) {
-        let mut from = from.clone();
-        let mut best = best;
-        for value in grid().chain([OPEN]) {
-            let Some(fit) = fit(model, &self.task(value), &from.z, NEAR) else { break };
-            from = fit.clone();
-            curve.put(value, fit);
-            best = best.max(from.evidence);
+    /// Follows the curve along values, until it has fallen.
+    fn follow(&self, model: &mut Model, curve: &mut Curve, from: &Fit, values: impl Iterator<Item = f64>) {
+        let (mut from, mut best) = (from.clone(), from.evidence);
+        for ohms in values {
+            let least = best - FALLEN - OUT_OF_REACH;
+            let Some(fit) = fit_above(model, &self.task(ohms), &from.z, NEAR, least) else {
+                // Not finished, but it lies no higher than this: enough to say where the curve falls.
+                curve.put(ohms, Fit { evidence: least, ..from });
+                break;
+            };
+            best = best.max(fit.evidence);
+            from.clone_from(&fit);
+            curve.put(ohms, fit);
             if from.evidence < best - FALLEN {
                 break;
             }
@@ -173,19 +170,13 @@ fn grid() -> impl DoubleEndedIterator<Item = f64> {
 }
 
 impl Curve {
-    /// Puts in a value, or improves it; whether it was better than what stood there.
-    fn put(&mut self, ohms: f64, fit: Fit) -> bool {
+    /// Puts in a value, or improves it.
+    fn put(&mut self, ohms: f64, fit: Fit) {
         let at = self.nodes.partition_point(|n| n.ohms < ohms * (1.0 - 1e-9));
         match self.nodes.get_mut(at).filter(|n| n.ohms <= ohms * (1.0 + 1e-9)) {
-            Some(node) if node.fit.evidence >= fit.evidence => false,
-            Some(node) => {
-                node.fit = fit;
-                true
-            }
-            None => {
-                self.nodes.insert(at, Node { ohms, fit });
-                true
-            }
+            Some(node) if node.fit.evidence >= fit.evidence => {}
+            Some(node) => node.fit = fit,
+            None => self.nodes.insert(at, Node { ohms, fit }),
         }
     }
 

@@ -39,11 +39,11 @@ pub(super) const UNLISTED_LINE_LINE: (f64, f64) = (3000.0, 0.6);
 pub(super) const SWITCHED: (f64, f64) = (300.0, 1.5);
 
 /// Exponent of the current of a load whose kind is not stated, between these: constant power −1, filament 0.55, resistive 1.
-pub(super) const EXPONENT_RANGE: (f64, f64) = (-0.95, 1.1);
+pub(super) const EXPONENT_RANGE: (f64, f64) = (-0.3, 1.05);
 
 /// Its place in that range, as a logit: median and spread. The median is a filament's; one spread up is nearly resistive, one down
 /// constant current.
-pub(super) const EXPONENT: (f64, f64) = (1.2, 1.3);
+pub(super) const EXPONENT: (f64, f64) = (0.8, 1.3);
 
 /// Spread of the supply's logarithm on a sound service: ANSI C84.1 range A is ±5 %, and few services lie near its ends.
 pub(super) const SUPPLY: f64 = 0.02;
@@ -65,7 +65,7 @@ pub(super) const ELECTRODE: (f64, f64) = (22.0, 0.8);
 pub(super) const SCATTER: f64 = 0.2;
 
 /// Added ohms that a fault may have, log-uniform between: less drowns in the spread of sound connections, more is as good as open.
-pub(super) const ADDED: (f64, f64) = (0.1, 51.2);
+pub(super) const ADDED: (f64, f64) = (0.2, 51.2);
 
 /// Share of faults that are open: a loose neutral burns on until it parts; of a hot leg an open is found before anyone measures.
 pub(super) const OPEN_NEUTRAL: f64 = 0.35;
@@ -78,9 +78,9 @@ pub(super) const TWO_WIRE: f64 = 5.0;
 
 /// Probability of each kind of cause before any reading. A diagnosis is asked for where something was noticed; what is noticed
 /// with lights that brighten and dim is a neutral more often than all else together, and one visit in three finds nothing.
-pub(super) const PRIOR_SOUND: f64 = 0.30;
+pub(super) const PRIOR_SOUND: f64 = 0.28;
 /// Of a neutral that legs share, over all runs with one.
-pub(super) const PRIOR_NEUTRAL: f64 = 0.42;
+pub(super) const PRIOR_NEUTRAL: f64 = 0.44;
 /// Of a hot leg, over all of them.
 pub(super) const PRIOR_HOT: f64 = 0.12;
 /// Of the supply, low or high.

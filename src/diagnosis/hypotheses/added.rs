@@ -5,7 +5,7 @@
 //! intervals that are reported), hot legs are weighed by the first-order test alone.
 
 use super::super::model::{OPEN, Task};
-use super::super::scan::{Curve, Scan, log_sum};
+use super::super::scan::{Curve, EXPLAINS, Scan, log_sum};
 use super::super::settings::{ADDED, OPEN_HOT, OPEN_NEUTRAL};
 use super::super::site::Site;
 use super::{Bench, Evaluated, Hypothesis};
@@ -24,6 +24,10 @@ const MOST_LIVE: usize = 6;
 
 /// Fall of ln evidence below the best at which a conductor is out of the question.
 const MARGIN: f64 = 12.0;
+
+/// Added ohms from which a search starts: those of a poor joint, and of one nearly parted.
+const MODERATE: f64 = 2.0;
+const LARGE: f64 = 16.0;
 
 /// Conductor: span and slot.
 type At = (usize, usize);
@@ -111,24 +115,33 @@ fn search(benches: &mut [Bench], levels: &[Vec<Evaluated>]) -> Vec<(At, f64, Fit
     let (Some(bench), Some(level)) = (benches.last_mut(), levels.last()) else { return Vec::new() };
     let mut best = level.iter().map(|e| e.evidence).fold(f64::NEG_INFINITY, f64::max);
     let base = Task::default();
+    let explained = EXPLAINS * bench.site.observations.list.len() as f64;
     let (zero, near) = (bench.model.start(), bench.near.0.z.clone());
-    let mut found = Vec::new();
+    let mut found: Vec<(At, f64, Fit)> = Vec::new();
     for at in live {
         let scan = Scan { base: &base, at };
-        if let Some((ohms, fit)) = scan.search(&mut bench.model, &[&near, &zero], best - MARGIN) {
+        let rival = found.iter().filter(|f| f.2.cost < explained).max_by(|a, b| a.2.evidence.total_cmp(&b.2.evidence));
+        let starts: Vec<(&[f64], f64)> = match rival {
+            // One cause explains the readings: is there another nearby?
+            Some((_, ohms, fit)) => vec![(&fit.z, ohms.min(MODERATE)), (&near, MODERATE), (&near, OPEN)],
+            None => [&near, &zero].iter().flat_map(|z| [(&z[..], MODERATE), (&z[..], OPEN), (&z[..], LARGE)]).collect(),
+        };
+        if let Some((ohms, fit)) = scan.search(&mut bench.model, &starts, best - MARGIN) {
             best = best.max(fit.evidence);
             found.push((at, ohms, fit));
         }
     }
-    found.retain(|f: &(At, f64, Fit)| f.2.evidence > best - MARGIN);
+    found.retain(|f| f.2.evidence > best - MARGIN);
     found
 }
 
 /// Fits a conductor along the whole curve, from where its peak was found.
 fn in_full(bench: &mut Bench, at: At, ohms: f64, start: &[f64]) -> Option<Evaluated> {
+    let least = bench.sound.evidence;
     let base = Task::default();
     let scan = Scan { base: &base, at };
-    let curve = scan.about_peak(&mut bench.model, start, ohms);
+    let near = bench.near.0.z.clone();
+    let curve = scan.about_peaks(&mut bench.model, &[(start, ohms), (&near, MODERATE)], least);
     let node = &curve.nodes[curve.peak()?];
     let (prior, open) = prior(bench.site, at);
     let (task, fit) = (scan.task(node.ohms), node.fit.clone());
