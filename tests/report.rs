@@ -12,5 +12,7 @@ mod prose;
 mod samples;
 #[path = "rules/site.rs"]
 mod site;
+#[path = "report/tables.rs"]
+mod tables;
 #[path = "report/templates.rs"]
 mod templates;

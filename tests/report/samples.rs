@@ -6,8 +6,9 @@ use midwire::pipeline::{self, Checked, ReportOptions, Settings};
 use midwire::report::BUILT_IN_TEMPLATES;
 use midwire::report::document::{Document, PageSize};
 use std::path::{Path, PathBuf};
+use std::sync::LazyLock;
 
-const SAMPLES: [&str; 9] = [
+pub const SAMPLES: [&str; 9] = [
     "bad-cells.xlsx",
     "cottage.ods",
     "high-resistance-hot.xlsx",
@@ -28,13 +29,19 @@ impl Beside for Samples {
     }
 }
 
-fn checked(name: &str) -> Checked {
+/// A sample, read and checked once for all tests.
+pub fn checked(name: &str) -> &'static Checked {
+    static ALL: LazyLock<Vec<Checked>> = LazyLock::new(|| SAMPLES.iter().map(|name| check(name)).collect());
+    &ALL[SAMPLES.iter().position(|s| *s == name).unwrap()]
+}
+
+fn check(name: &str) -> Checked {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("samples");
     let bytes = std::fs::read(folder.join(name)).unwrap();
     pipeline::check(&Input { name, content: Content::File(&bytes) }, &Samples(folder), &Settings::default()).unwrap()
 }
 
-fn report(checked: &Checked, template: &str) -> Document {
+pub fn report(checked: &Checked, template: &str) -> Document {
     let (name, _, text) = BUILT_IN_TEMPLATES.iter().find(|t| t.0 == template).unwrap();
     let options = ReportOptions { page: PageSize::Letter, accent: pipeline::ACCENT, date: None, template: Some((name, text)) };
     pipeline::document(checked, &Settings::default(), &options).unwrap()
@@ -45,7 +52,7 @@ fn every_template_holds_together_over_every_sample() {
     for sample in SAMPLES {
         let checked = checked(sample);
         for (template, _, _) in BUILT_IN_TEMPLATES {
-            let document = report(&checked, template);
+            let document = report(checked, template);
             crate::prose::holds_together(&document, &format!("{template} of {sample}"));
             crate::prose::has_its_cautions(&document);
         }
@@ -55,7 +62,7 @@ fn every_template_holds_together_over_every_sample() {
 #[test]
 fn what_a_repair_settled_asks_for_nothing() {
     let checked = checked("service-call.xlsx");
-    let text = outline::document(&report(&checked, "client"));
+    let text = outline::document(&report(checked, "client"));
     assert!(text.contains("[NOTICE] Nothing unsafe was found"), "the fault was mended on the visit");
     assert!(text.contains("<b>Mended on this visit.</b>"));
     assert!(!text.contains("## What to do"));
@@ -65,7 +72,7 @@ fn what_a_repair_settled_asks_for_nothing() {
 fn the_first_page_says_what_who_and_when() {
     let checked = checked("open-service-neutral.xlsx");
     for template in ["client", "letter"] {
-        let text = outline::document(&report(&checked, template));
+        let text = outline::document(&report(checked, template));
         let (before, after) = text.split_once("## What to do").unwrap();
         assert!(before.contains("Not safe"), "{before}");
         let first = after.lines().find(|l| l.starts_with("- ")).unwrap();

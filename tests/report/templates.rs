@@ -70,3 +70,28 @@ fn only_links_that_lead_somewhere_safe_stay() {
     let document = made.report("own.md.tera", template).unwrap();
     assert_eq!(outline::document(&document).matches("<a ").count(), 2);
 }
+
+/// What stands between backticks in a part of the manual page.
+fn documented<'a>(page: &'a str, heading: &str) -> Vec<&'a str> {
+    let (_, part) = page.split_once(heading).unwrap();
+    let part = part.split_once("\n## ").map_or(part, |(part, _)| part);
+    part.split('`').skip(1).step_by(2).collect()
+}
+
+#[test]
+fn the_manual_page_names_what_there_is() {
+    let page = include_str!("../../docs/your-own-template.md");
+    let mut made = Made::house();
+    made.fixture.balance = midwire::balance::balance(&made.fixture.visit, &midwire::balance::BalanceSettings::default());
+    for name in documented(page, "## Values").into_iter().filter(|n| n.contains(['.', '_'])) {
+        let document = made.report("own.md.tera", &format!("{{% if {name} is defined %}}known{{% endif %}}")).unwrap();
+        assert!(outline::document(&document).contains("known"), "{name}");
+    }
+    let (_, tables) = page.split_once("\nTables: ").unwrap();
+    let (tables, _) = tables.split_once("\n\n").unwrap();
+    let tables: Vec<&str> = tables.split('`').skip(1).step_by(2).collect();
+    let all: String = tables.iter().map(|t| format!("![](table:{t})\n")).collect();
+    made.report("own.md.tera", &all).unwrap();
+    let unnamed = made.built_in("client").sheets.iter().flat_map(|s| &s.tables).any(|t| !tables.contains(&t.name.as_str()));
+    assert!(!unnamed, "a table that the page does not name");
+}
