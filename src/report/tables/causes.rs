@@ -10,6 +10,8 @@ use crate::wording::{Language, Sentence};
 
 /// Causes below this probability are summed up, not listed.
 const WORTH_LISTING: f64 = 0.005;
+/// From here on a probability would be shown as a certainty.
+const NEARLY_SURE: f64 = 0.9995;
 /// Ohms from which an added resistance is as good as open, for what is shown.
 const OPEN: f64 = 1e4;
 
@@ -23,7 +25,7 @@ pub(super) fn causes(source: &Source, language: &Language) -> Option<Table> {
     for (_, cause) in ranking.iter().enumerate().filter(|(i, c)| *i == 0 || c.probability >= WORTH_LISTING) {
         draft.row(vec![
             text(&words::cause(source, cause, language)),
-            number(100.0 * cause.probability, 1),
+            probability(cause.probability, language),
             opt(cause.ohms, |o| text(&ohms(&o, language))),
         ]);
     }
@@ -32,6 +34,11 @@ pub(super) fn causes(source: &Source, language: &Language) -> Option<Table> {
         draft.row(vec![text(&language.text("table-causes.rest")), number(100.0 * rest, 1), Cell::Empty]);
     }
     draft.finish()
+}
+
+/// Per cent, never rounded to a certainty.
+fn probability(p: f64, language: &Language) -> Cell {
+    if p > NEARLY_SURE { text(&language.text("table-causes.nearly-sure")) } else { number(100.0 * p, 1) }
 }
 
 fn ohms(o: &AddedOhms, language: &Language) -> String {

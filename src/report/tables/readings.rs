@@ -35,7 +35,7 @@ pub(super) fn readings(source: &Source, language: &Language) -> Option<Table> {
     for row in &visit.rows {
         let mut cells = vec![
             text(&row.location.value),
-            if stated { text(&state(language, &row.state)) } else { Cell::Empty },
+            if stated { state_of(row, language) } else { Cell::Empty },
             if staged { text(&stage(language, row.stage)) } else { Cell::Empty },
             opt(row.time.as_ref(), |t| text(&t.value)),
         ];
@@ -46,6 +46,12 @@ pub(super) fn readings(source: &Source, language: &Language) -> Option<Table> {
         draft.row(cells);
     }
     draft.finish()
+}
+
+/// The state of a row; a row read as left in no particular state has none to name.
+fn state_of(row: &ReadingRow, language: &Language) -> Cell {
+    let is_unnamed = row.state == Stage::AsFound.name() && row.stage == Stage::AsLeft;
+    if is_unnamed { Cell::Empty } else { text(&state(language, &row.state)) }
 }
 
 /// Column key of a quantity.
@@ -126,7 +132,7 @@ pub(super) fn before_after(source: &Source, language: &Language) -> Option<Table
             draft.row(vec![
                 text(&left.location.value),
                 text(&quantity.to_string()),
-                text(&state(language, &left.state)),
+                state_of(left, language),
                 text(quantity.unit().symbol()),
                 reading(source, found, quantity, &judged),
                 reading(source, left, quantity, &judged),

@@ -1,9 +1,11 @@
 //! Sheets of the workbook that are shown as they are.
 
 use super::{Draft, opt, stage, text, unread};
+use crate::quantity::Unit;
 use crate::report::Source;
 use crate::report::document::{Cell, ColumnKind, Number, Table};
-use crate::wording::Language;
+use crate::visit::{Instrument, Measures};
+use crate::wording::{Language, Sentence};
 
 /// Instruments and their calibration.
 pub(super) fn instruments(source: &Source, language: &Language) -> Option<Table> {
@@ -12,7 +14,8 @@ pub(super) fn instruments(source: &Source, language: &Language) -> Option<Table>
         .column("measures", ColumnKind::Name, None)
         .column("serial", ColumnKind::Name, None)
         .column("calibrated-until", ColumnKind::Name, None)
-        .column("accuracy", ColumnKind::Text, None);
+        .column("accuracy", ColumnKind::Text, None)
+        .column("expanded", ColumnKind::Text, None);
     for i in &source.visit.instruments {
         let accuracy = i.accuracy().map_or_else(
             || language.text("report.not-stated"),
@@ -27,9 +30,19 @@ pub(super) fn instruments(source: &Source, language: &Language) -> Option<Table>
             opt(i.serial.as_ref(), |s| text(&s.value)),
             opt(i.calibrated_until.as_ref(), |d| text(&d.value.to_string())),
             text(&accuracy),
+            expanded(source, i, language),
         ]);
     }
     draft.finish()
+}
+
+/// Expanded uncertainty of a reading at nominal line-to-neutral voltage, of what measures volts.
+fn expanded(source: &Source, instrument: &Instrument, language: &Language) -> Cell {
+    let nominal = source.visit.system.line_to_neutral.0;
+    opt(instrument.accuracy().filter(|_| instrument.measures.value == Measures::Volts), |accuracy| {
+        let sentence = Sentence::new("table-instruments.at").number("uncertainty", accuracy.expanded(nominal), 1, Unit::Volt);
+        text(&language.say(&sentence.number("nominal", nominal, 0, Unit::Volt)))
+    })
 }
 
 /// A number without trailing zeros.
