@@ -7,7 +7,7 @@ pub(super) mod heads;
 mod place;
 mod table;
 
-pub(super) use place::{What, place};
+pub(super) use place::{Placed, What, place};
 pub(super) use table::{Field, Row, Table};
 
 use super::grid::{Area, Sheet, Value};
