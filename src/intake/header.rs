@@ -99,7 +99,7 @@ fn headers(sheet: &Sheet, row: u32, below: Option<u32>, words: &Words) -> Vec<Fo
     let [alone, grouped] = [false, true].map(|grouped| split(sheet, words, &joined(sheet, row, below, words, grouped), (row, below)));
     // Of equals, the one that takes the header for fewer tables.
     let rank = |found: &[Found]| (score(found), std::cmp::Reverse(found.iter().map(|f| f.layouts.len()).sum::<usize>()));
-    let two = if rank(&grouped) > rank(&alone) { grouped } else { alone };
+    let two = if rank(&grouped) >= rank(&alone) { grouped } else { alone };
     let units_alone = texts(sheet, below).values().all(|text| unit_text(text));
     let lower = split(sheet, words, &texts(sheet, below), (below, below));
     let (a, b, c) = (score(&one), score(&two), score(&lower));
@@ -129,7 +129,7 @@ fn joined(sheet: &Sheet, upper: u32, lower: u32, words: &Words, grouped: bool) -
     for (&col, text) in &below {
         let own = above.get(&col).or_else(|| above.get(&area(col)?.left));
         let group = || above.range(..col).next_back().map(|(_, head)| head).filter(|_| area(col).is_none());
-        let placed = |text: &str| Kind::ALL.iter().any(|&kind| place(words, kind, text).is_some());
+        let placed = |text: &str| Kind::ALL.iter().any(|&kind| place::staged(words, kind, text).is_some());
         let text = match (own, own.is_none().then(group).flatten()) {
             (Some(head), _) if unit_text(text) => format!("{head} ({})", text.trim_matches(['(', ')', '[', ']'])),
             (Some(head), _) => format!("{head} {text}"),
