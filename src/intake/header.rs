@@ -128,13 +128,18 @@ fn joined(sheet: &Sheet, upper: u32, lower: u32, words: &Words, grouped: bool) -
     let mut out = above.clone();
     for (&col, text) in &below {
         let own = above.get(&col).or_else(|| above.get(&area(col)?.left));
-        let group = || above.range(..col).next_back().map(|(_, head)| head).filter(|_| area(col).is_none());
+        let left = || above.range(..col).next_back().filter(|_| area(col).is_none());
         let placed = |text: &str| Kind::ALL.iter().any(|&kind| place::staged(words, kind, text).is_some());
-        let text = match (own, own.is_none().then(group).flatten()) {
+        let text = match (own, own.is_none().then(left).flatten()) {
             (Some(head), _) if unit_text(text) => format!("{head} ({})", text.trim_matches(['(', ')', '[', ']'])),
             (Some(head), _) => format!("{head} {text}"),
-            (None, Some(head)) if (grouped || !placed(text)) && placed(&format!("{head} {text}")) => format!("{head} {text}"),
-            _ => text.clone(),
+            (None, Some((at, head))) => {
+                let whole = format!("{head} {text}");
+                // What stands under `Highest` is no plain reading, though its own name would be.
+                let heads_a_group = below.contains_key(at) && !placed(head);
+                if heads_a_group || ((grouped || !placed(text)) && placed(&whole)) { whole } else { text.clone() }
+            }
+            (None, None) => text.clone(),
         };
         out.insert(col, text);
     }
