@@ -212,16 +212,16 @@ impl Words {
         self.choices.get(list)?.get(&normal(text)).map(String::as_str)
     }
 
-    /// The key of the list whose spelling is nearest to a text.
+    /// The entry of a list whose spelling is nearest to a text, as it is written.
     pub fn nearest_choice(&self, list: &str, text: &str) -> Option<&str> {
         let choices = self.choices.get(list)?;
         let near = nearest(&normal(text), choices.keys().map(String::as_str))?;
-        choices.get(near).map(String::as_str)
+        self.entries.get(list)?.get(choices.get(near)?)?.first().map(String::as_str)
     }
 
-    /// The keys of a list as they are written in a workbook.
-    pub fn keys(&self, list: &str) -> Vec<String> {
-        self.entries.get(list).into_iter().flat_map(|keys| keys.keys()).map(|key| key.replace('-', " ")).collect()
+    /// The entries of a list as they are written.
+    pub fn written(&self, list: &str) -> Vec<&str> {
+        self.entries.get(list).into_iter().flat_map(|keys| keys.values()).filter_map(|words| words.first()).map(String::as_str).collect()
     }
 }
 

@@ -75,7 +75,7 @@ fn assumed(stated: Option<Located<f64>>, sheet: Option<Arc<str>>, three_legs: bo
         (None, None) => Problem::in_workbook(Severity::Warning, "", message),
     };
     problem.hint = three_legs.then(|| Sentence::new("intake.system-assumed-three-legs"));
-    reader.problems.push(problem);
+    reader.push(problem);
     System::split_phase_120_240()
 }
 

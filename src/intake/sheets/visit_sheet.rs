@@ -4,7 +4,7 @@ mod lines;
 
 use super::{Tables, system};
 use crate::diag::Located;
-use crate::intake::cell::{Reader, did_you_mean, plain_text};
+use crate::intake::cell::{Reader, plain_text};
 use crate::intake::grid::{Value, Workbook};
 use crate::intake::header::heads::Probe;
 use crate::intake::header::{Field, Placed};
@@ -74,7 +74,7 @@ fn entries<'a>(lines: Vec<Line<'a>>, reader: &mut Reader<'a>) -> Entries<'a> {
         let (Some(item), Some(entry)) = (item, entry) else {
             if item.is_none() && entry.is_some() {
                 let text = plain_text(label.value);
-                let hint = reader.words.items.nearest(&text).map(did_you_mean);
+                let hint = reader.suggestion(|words| words.items.nearest(&text));
                 reader.warning(label, Sentence::new("intake.unknown-item")).hint = hint;
             }
             continue;
