@@ -3,6 +3,7 @@
 use super::hypotheses::{Evaluated, Hypothesis};
 use super::model::Model;
 use super::scan::log_sum;
+use super::settings::MOST_RUNS;
 use super::site::Site;
 use crate::network::SLOTS;
 use crate::quantity::math;
@@ -80,7 +81,8 @@ fn hidden(visit: &Visit, levels: &[Level]) -> Vec<(CauseKind, Vec<usize>, f64)> 
     let mut groups: BTreeMap<(usize, usize), (Vec<usize>, f64)> = BTreeMap::new();
     let mut top = vec![None; visit.runs.len()];
     for &run in visit.tree.order.iter().filter(|r| site.reduced.attached[**r] != Some(**r)) {
-        top[run] = visit.tree.parent[run].and_then(|p| top[p]).or(Some(run));
+        let branch = if visit.runs.len() > MOST_RUNS { site.reduced.attached[run] } else { Some(run) };
+        top[run] = visit.tree.parent[run].and_then(|p| top[p]).or(branch);
     }
     for &run in &visit.tree.order {
         let Some(at) = top[run] else { continue };
