@@ -198,11 +198,6 @@ impl Curve {
         }
     }
 
-    /// Best ln evidence.
-    pub fn height(&self) -> f64 {
-        self.peak().map_or(f64::NEG_INFINITY, |p| self.nodes[p].fit.evidence)
-    }
-
     /// ln of the evidence averaged over the prior of the added ohms: log-uniform, and a share for open.
     pub fn average(&self, open: f64) -> f64 {
         let range = math::ln(ADDED.1 / ADDED.0);
