@@ -161,7 +161,12 @@ pub enum ReportError {
 ///
 /// # Errors
 /// The template can't be used, or a file could not be made.
-pub fn render(checked: &Checked, settings: &Settings, options: &ReportOptions, html: bool) -> Result<Vec<(&'static str, Vec<u8>)>, ReportError> {
+pub fn render(
+    checked: &Checked,
+    settings: &Settings,
+    options: &ReportOptions,
+    html: bool,
+) -> Result<Vec<(&'static str, Vec<u8>)>, ReportError> {
     let document = document(checked, settings, options)?;
     let mut files = vec![("pdf", render::pdf::write(&document)?), ("xlsx", render::xlsx::write(&document)?)];
     if html {

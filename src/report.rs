@@ -92,8 +92,16 @@ pub struct TemplateError {
 
 /// The built-in templates: name, what it is for, text.
 pub const BUILT_IN_TEMPLATES: &[(&str, &str, &str)] = &[
-    ("client", "for the client: is it safe, what to do, who does it, by when; then all that stands behind it", include_str!("../templates/client.md.tera")),
-    ("record", "of a service call: as found and as left side by side, work done, what proves the repair", include_str!("../templates/record.md.tera")),
+    (
+        "client",
+        "for the client: is it safe, what to do, who does it, by when; then all that stands behind it",
+        include_str!("../templates/client.md.tera"),
+    ),
+    (
+        "record",
+        "of a service call: as found and as left side by side, work done, what proves the repair",
+        include_str!("../templates/record.md.tera"),
+    ),
     ("letter", "one page: what was found and what to do", include_str!("../templates/letter.md.tera")),
 ];
 

@@ -177,8 +177,7 @@ fn repaired(left: &Value) -> Value {
 
 #[test]
 fn a_repair_is_proven_by_readings_that_exclude_the_fault() {
-    let (visit, found) =
-        of(&repaired(&json!({ "at": "1/3", "stage": "as left", "L1-N": 114.3, "L2-N": 121.0, "L1-L2": 235.3 })));
+    let (visit, found) = of(&repaired(&json!({ "at": "1/3", "stage": "as left", "L1-N": 114.3, "L2-N": 121.0, "L1-L2": 235.3 })));
     assert_eq!((&found.ranking[0].kind, named(&visit, &found.ranking[0].runs)), (&CauseKind::Neutral, vec!["1/3"]));
     assert_eq!(found.repair.unwrap().outcome, RepairOutcome::Proven);
 }

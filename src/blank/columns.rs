@@ -82,7 +82,11 @@ pub fn tables(system: &System) -> Vec<Table> {
         },
         Table {
             name: "Photos",
-            columns: vec![column("File", 26.0, Entry::Text), column("Location", 18.0, Entry::Location), column("Caption", 50.0, Entry::Text)],
+            columns: vec![
+                column("File", 26.0, Entry::Text),
+                column("Location", 18.0, Entry::Location),
+                column("Caption", 50.0, Entry::Text),
+            ],
         },
         Table {
             name: "Work",

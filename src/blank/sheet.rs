@@ -5,8 +5,8 @@ use super::columns::{Column, Entry, Table};
 use crate::visit::System;
 use rust_xlsxwriter::utility::row_col_to_cell;
 use rust_xlsxwriter::{
-    Color, DataValidation, DataValidationErrorStyle, DataValidationRule, ExcelDateTime, Format, FormatAlign, FormatBorder, Formula, ProtectionOptions, Worksheet,
-    XlsxError,
+    Color, DataValidation, DataValidationErrorStyle, DataValidationRule, ExcelDateTime, Format, FormatAlign, FormatBorder, Formula,
+    ProtectionOptions, Worksheet, XlsxError,
 };
 
 /// Text and rules of the sheets.
@@ -21,7 +21,8 @@ const LIVE: Color = Color::RGB(0xf3_f5f6);
 const LONGEST_LIST: usize = 12;
 
 fn heading() -> Format {
-    let format = Format::new().set_bold().set_font_color(INK).set_background_color(HEAD).set_text_wrap().set_align(FormatAlign::VerticalCenter);
+    let format =
+        Format::new().set_bold().set_font_color(INK).set_background_color(HEAD).set_text_wrap().set_align(FormatAlign::VerticalCenter);
     format.set_border_bottom(FormatBorder::Thin).set_border_bottom_color(RULE)
 }
 
@@ -30,7 +31,14 @@ fn input() -> Format {
 }
 
 fn protect(sheet: &mut Worksheet) {
-    let allowed = ProtectionOptions { format_columns: true, format_rows: true, format_cells: true, sort: true, insert_rows: true, ..ProtectionOptions::default() };
+    let allowed = ProtectionOptions {
+        format_columns: true,
+        format_rows: true,
+        format_cells: true,
+        sort: true,
+        insert_rows: true,
+        ..ProtectionOptions::default()
+    };
     sheet.protect_with_options(&allowed);
 }
 
@@ -53,8 +61,22 @@ pub fn how_to(sheet: &mut Worksheet, options: &Options) -> Result<(), XlsxError>
 /// The Visit sheet: item and entry.
 pub fn visit(sheet: &mut Worksheet, options: &Options) -> Result<(), XlsxError> {
     const ITEMS: [&str; 16] = [
-        "Job number", "Client", "Site address", "Visit date", "Purpose", "Prepared by", "Licence", "Company", "System", "Nominal L-N", "Nominal L-L", "Service rating",
-        "Supplied by", "Code in force", "Weather", "Remarks",
+        "Job number",
+        "Client",
+        "Site address",
+        "Visit date",
+        "Purpose",
+        "Prepared by",
+        "Licence",
+        "Company",
+        "System",
+        "Nominal L-N",
+        "Nominal L-L",
+        "Service rating",
+        "Supplied by",
+        "Code in force",
+        "Weather",
+        "Remarks",
     ];
     sheet.set_name("Visit")?;
     sheet.set_column_width(0, 20)?;
@@ -105,7 +127,9 @@ fn fill(sheet: &mut Worksheet, col: u16, column: &Column, table: &Table, options
     };
     for row in 1..=options.rows {
         match &column.entry {
-            Entry::Live(pattern) => sheet.write_formula_with_format(row, col, Formula::new(formula(pattern, table, row)).set_result(""), &format)?,
+            Entry::Live(pattern) => {
+                sheet.write_formula_with_format(row, col, Formula::new(formula(pattern, table, row)).set_result(""), &format)?
+            }
             _ => sheet.write_blank(row, col, &format)?,
         };
     }
@@ -157,8 +181,14 @@ fn choice(words: &[&str], options: &Options) -> Result<DataValidation, XlsxError
 
 /// Words such as OL and n/a must stay possible, so a number out of the limits gets a question.
 fn number(low: f64, high: f64, options: &Options) -> Result<DataValidation, XlsxError> {
-    let rule = DataValidation::new().allow_decimal_number(DataValidationRule::Between(low, high)).set_error_style(DataValidationErrorStyle::Warning);
-    rule.set_error_message(format!("{} {low}–{high}. {}", options.language.text("blank.ask-number"), options.language.text("blank.ask-words")))
+    let rule = DataValidation::new()
+        .allow_decimal_number(DataValidationRule::Between(low, high))
+        .set_error_style(DataValidationErrorStyle::Warning);
+    rule.set_error_message(format!(
+        "{} {low}–{high}. {}",
+        options.language.text("blank.ask-number"),
+        options.language.text("blank.ask-words")
+    ))
 }
 
 fn date(options: &Options) -> Result<DataValidation, XlsxError> {

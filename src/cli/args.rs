@@ -5,7 +5,11 @@ use std::path::PathBuf;
 
 /// Reads field workbooks of 120/240 V services, says what the readings mean, and writes reports.
 #[derive(Parser)]
-#[command(version, about, after_help = "Readings on live parts are for qualified people. The local code and the authority having jurisdiction decide.")]
+#[command(
+    version,
+    about,
+    after_help = "Readings on live parts are for qualified people. The local code and the authority having jurisdiction decide."
+)]
 pub struct Arguments {
     /// What to do.
     #[command(subcommand)]
@@ -16,13 +20,19 @@ pub struct Arguments {
 #[derive(Subcommand)]
 pub enum Command {
     /// Read and check workbooks; print cell problems and findings
-    #[command(after_help = "Examples:\n  midwire check visit.xlsx\n  midwire check --json visit.xlsx > visit.json\n  midwire check --rules our-limits.toml *.xlsx\n\nExit status: 0 nothing above NOTICE, 1 CAUTION or worse, 2 input that could not be used.")]
+    #[command(
+        after_help = "Examples:\n  midwire check visit.xlsx\n  midwire check --json visit.xlsx > visit.json\n  midwire check --rules our-limits.toml *.xlsx\n\nExit status: 0 nothing above NOTICE, 1 CAUTION or worse, 2 input that could not be used."
+    )]
     Check(Check),
     /// Check workbooks, then write a PDF and an XLSX of each
-    #[command(after_help = "Examples:\n  midwire report visit.xlsx\n  midwire report visit.xlsx -o out --html --page a4\n\nExit status: 0 all written, 2 something was not.")]
+    #[command(
+        after_help = "Examples:\n  midwire report visit.xlsx\n  midwire report visit.xlsx -o out --html --page a4\n\nExit status: 0 all written, 2 something was not."
+    )]
     Report(Report),
     /// Report on every workbook below a folder, in parallel; goes on where it was stopped
-    #[command(after_help = "Examples:\n  midwire batch visits -o reports\n  midwire batch visits -o reports --only '2026-11-*' --jobs 4\n\nExit status: 0 all written, 2 something was not.")]
+    #[command(
+        after_help = "Examples:\n  midwire batch visits -o reports\n  midwire batch visits -o reports --only '2026-11-*' --jobs 4\n\nExit status: 0 all written, 2 something was not."
+    )]
     Batch(Batch),
     /// Write an empty field workbook to fill in
     #[command(after_help = "Examples:\n  midwire blank\n  midwire blank --system 208Y/120 -o shop.xlsx\n\nExit status: 0 written, 2 not.")]

@@ -37,7 +37,8 @@ pub fn run(args: &args::Batch) -> anyhow::Result<u8> {
     let progress = Progress::new(found.len(), args.quiet);
     let mut names = journal.names();
     for portion in found.chunks(threads * PORTION) {
-        let outcomes: Vec<Outcome> = pool.install(|| portion.par_iter().map(|file| work::one(&args.folder, file, &job, &journal, args.force)).collect());
+        let outcomes: Vec<Outcome> =
+            pool.install(|| portion.par_iter().map(|file| work::one(&args.folder, file, &job, &journal, args.force)).collect());
         let written = write(&pool, args, outcomes, &mut names, &mut journal)?;
         for entry in written {
             progress.done(&entry);
@@ -59,7 +60,13 @@ fn fingerprint(args: &args::Batch, look: &report::Look) -> anyhow::Result<String
 }
 
 /// Names a portion's reports in the order of their files, then writes them.
-fn write(pool: &rayon::ThreadPool, args: &args::Batch, outcomes: Vec<Outcome>, names: &mut HashSet<String>, journal: &mut Journal) -> anyhow::Result<Vec<Entry>> {
+fn write(
+    pool: &rayon::ThreadPool,
+    args: &args::Batch,
+    outcomes: Vec<Outcome>,
+    names: &mut HashSet<String>,
+    journal: &mut Journal,
+) -> anyhow::Result<Vec<Entry>> {
     let mut named: Vec<(Option<Rendered>, Entry)> = Vec::with_capacity(outcomes.len());
     for outcome in outcomes {
         match outcome {
@@ -69,7 +76,11 @@ fn write(pool: &rayon::ThreadPool, args: &args::Batch, outcomes: Vec<Outcome>, n
                 let own = journal.name_of(&entry.file).filter(|own| name::base(own) == rendered.wanted).map(str::to_owned);
                 let chosen = own.unwrap_or_else(|| name::unique(&rendered.wanted, names));
                 if chosen != rendered.wanted {
-                    anstream::eprintln!("midwire: {}: another workbook is named {}; its reports are named {chosen}", terminal::line(&entry.file), rendered.wanted);
+                    anstream::eprintln!(
+                        "midwire: {}: another workbook is named {}; its reports are named {chosen}",
+                        terminal::line(&entry.file),
+                        rendered.wanted
+                    );
                 }
                 journal.begin(&chosen)?;
                 entry.name = Some(chosen);

@@ -121,12 +121,18 @@ pub fn write(path: &Path, content: &[u8], force: bool) -> anyhow::Result<()> {
         .prefix(TEMPORARY)
         .tempfile_in(folder)
         .with_context(|| format!("{} can't be written to", folder.display()))?;
-    temporary.write_all(content).and_then(|()| temporary.as_file().sync_all()).with_context(|| format!("{} can't be written", path.display()))?;
+    temporary
+        .write_all(content)
+        .and_then(|()| temporary.as_file().sync_all())
+        .with_context(|| format!("{} can't be written", path.display()))?;
     readable(temporary.as_file());
     if force {
         temporary.persist(path).map_err(|e| e.error).with_context(|| format!("{} can't be written", path.display()))?;
     } else {
-        temporary.persist_noclobber(path).map_err(|e| e.error).with_context(|| format!("{} exists or can't be written; --force replaces it", path.display()))?;
+        temporary
+            .persist_noclobber(path)
+            .map_err(|e| e.error)
+            .with_context(|| format!("{} exists or can't be written; --force replaces it", path.display()))?;
     }
     Ok(())
 }

@@ -46,7 +46,9 @@ fn bounded(name: &str) -> String {
 fn is_device(name: &str) -> bool {
     let upper = name.to_uppercase();
     matches!(upper.as_str(), "CON" | "PRN" | "AUX" | "NUL" | "CONIN$" | "CONOUT$")
-        || ["COM", "LPT"].iter().any(|d| upper.strip_prefix(d).is_some_and(|n| n.chars().count() == 1 && n.chars().all(|c| c.is_ascii_digit() || "¹²³".contains(c))))
+        || ["COM", "LPT"].iter().any(|d| {
+            upper.strip_prefix(d).is_some_and(|n| n.chars().count() == 1 && n.chars().all(|c| c.is_ascii_digit() || "¹²³".contains(c)))
+        })
 }
 
 /// The name itself, or with `-2`, `-3` … where it is taken in this call. Compared without letter case, as some systems do.

@@ -88,7 +88,10 @@ fn write(
     let wanted = name::of(&checked.visit, &stem);
     let chosen = name::unique(&wanted, names);
     if chosen != wanted {
-        anstream::eprintln!("midwire: {}: another workbook of this call is named {wanted}; its reports are named {chosen}", terminal::line(&checked.file));
+        anstream::eprintln!(
+            "midwire: {}: another workbook of this call is named {wanted}; its reports are named {chosen}",
+            terminal::line(&checked.file)
+        );
     }
     let files = pipeline::render(checked, settings, options, args.look.html)?;
     // Refused before anything is written, so that a visit has all of its files or none.

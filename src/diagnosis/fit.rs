@@ -164,8 +164,7 @@ impl<'m, 'a, 't> Descent<'m, 'a, 't> {
         self.model.derivatives(self.task, &self.z)?;
         self.algebra.multiply(self.model);
         let readings = self.model.residuals.len() as f64;
-        self.determinant =
-            self.algebra.normal.factor(&self.algebra.products, self.temperature)? - readings * math::ln(self.temperature);
+        self.determinant = self.algebra.normal.factor(&self.algebra.products, self.temperature)? - readings * math::ln(self.temperature);
         let cost = self.squares / self.temperature + norm(&self.z);
         loop {
             let a = 1.0 + self.damping;
@@ -225,8 +224,7 @@ impl<'m, 'a, 't> Descent<'m, 'a, 't> {
 
     fn end(mut self) -> (Fit, Option<usize>) {
         let cost = self.squares + norm(&self.z);
-        let (either, turned) =
-            if self.temperature > 1.0 { (0.0, None) } else { self.algebra.either_sign(self.model, &self.z) };
+        let (either, turned) = if self.temperature > 1.0 { (0.0, None) } else { self.algebra.either_sign(self.model, &self.z) };
         let evidence = -0.5 * (cost + self.determinant) + self.constant + either;
         (Fit { z: std::mem::take(&mut self.z), cost, evidence, temperature: self.temperature }, turned)
     }

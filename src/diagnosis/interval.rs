@@ -128,7 +128,8 @@ impl<'l, 'a> Bounds<'l, 'a> {
             _ => return None,
         };
         let reduced = &self.levels[self.level].site.reduced;
-        let is_asked = |s: &usize| reduced.network.spans[*s].ohms[slot].is_some() && reduced.runs[*s].iter().any(|r| cause.runs.contains(r));
+        let is_asked =
+            |s: &usize| reduced.network.spans[*s].ohms[slot].is_some() && reduced.runs[*s].iter().any(|r| cause.runs.contains(r));
         let spans: Vec<usize> = (0..reduced.runs.len()).filter(is_asked).collect();
         let runs: usize = spans.iter().map(|s| reduced.runs[*s].len()).sum();
         if runs < cause.runs.len() || spans.is_empty() {
@@ -151,7 +152,7 @@ impl<'l, 'a> Bounds<'l, 'a> {
             return ends(&points(&own.curve), level.all[0].evidence);
         }
         level.model.restart();
-        let curve = Scan { base: &self.task, at }.from_none(&mut level.model, &self.from);
+        let curve = Scan { base: &self.task, at }.upwards(&mut level.model, &self.from);
         ends(&points(&curve), self.from.evidence)
     }
 }

@@ -157,12 +157,8 @@ fn bits(suspects: &[Suspect], values: &[f64]) -> f64 {
 /// Runs that some pair of values, two widths apart, has between it.
 fn told_apart(suspects: &[Suspect], values: &[f64]) -> Vec<usize> {
     let apart = |a: f64, b: f64| (a - b).abs() > 2.0 * width(a, b);
-    let mut runs: Vec<usize> = suspects
-        .iter()
-        .zip(values)
-        .filter(|(_, a)| values.iter().any(|b| apart(**a, *b)))
-        .filter_map(|(s, _)| s.run)
-        .collect();
+    let mut runs: Vec<usize> =
+        suspects.iter().zip(values).filter(|(_, a)| values.iter().any(|b| apart(**a, *b))).filter_map(|(s, _)| s.run).collect();
     runs.sort_unstable();
     runs.dedup();
     runs

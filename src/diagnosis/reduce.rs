@@ -92,7 +92,9 @@ impl Kept {
         let is_short = n <= settings::MOST_RUNS;
         for &run in &tree.order {
             let is_branch = |p: &usize| is_kept[*p] && tree.parent[*p].is_some() && !is_feeder(visit, *p);
-            if let Some(parent) = tree.parent[run].filter(is_branch).filter(|_| is_short && !is_kept[run] && !visit.runs[run].loads.is_empty()) {
+            if let Some(parent) =
+                tree.parent[run].filter(is_branch).filter(|_| is_short && !is_kept[run] && !visit.runs[run].loads.is_empty())
+            {
                 is_kept[run] = true;
                 children[parent] += 1;
             }
@@ -188,11 +190,8 @@ impl Lumps {
         let kind = r.load_kind.as_ref().map(|k| key(k.value));
         let (median, spread) = if legs.neutral { settings::UNLISTED } else { settings::UNLISTED_LINE_LINE };
         let lines: Vec<usize> = legs.iter().map(|l| l.index()).collect();
-        let pairs: Vec<(usize, usize)> = if legs.neutral {
-            lines.iter().map(|&l| (l, SLOTS - 1)).collect()
-        } else {
-            lines.windows(2).map(|w| (w[0], w[1])).collect()
-        };
+        let pairs: Vec<(usize, usize)> =
+            if legs.neutral { lines.iter().map(|&l| (l, SLOTS - 1)).collect() } else { lines.windows(2).map(|w| (w[0], w[1])).collect() };
         for (a, b) in pairs {
             self.by_place.entry((at, a, b, kind)).or_default().add_unstated(median, spread);
         }
@@ -259,7 +258,7 @@ impl Reduced {
         for (&(run, a, b, kind), lump) in &lumps.by_place {
             let Some(at) = self.within[run] else { continue };
             let rated = rated_volts(full, (a, b));
-            if !(rated > 0.0) || [a, b].iter().any(|s| self.network.spans[at].ohms[*s].is_none()) {
+            if rated <= 0.0 || [a, b].iter().any(|s| self.network.spans[at].ohms[*s].is_none()) {
                 continue;
             }
             let (law, rated_volts, power_factor) = lump.law.unwrap_or((Law::Power { exponent: 1.0 }, rated, 1.0));

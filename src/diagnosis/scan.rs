@@ -56,7 +56,7 @@ impl Scan<'_> {
     }
 
     /// Follows the curve up from the fit without added ohms, until it has fallen.
-    pub fn from_none(&self, model: &mut Model, from: &Fit) -> Curve {
+    pub fn upwards(&self, model: &mut Model, from: &Fit) -> Curve {
         let mut curve = Curve::default();
         self.follow(model, &mut curve, from, grid().chain([OPEN]));
         curve

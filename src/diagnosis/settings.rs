@@ -25,10 +25,8 @@ pub(super) struct Trust {
 /// The levels. A careful list: lengths paced out and bends forgotten, 10 to 15 % of ohms with temperature; nameplates, 10 %. A
 /// careless one: lengths and watts guessed within a factor of two (a uniform guess of the logarithm between ½ and 2 spreads by
 /// ln 2·2/√12 = 0.4), now and then a wire size read one or two gauges off (a factor of 1.6 each), a heater not written down.
-pub(super) const TRUST: [Trust; 2] = [
-    Trust { prior: 0.6, ohms: 0.12, watts: 0.10, extra: None },
-    Trust { prior: 0.4, ohms: 0.45, watts: 0.40, extra: Some((4.0, 2.0)) },
-];
+pub(super) const TRUST: [Trust; 2] =
+    [Trust { prior: 0.6, ohms: 0.12, watts: 0.10, extra: None }, Trust { prior: 0.4, ohms: 0.45, watts: 0.40, extra: Some((4.0, 2.0)) }];
 
 /// Watts of a load of which the list says nothing: median, and spread of the logarithm. A lamp to a heater, 20 to 1500 W, is
 /// about ±1.5 such spreads.

@@ -87,7 +87,8 @@ fn circuit(run: &crate::visit::Run) -> Value {
 }
 
 fn finding(f: &Finding, language: &Language) -> Value {
-    let measured = f.measured.map(|m| json!({ "value": rounded(m.value), "uncertainty": m.uncertainty.map(rounded), "unit": m.unit.symbol() }));
+    let measured =
+        f.measured.map(|m| json!({ "value": rounded(m.value), "uncertainty": m.uncertainty.map(rounded), "unit": m.unit.symbol() }));
     json!({
         "rule": f.rule,
         "signal": f.signal.word(),

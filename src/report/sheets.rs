@@ -22,14 +22,18 @@ const DEFAULT: [(&str, &[&str]); 9] = [
 pub(super) fn plan(front: &Front, places: &Places, language: &Language, meta: &Meta) -> Vec<Sheet> {
     let own: Vec<SheetPlan> = DEFAULT
         .iter()
-        .map(|(key, tables)| SheetPlan { name: language.text(&format!("sheets.{key}")), tables: tables.iter().map(|t| (*t).to_owned()).collect() })
+        .map(|(key, tables)| SheetPlan {
+            name: language.text(&format!("sheets.{key}")),
+            tables: tables.iter().map(|t| (*t).to_owned()).collect(),
+        })
         .collect();
     let plans = if front.sheets.is_empty() { &own } else { &front.sheets };
     plans.iter().filter_map(|plan| sheet(plan, places, language, meta)).collect()
 }
 
 fn sheet(plan: &SheetPlan, places: &Places, language: &Language, meta: &Meta) -> Option<Sheet> {
-    let tables: Vec<Arc<Table>> = plan.tables.iter().filter_map(|name| places.tables.iter().find(|t| t.name == *name)).map(Arc::clone).collect();
+    let tables: Vec<Arc<Table>> =
+        plan.tables.iter().filter_map(|name| places.tables.iter().find(|t| t.name == *name)).map(Arc::clone).collect();
     if tables.is_empty() {
         return None;
     }

@@ -79,7 +79,9 @@ impl<'a> Draft<'a> {
     /// The table without the columns in which no row has anything; formulas of what stays lose nothing, since an empty column
     /// yields no number.
     fn finish(mut self) -> Option<Table> {
-        let full: Vec<bool> = (0..self.table.columns.len()).map(|c| self.table.rows.iter().any(|r| r.cells.get(c).is_some_and(|cell| *cell != Cell::Empty))).collect();
+        let full: Vec<bool> = (0..self.table.columns.len())
+            .map(|c| self.table.rows.iter().any(|r| r.cells.get(c).is_some_and(|cell| *cell != Cell::Empty)))
+            .collect();
         let mut keep = full.iter();
         self.table.columns.retain(|_| *keep.next().unwrap_or(&true));
         for row in &mut self.table.rows {

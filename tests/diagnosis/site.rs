@@ -58,9 +58,7 @@ fn run(k: usize, r: &Value) -> Run {
     let text = |key: &str| r[key].as_str().map(|s| Located::new(s.to_owned(), at.clone()));
     let between = [("L1-N", Leg::L1), ("L2-N", Leg::L2), ("L3-N", Leg::L3)].map(|(key, leg)| (key, Between::LineNeutral(leg)));
     let pairs = between.into_iter().chain([("L1-L2", Between::LINE_LINE[0])]);
-    let load = |(key, between): (&str, Between)| {
-        r[key].as_f64().map(|w| Load { between, watts: Located::new(Watts(w), at.clone()) })
-    };
+    let load = |(key, between): (&str, Between)| r[key].as_f64().map(|w| Load { between, watts: Located::new(Watts(w), at.clone()) });
     Run {
         name: text("name").unwrap(),
         fed_from: text("from"),

@@ -107,7 +107,9 @@ impl Journal {
         let mut file = OpenOptions::new().read(true).append(true).create(true).open(&path).with_context(said)?;
         let mut bytes = Vec::new();
         // Two batches never work on one folder; the lock goes with the process, however it ends.
-        file.try_lock().map_err(|_| anyhow::anyhow!("another batch is at work on {}; wait for it, or choose another folder with -o", folder.display()))?;
+        file.try_lock().map_err(|_| {
+            anyhow::anyhow!("another batch is at work on {}; wait for it, or choose another folder with -o", folder.display())
+        })?;
         file.read_to_end(&mut bytes).with_context(said)?;
         let mut journal = Self { path: path.clone(), file, entries: BTreeMap::new(), begun: HashSet::new(), by_name: HashMap::new() };
         for line in bytes.split(|b| *b == b'\n').filter(|l| !l.is_empty()) {

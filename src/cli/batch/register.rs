@@ -67,7 +67,10 @@ fn visits(entries: &[&Entry], language: &Language) -> Table {
     let word = |key: &str| language.text(&format!("register.{key}"));
     let plain = |key: &str, kind| column(key, word(key), None, kind);
     let mut columns = vec![plain("file", ColumnKind::Name), plain("job", ColumnKind::Name)];
-    columns.extend([("client", ColumnKind::Text), ("address", ColumnKind::Text), ("date", ColumnKind::Name), ("worst", ColumnKind::Signal)].map(|(k, t)| plain(k, t)));
+    columns.extend(
+        [("client", ColumnKind::Text), ("address", ColumnKind::Text), ("date", ColumnKind::Name), ("worst", ColumnKind::Signal)]
+            .map(|(k, t)| plain(k, t)),
+    );
     columns.extend(Signal::ALL.iter().rev().map(|s| column(s.word(), s.word().to_owned(), None, ColumnKind::Number)));
     columns.extend([
         plain("cause", ColumnKind::Text),
@@ -85,7 +88,13 @@ fn visits(entries: &[&Entry], language: &Language) -> Table {
 fn visit(entry: &Entry, word: &impl Fn(&str) -> String) -> Vec<Cell> {
     let none = VisitLine::default();
     let v = entry.visit.as_ref().unwrap_or(&none);
-    let mut cells = vec![text(Some(&entry.file)), text(v.job.as_deref()), text(v.client.as_deref()), text(v.address.as_deref()), text(v.date.as_deref())];
+    let mut cells = vec![
+        text(Some(&entry.file)),
+        text(v.job.as_deref()),
+        text(v.client.as_deref()),
+        text(v.address.as_deref()),
+        text(v.date.as_deref()),
+    ];
     cells.push(v.worst.map_or(Cell::Empty, Cell::Signal));
     cells.extend(v.counts.map(count));
     cells.push(text(v.cause.as_deref()));
@@ -124,7 +133,9 @@ fn failures(entries: &[&Entry], language: &Language) -> Table {
 
 fn overview(entries: &[&Entry], language: &Language) -> Table {
     let word = |key: &str| language.text(&format!("register.{key}"));
-    let of = |worst: Option<Signal>| entries.iter().filter(|e| e.status == Status::Written && e.visit.as_ref().is_some_and(|v| v.worst == worst)).count();
+    let of = |worst: Option<Signal>| {
+        entries.iter().filter(|e| e.status == Status::Written && e.visit.as_ref().is_some_and(|v| v.worst == worst)).count()
+    };
     let mut rows: Vec<Vec<Cell>> = Signal::ALL.iter().rev().map(|&s| vec![Cell::Text(s.word().into()), count(of(Some(s)))]).collect();
     rows.push(vec![Cell::Text(word("nothing")), count(of(None))]);
     rows.push(vec![Cell::Text(word("failed")), count(entries.iter().filter(|e| e.status == Status::Failed).count())]);

@@ -154,7 +154,7 @@ fn followed(bench: &mut Bench, at: At) -> Option<Evaluated> {
     let base = Task::default();
     let scan = Scan { base: &base, at };
     bench.model.restart();
-    let curve = scan.from_none(&mut bench.model, &bench.sound);
+    let curve = scan.upwards(&mut bench.model, &bench.sound);
     let node = &curve.nodes[curve.peak()?];
     let (prior, open) = prior(bench.site, at);
     let (task, fit) = (scan.task(node.ohms), node.fit.clone());

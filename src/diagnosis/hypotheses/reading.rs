@@ -17,8 +17,7 @@ pub(super) fn evaluate(bench: &mut Bench) -> Vec<Evaluated> {
     let base = Task::default();
     let (near, temperature) = bench.near.clone();
     let Some(evidence) = without(&mut bench.model, &base, &near, temperature) else { return Vec::new() };
-    let voltages: Vec<usize> =
-        (0..evidence.len()).filter(|&k| bench.model.observations.list[k].quantity.is_voltage()).collect();
+    let voltages: Vec<usize> = (0..evidence.len()).filter(|&k| bench.model.observations.list[k].quantity.is_voltage()).collect();
     let mut order = voltages.clone();
     order.sort_by(|&a, &b| evidence[b].total_cmp(&evidence[a]));
     order.truncate(FITTED);

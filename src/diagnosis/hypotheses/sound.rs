@@ -22,7 +22,8 @@ pub(super) fn bench<'a>(prior: f64, site: &'a Site, mut model: Model<'a>) -> Opt
     let sound = with_unlisted(&mut model, &task, sound);
     let misfit = sound.cost / (EXPLAINS * site.observations.list.len() as f64);
     let temperature = if sound.temperature > 1.0 { sound.temperature } else { misfit.max(1.0) };
-    let near = if sound.temperature <= 1.0 && temperature > 1.0 { fit_hot(&mut model, &task, &start, 6, temperature)? } else { sound.clone() };
+    let near =
+        if sound.temperature <= 1.0 && temperature > 1.0 { fit_hot(&mut model, &task, &start, 6, temperature)? } else { sound.clone() };
     let scores = scores(&mut model, &task, &near, temperature)?;
     Some(Bench { site, model, prior, sound, near: (near, temperature), scores })
 }

@@ -1,10 +1,12 @@
 //! The ranking of causes and the exposure in the JSON document.
 
 use super::rounded;
-use crate::results::{AddedOhms, Cause, CauseKind, Diagnosis, Exposure, LoadStep, NextReading, RepairEvidence, RepairOutcome, SupplyDirection};
+use crate::quantity::{Ohms, Unit};
+use crate::results::{
+    AddedOhms, Cause, CauseKind, Diagnosis, Exposure, LoadStep, NextReading, RepairEvidence, RepairOutcome, SupplyDirection,
+};
 use crate::visit::Visit;
 use crate::wording::{Language, Sentence};
-use crate::quantity::{Ohms, Unit};
 use serde_json::{Map, Value, json};
 
 /// The leading cause, the ranking, and what the readings leave open.

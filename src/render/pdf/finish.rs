@@ -109,7 +109,13 @@ fn destination(placed: &Placed, pages: &Pages, page_ids: &[ObjectId]) -> Vec<Obj
 }
 
 /// The structure tree and the way back from content to it.
-fn structure(pdf: &mut lopdf::Document, flow: &Flow, pages: &Pages, page_ids: &[ObjectId], (root, nodes, links): (ObjectId, &[ObjectId], &[Vec<ObjectId>])) {
+fn structure(
+    pdf: &mut lopdf::Document,
+    flow: &Flow,
+    pages: &Pages,
+    page_ids: &[ObjectId],
+    (root, nodes, links): (ObjectId, &[ObjectId], &[Vec<ObjectId>]),
+) {
     let mut parents: Vec<Option<usize>> = vec![None; nodes.len()];
     for (n, node) in flow.structure.nodes.iter().enumerate() {
         for kid in &node.kids {
@@ -174,7 +180,9 @@ fn element(node: &Node, parent: ObjectId, page_ids: &[ObjectId], nodes: &[Object
         Attribute::None => {}
         Attribute::ColumnScope => element.set("A", dictionary! { "O" => "Table", "Scope" => "Column" }),
         Attribute::Span(columns) => element.set("A", dictionary! { "O" => "Table", "ColSpan" => number(columns) }),
-        Attribute::Numbered(yes) => element.set("A", dictionary! { "O" => "List", "ListNumbering" => if yes { "Decimal" } else { "Disc" } }),
+        Attribute::Numbered(yes) => {
+            element.set("A", dictionary! { "O" => "List", "ListNumbering" => if yes { "Decimal" } else { "Disc" } })
+        }
         Attribute::Box((_, _, w, h)) => {
             let rect: Vec<Object> = [0.0, 0.0, w.min(pages.size.0), h.min(pages.size.1)].map(Object::Real).to_vec();
             element.set("A", dictionary! { "O" => "Layout", "Placement" => "Block", "BBox" => rect });
@@ -212,7 +220,8 @@ fn outline(pdf: &mut lopdf::Document, pages: &Pages, page_ids: &[ObjectId]) -> O
 /// Items of one level, each knowing its neighbours.
 fn chain(pdf: &mut lopdf::Document, items: &[(ObjectId, &Placed)], parent: ObjectId, pages: &Pages, page_ids: &[ObjectId]) {
     for (i, (id, placed)) in items.iter().enumerate() {
-        let mut item = dictionary! { "Title" => text(&placed.target.text), "Parent" => parent, "Dest" => destination(placed, pages, page_ids) };
+        let mut item =
+            dictionary! { "Title" => text(&placed.target.text), "Parent" => parent, "Dest" => destination(placed, pages, page_ids) };
         if let Some((before, _)) = i.checked_sub(1).and_then(|b| items.get(b)) {
             item.set("Prev", *before);
         }

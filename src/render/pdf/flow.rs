@@ -186,7 +186,8 @@ impl<'a> Flow<'a> {
         let span = Span::new(text, colour);
         let lines = shape::shape(std::slice::from_ref(&span), BODY).lines(INDENT * 3.0);
         if let (Some(line), Some(strip)) = (lines.into_iter().next(), self.strips.get_mut(strip)) {
-            let paints = line.runs.into_iter().map(|run| Paint::Text { x: x + run.x, y: baseline(BODY), run: Arc::new(run), colour }).collect();
+            let paints =
+                line.runs.into_iter().map(|run| Paint::Text { x: x + run.x, y: baseline(BODY), run: Arc::new(run), colour }).collect();
             strip.marks.insert(0, Mark { node: Some(node), paints });
         }
     }

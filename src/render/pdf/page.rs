@@ -145,7 +145,13 @@ fn running(document: &Document, pages: &mut Pages) {
     let (width, height) = pages.size;
     let quiet = Colour::Quiet.srgb(meta.accent);
     let count = pages.pages.len();
-    let rule = |y: f32, colour: [u8; 3], w: f32| Paint::Line { points: vec![(SIDE, y), (width - SIDE, y)], width: w, colour, dash: None, round: false };
+    let rule = |y: f32, colour: [u8; 3], w: f32| Paint::Line {
+        points: vec![(SIDE, y), (width - SIDE, y)],
+        width: w,
+        colour,
+        dash: None,
+        round: false,
+    };
     for (i, page) in pages.pages.iter_mut().enumerate() {
         let words = meta.page_words.replace("{page}", &(i + 1).to_string()).replace("{pages}", &count.to_string());
         let half = (width - 2.0 * SIDE) / 2.0 - 6.0;

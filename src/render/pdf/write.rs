@@ -7,9 +7,9 @@ use super::strip::{Paint, Rgb};
 use super::{PdfError, finish};
 use crate::report::document::Document;
 use printpdf::{
-    Codepoint, Color, CurTransMat, DictItem, ExternalStream, ExternalXObject, FontId, Line, LineCapStyle, LineDashPattern, LinePoint, Mm, Op, PaintMode, ParsedFont,
-    PdfDocument, PdfFontHandle, PdfPage, PdfSaveOptions, Point, Polygon, PolygonRing, Pt, RawImage, TextItem, TextMatrix, WindingOrder, XObject, XObjectId,
-    XObjectTransform,
+    Codepoint, Color, CurTransMat, DictItem, ExternalStream, ExternalXObject, FontId, Line, LineCapStyle, LineDashPattern, LinePoint, Mm,
+    Op, PaintMode, ParsedFont, PdfDocument, PdfFontHandle, PdfPage, PdfSaveOptions, Point, Polygon, PolygonRing, Pt, RawImage, TextItem,
+    TextMatrix, WindingOrder, XObject, XObjectId, XObjectTransform,
 };
 use std::collections::{BTreeMap, BTreeSet};
 use subsetter::GlyphRemapper;
@@ -32,7 +32,8 @@ pub(super) fn write(document: &Document, flow: &Flow, pages: &Pages) -> Result<V
         pdf.resources.xobjects.map.insert(image_id(number), image(picture));
     }
     let (width, height) = pages.size;
-    let contents = (0..pages.pages.len()).map(|p| Painter { faces: &faces, pictures: &flow.pictures, height, ops: Vec::new() }.page(pages, flow, p));
+    let contents =
+        (0..pages.pages.len()).map(|p| Painter { faces: &faces, pictures: &flow.pictures, height, ops: Vec::new() }.page(pages, flow, p));
     let pages_out: Vec<PdfPage> = contents.map(|ops| PdfPage::new(Mm::from(Pt(width)), Mm::from(Pt(height)), ops)).collect();
     pdf.with_pages(pages_out);
     let options = PdfSaveOptions { optimize: false, subset_fonts: false, secure: true, image_optimization: None };
@@ -103,7 +104,8 @@ fn image(picture: &Picture) -> XObject {
 }
 
 fn grey() -> XObject {
-    let dict = [("Type", "XObject"), ("Subtype", "Image"), ("ColorSpace", "DeviceGray")].map(|(k, v)| (k.to_owned(), DictItem::Name(v.as_bytes().to_vec())));
+    let dict = [("Type", "XObject"), ("Subtype", "Image"), ("ColorSpace", "DeviceGray")]
+        .map(|(k, v)| (k.to_owned(), DictItem::Name(v.as_bytes().to_vec())));
     let numbers = [("Width", 1), ("Height", 1), ("BitsPerComponent", 8)].map(|(k, v)| (k.to_owned(), DictItem::Int(v)));
     let stream = ExternalStream { dict: dict.into_iter().chain(numbers).collect(), content: vec![0xdd], compress: false };
     XObject::External(ExternalXObject { stream, width: None, height: None, dpi: None })
@@ -208,7 +210,10 @@ impl Painter<'_> {
         let matrix = placed(picture.orientation, x, self.height - y - height, width, height);
         self.ops.push(Op::SaveGraphicsState);
         self.ops.push(Op::SetTransformationMatrix { matrix: CurTransMat::Raw(matrix) });
-        self.ops.push(Op::UseXobject { id: image_id(number), transform: XObjectTransform { no_auto_scale: true, ..XObjectTransform::default() } });
+        self.ops.push(Op::UseXobject {
+            id: image_id(number),
+            transform: XObjectTransform { no_auto_scale: true, ..XObjectTransform::default() },
+        });
         self.ops.push(Op::RestoreGraphicsState);
     }
 }

@@ -4,8 +4,8 @@ use super::{Draft, name, names, number, opt, text};
 use crate::quantity::Unit;
 use crate::report::Source;
 use crate::report::document::{Cell, ColumnKind, Number, Table};
-use crate::results::{AddedOhms, NextReading};
 use crate::report::words;
+use crate::results::{AddedOhms, NextReading};
 use crate::wording::{Language, Sentence};
 
 /// Causes below this probability are summed up, not listed.
@@ -22,7 +22,11 @@ pub(super) fn causes(source: &Source, language: &Language) -> Option<Table> {
     let ranking = &source.diagnosis?.ranking;
     for (i, cause) in ranking.iter().enumerate().filter(|(i, c)| *i == 0 || c.probability >= WORTH_LISTING) {
         let _ = i;
-        draft.row(vec![text(&words::cause(source, cause, language)), number(100.0 * cause.probability, 1), opt(cause.ohms, |o| text(&ohms(&o, language)))]);
+        draft.row(vec![
+            text(&words::cause(source, cause, language)),
+            number(100.0 * cause.probability, 1),
+            opt(cause.ohms, |o| text(&ohms(&o, language))),
+        ]);
     }
     let rest: f64 = ranking.iter().skip(1).filter(|c| c.probability < WORTH_LISTING).map(|c| c.probability).sum();
     if rest > 0.0005 {
@@ -67,7 +71,12 @@ pub(super) fn next(source: &Source, language: &Language) -> Option<Table> {
         .column("state", ColumnKind::Text, None)
         .column("tells-apart", ColumnKind::Text, None);
     for n in &source.diagnosis?.next {
-        let cells = vec![text(&name(source, n.run)), text(&n.quantity.to_string()), text(&load_state(n, language)), text(&names(source, &n.tells_apart))];
+        let cells = vec![
+            text(&name(source, n.run)),
+            text(&n.quantity.to_string()),
+            text(&load_state(n, language)),
+            text(&names(source, &n.tells_apart)),
+        ];
         draft.row(cells);
     }
     draft.finish()

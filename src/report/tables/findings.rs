@@ -74,7 +74,9 @@ pub(in crate::report) fn limit(f: &Finding, language: &Language) -> String {
     let (Some(limit), Some(m)) = (f.limit, f.measured) else { return String::new() };
     let show = |v: f64| language.quantity(v, decimals(v, m.uncertainty), m.unit);
     match limit {
-        Limit { low: Some(low), high: Some(high) } if low > 0.0 || m.value < 0.0 => format!("{} {} {}", show(low), language.text("report.to"), show(high)),
+        Limit { low: Some(low), high: Some(high) } if low > 0.0 || m.value < 0.0 => {
+            format!("{} {} {}", show(low), language.text("report.to"), show(high))
+        }
         Limit { high: Some(high), .. } => format!("{} {}", language.text("report.at-most"), show(high)),
         Limit { low: Some(low), high: None } => format!("{} {}", language.text("report.at-least"), show(low)),
         Limit { .. } => String::new(),
@@ -124,6 +126,12 @@ pub(super) fn left_out(source: &Source, language: &Language) -> Option<Table> {
 }
 
 /// A number with what is known of it.
-pub(super) fn judged(value: f64, decimals: u8, uncertainty: Option<f64>, verdict: Option<Verdict>, cell: Option<crate::diag::CellRef>) -> Number {
+pub(super) fn judged(
+    value: f64,
+    decimals: u8,
+    uncertainty: Option<f64>,
+    verdict: Option<Verdict>,
+    cell: Option<crate::diag::CellRef>,
+) -> Number {
     Number { value, decimals, uncertainty, verdict, cell, formula: None }
 }

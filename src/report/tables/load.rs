@@ -53,10 +53,11 @@ fn heaviest_first(balance: &Balance) -> Vec<usize> {
 
 /// The suggested moves.
 pub(super) fn moves(source: &Source, language: &Language) -> Option<Table> {
-    let mut draft = Draft::new("moves", language)
-        .column("circuit", ColumnKind::Name, None)
-        .column("from", ColumnKind::Name, None)
-        .column("to", ColumnKind::Name, None);
+    let mut draft = Draft::new("moves", language).column("circuit", ColumnKind::Name, None).column("from", ColumnKind::Name, None).column(
+        "to",
+        ColumnKind::Name,
+        None,
+    );
     for m in &source.balance?.moves {
         draft.row(vec![text(&name(source, m.run)), text(&m.from), text(&m.to)]);
     }

@@ -92,7 +92,10 @@ fn off_nominal(source: &Source, row: &ReadingRow, leg: Leg) -> Cell {
     let quantity = Quantity::line_neutral(leg);
     let (Some(value), Some(nominal)) = (row.value(quantity), source.visit.system.nominal(quantity)) else { return Cell::Empty };
     let ratio = Formula::Divide(column(quantity), Box::new(Formula::Constant(nominal.0)));
-    let formula = Formula::Multiply(Box::new(Formula::Subtract(Box::new(ratio), Box::new(Formula::Constant(1.0)))), Box::new(Formula::Constant(100.0)));
+    let formula = Formula::Multiply(
+        Box::new(Formula::Subtract(Box::new(ratio), Box::new(Formula::Constant(1.0)))),
+        Box::new(Formula::Constant(100.0)),
+    );
     Cell::Number(Number { formula: Some(formula), ..Number::new((value / nominal.0 - 1.0) * 100.0, 1) })
 }
 

@@ -14,10 +14,13 @@ pub(super) fn instruments(source: &Source, language: &Language) -> Option<Table>
         .column("calibrated-until", ColumnKind::Name, None)
         .column("accuracy", ColumnKind::Text, None);
     for i in &source.visit.instruments {
-        let accuracy = i.accuracy().map_or_else(|| language.text("report.not-stated"), |a| {
-            let counts = format!("±({} % + {} × {})", trimmed(a.percent), trimmed(a.counts), trimmed(a.resolution));
-            counts.replace('.', &language.number(0.5, 1)[1..2])
-        });
+        let accuracy = i.accuracy().map_or_else(
+            || language.text("report.not-stated"),
+            |a| {
+                let counts = format!("±({} % + {} × {})", trimmed(a.percent), trimmed(a.counts), trimmed(a.resolution));
+                counts.replace('.', &language.number(0.5, 1)[1..2])
+            },
+        );
         draft.row(vec![
             text(&i.name.value),
             text(&language.text(&format!("report.{}", i.measures.value.name()))),
@@ -106,7 +109,11 @@ pub(super) fn revisions(source: &Source, language: &Language) -> Option<Table> {
         .column("date", ColumnKind::Name, None)
         .column("reason", ColumnKind::Text, None);
     for r in &source.visit.revisions {
-        draft.row(vec![text(&r.issue.value), opt(r.date.as_ref(), |d| text(&d.value.to_string())), opt(r.reason.as_ref(), |t| text(&t.value))]);
+        draft.row(vec![
+            text(&r.issue.value),
+            opt(r.date.as_ref(), |d| text(&d.value.to_string())),
+            opt(r.reason.as_ref(), |t| text(&t.value)),
+        ]);
     }
     draft.finish()
 }

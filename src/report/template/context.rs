@@ -172,8 +172,30 @@ impl Context {
 
 /// Tables and figures a template may ask for with `has`, so that asking is no error where there is none.
 const HAS: [&str; 24] = [
-    "summary", "findings", "basis", "left-out", "causes", "not-shown", "next", "exposure", "load-steps", "readings", "before-after", "circuits", "legs",
-    "leg-circuits", "moves", "instruments", "tests", "observations", "work", "revisions", "neutral-position", "run-tree", "leg-load", "photos",
+    "summary",
+    "findings",
+    "basis",
+    "left-out",
+    "causes",
+    "not-shown",
+    "next",
+    "exposure",
+    "load-steps",
+    "readings",
+    "before-after",
+    "circuits",
+    "legs",
+    "leg-circuits",
+    "moves",
+    "instruments",
+    "tests",
+    "observations",
+    "work",
+    "revisions",
+    "neutral-position",
+    "run-tree",
+    "leg-load",
+    "photos",
 ];
 
 fn collect(prefix: &str, value: &toml::Value, names: &mut Vec<String>) {
@@ -235,7 +257,11 @@ fn groups(source: &Source, language: &Language) -> Vec<Group> {
         let undecided = f.verdict == Verdict::Undecided;
         let same = |g: &&mut Group| g.rule == f.rule && g.signal == f.signal.word() && g.undecided == undecided && g.advice == advice;
         if let Some(group) = groups.iter_mut().find(same) {
-            if group.items.len() < MOST_ITEMS { group.items.push(item(f, language)) } else { group.more += 1 }
+            if group.items.len() < MOST_ITEMS {
+                group.items.push(item(f, language))
+            } else {
+                group.more += 1
+            }
             continue;
         }
         let title = source.rules.iter().find(|r| r.rule == f.rule).map_or_else(|| f.rule.to_owned(), |r| r.title.clone());
@@ -256,7 +282,11 @@ fn groups(source: &Source, language: &Language) -> Vec<Group> {
 fn item(f: &Finding, language: &Language) -> Item {
     let cells: Vec<String> = f.cells.iter().take(4).map(ToString::to_string).collect();
     let more = f.cells.len() - cells.len();
-    let cells = if more > 0 { format!("{} {}", cells.join(", "), language.say(&Sentence::new("report.and-more").with("n", more))) } else { cells.join(", ") };
+    let cells = if more > 0 {
+        format!("{} {}", cells.join(", "), language.say(&Sentence::new("report.and-more").with("n", more)))
+    } else {
+        cells.join(", ")
+    };
     Item {
         says: language.say(&f.says),
         location: f.location.clone().unwrap_or_default(),
@@ -292,7 +322,8 @@ fn causes(source: &Source, d: &Diagnosis, language: &Language) -> Option<Causes>
     use crate::results::{CauseKind, RepairOutcome};
     let lead = d.ranking.first()?;
     let name = |r: &usize| source.visit.runs.get(*r).map(|r| r.name.value.clone());
-    let open: Vec<String> = d.neutral.iter().filter(|n| n.high.is_none() && !lead.runs.contains(&n.run)).filter_map(|n| name(&n.run)).collect();
+    let open: Vec<String> =
+        d.neutral.iter().filter(|n| n.high.is_none() && !lead.runs.contains(&n.run)).filter_map(|n| name(&n.run)).collect();
     let repair = d.repair.as_ref().map(|r| match r.outcome {
         RepairOutcome::Proven => "report.repair-proven",
         RepairOutcome::NotRepaired => "report.repair-not",

@@ -84,7 +84,8 @@ impl Builder<'_> {
 
     /// A line end is a blank; behind the first line of a callout it ends the title.
     fn soft_break(&mut self) {
-        let quoted = self.stack.len().checked_sub(2).and_then(|i| self.stack.get(i)).is_some_and(|f| matches!(f.kind, Kind::Quote(Some(_))));
+        let quoted =
+            self.stack.len().checked_sub(2).and_then(|i| self.stack.get(i)).is_some_and(|f| matches!(f.kind, Kind::Quote(Some(_))));
         if quoted { self.title() } else { self.text(" ") }
     }
 

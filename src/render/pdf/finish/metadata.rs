@@ -15,7 +15,11 @@ pub(super) fn xmp(meta: &Meta) -> Stream {
         let _ = write!(rdf, "<dc:creator><rdf:Seq><rdf:li>{}</rdf:li></rdf:Seq></dc:creator>", escaped(&meta.author));
     }
     if !meta.subject.is_empty() {
-        let _ = write!(rdf, "<dc:description><rdf:Alt><rdf:li xml:lang=\"x-default\">{}</rdf:li></rdf:Alt></dc:description>", escaped(&meta.subject));
+        let _ = write!(
+            rdf,
+            "<dc:description><rdf:Alt><rdf:li xml:lang=\"x-default\">{}</rdf:li></rdf:Alt></dc:description>",
+            escaped(&meta.subject)
+        );
     }
     if let Some(date) = day(meta) {
         let _ = write!(rdf, "<xmp:CreateDate>{date}T00:00:00Z</xmp:CreateDate><xmp:ModifyDate>{date}T00:00:00Z</xmp:ModifyDate>");
@@ -49,13 +53,20 @@ pub(super) fn info(meta: &Meta) -> Dictionary {
 fn day(meta: &Meta) -> Option<&str> {
     let date = meta.date.as_deref()?;
     let digits = |s: &str| s.bytes().all(|b| b.is_ascii_digit());
-    let fits = date.len() == 10 && date.is_ascii() && digits(&date[..4]) && &date[4..5] == "-" && digits(&date[5..7]) && &date[7..8] == "-" && digits(&date[8..]);
+    let fits = date.len() == 10
+        && date.is_ascii()
+        && digits(&date[..4])
+        && &date[4..5] == "-"
+        && digits(&date[5..7])
+        && &date[7..8] == "-"
+        && digits(&date[8..]);
     fits.then_some(date)
 }
 
 /// The file's identifier: the first half of the input's hash, so that the same input yields the same file.
 pub(super) fn identifier(meta: &Meta) -> Object {
-    let digits: Vec<u8> = meta.input_sha256.bytes().filter_map(|b| char::from(b).to_digit(16)).filter_map(|d| u8::try_from(d).ok()).collect();
+    let digits: Vec<u8> =
+        meta.input_sha256.bytes().filter_map(|b| char::from(b).to_digit(16)).filter_map(|d| u8::try_from(d).ok()).collect();
     let mut bytes: Vec<u8> = digits.chunks_exact(2).take(16).map(|pair| pair[0] << 4 | pair[1]).collect();
     bytes.resize(16, 0);
     Object::String(bytes, StringFormat::Hexadecimal)

@@ -54,7 +54,8 @@ impl Flow<'_> {
         }
         strip.height = strip.height.max(2.0 * top + count * BODY * LEADING);
         let y = strip.height;
-        let rule = Paint::Line { points: vec![(x, y), (x + width, y)], width: 0.4, colour: self.colour(Colour::Faint), dash: None, round: false };
+        let rule =
+            Paint::Line { points: vec![(x, y), (x + width, y)], width: 0.4, colour: self.colour(Colour::Faint), dash: None, round: false };
         strip.marks.push(Mark { node: None, paints: vec![rule] });
     }
 
@@ -76,7 +77,8 @@ impl Flow<'_> {
                         self.set(&mut strip, line, spans, (x, y), node);
                     }
                 }
-                let rule = Paint::Line { points: vec![(x, SIGN), (x + half, SIGN)], width: 0.6, colour: self.ink(), dash: None, round: false };
+                let rule =
+                    Paint::Line { points: vec![(x, SIGN), (x + half, SIGN)], width: 0.6, colour: self.ink(), dash: None, round: false };
                 strip.marks.push(Mark { node: None, paints: vec![rule] });
             }
             self.strips.push(strip);

@@ -73,7 +73,8 @@ fn jpeg(bytes: &[u8]) -> Option<((u32, u32), u8)> {
         if matches!(marker, 0xc0..=0xcf) && !matches!(marker, 0xc4 | 0xc8 | 0xcc) {
             let frame = bytes.get(at + 5..at + 10)?;
             let pair = |a: u8, b: u8| u32::from(u16::from_be_bytes([a, b]));
-            return (matches!(frame[4], 1 | 3) && bytes.get(at + 4) == Some(&8)).then(|| ((pair(frame[2], frame[3]), pair(frame[0], frame[1])), frame[4]));
+            return (matches!(frame[4], 1 | 3) && bytes.get(at + 4) == Some(&8))
+                .then(|| ((pair(frame[2], frame[3]), pair(frame[0], frame[1])), frame[4]));
         }
         at += 2 + length.max(2);
     }
@@ -109,7 +110,14 @@ impl Flow<'_> {
         }
     }
 
-    fn photo(&mut self, strip: &mut Strip, photo: &CaptionedImage, picture: Option<Picture>, (x, base, room, (w, h)): (f32, f32, f32, (f32, f32)), parent: usize) {
+    fn photo(
+        &mut self,
+        strip: &mut Strip,
+        photo: &CaptionedImage,
+        picture: Option<Picture>,
+        (x, base, room, (w, h)): (f32, f32, f32, (f32, f32)),
+        parent: usize,
+    ) {
         let node = self.structure.add(parent, "Figure");
         self.structure.nodes[node].alt = Some(photo.image.alt.clone());
         self.structure.nodes[node].attribute = Attribute::Box((x, base - h, w, h));
@@ -119,7 +127,9 @@ impl Flow<'_> {
                 Paint::Image { x, y: base - h, width: w, height: h, image: self.pictures.len() - 1 }
             }
             // A file that is no picture after all: an empty frame above its caption says so.
-            None => Paint::Shape { outline: rectangle(x, base - h, w, h, 0.0), fill: None, stroke: Some((0.6, self.colour(Colour::Quiet))) },
+            None => {
+                Paint::Shape { outline: rectangle(x, base - h, w, h, 0.0), fill: None, stroke: Some((0.6, self.colour(Colour::Quiet))) }
+            }
         };
         strip.marks.push(Mark { node: Some(node), paints: vec![paint] });
         let caption = self.structure.add(node, "Caption");

@@ -157,7 +157,11 @@ fn scaled(line: Line, k: f32) -> Line {
         x: r.x * k,
         width: r.width * k,
         size: r.size * k,
-        glyphs: r.glyphs.into_iter().map(|g| super::super::shape::Glyph { advance: g.advance * k, offset: (g.offset.0 * k, g.offset.1 * k), ..g }).collect(),
+        glyphs: r
+            .glyphs
+            .into_iter()
+            .map(|g| super::super::shape::Glyph { advance: g.advance * k, offset: (g.offset.0 * k, g.offset.1 * k), ..g })
+            .collect(),
         ..r
     };
     Line { width: line.width * k, runs: line.runs.into_iter().map(run).collect() }

@@ -55,7 +55,12 @@ impl Columns {
 
     fn share(table: &Table, least: &[f32], most: &[f32], behind: Vec<f32>, room: f32) -> Self {
         let inner = (room - PADDING * least.len() as f32).max(1.0);
-        let wish: Vec<f32> = table.columns.iter().zip(least.iter().zip(most)).map(|(c, (l, m))| if c.kind == ColumnKind::Text { l.max(m.min(TEXT)) } else { *l }).collect();
+        let wish: Vec<f32> = table
+            .columns
+            .iter()
+            .zip(least.iter().zip(most))
+            .map(|(c, (l, m))| if c.kind == ColumnKind::Text { l.max(m.min(TEXT)) } else { *l })
+            .collect();
         let needed: f32 = wish.iter().sum();
         let bare: f32 = least.iter().sum();
         let scale = if needed <= inner { 1.0 } else { (inner / bare.max(1.0)).clamp(SMALLEST, 1.0).min((inner / needed).max(0.85)) };
