@@ -27,7 +27,7 @@ pub use settings::DiagnosisSettings;
 
 use crate::network;
 use crate::quantity::Ohms;
-use crate::results::{Cause, Diagnosis, NeutralInterval};
+use crate::results::{Cause, CauseKind, Diagnosis, NeutralInterval};
 use crate::visit::{Stage, Visit};
 use evidence::{Weighed, rank};
 use hypotheses::evaluate;
@@ -66,18 +66,6 @@ fn examine(visit: &Visit, stage: Stage, settings: &DiagnosisSettings, about: Opt
     let sites: Vec<(f64, Site)> =
         settings::TRUST.iter().map(|t| Some((t.prior, Site::new(visit, stage, settings, t)?))).collect::<Option<_>>()?;
     let mut levels = evaluate(&sites)?;
-    if std::env::var("DEBUG").is_ok() {
-        for level in &levels {
-            for e in &level.all {
-                eprintln!("{:?} ev {:.2} cost {:.1} peak {:?}", e.hypothesis, e.evidence, e.fit.cost, e.task.added.first().map(|a| a.ohms));
-                if std::env::var("CURVE").is_ok() {
-                    for n in &e.curve.nodes {
-                        eprintln!("     {:.2} {:.2} {:.1}", n.ohms, n.fit.evidence, n.fit.cost);
-                    }
-                }
-            }
-        }
-    }
     let mut ranked = rank(visit, &levels);
     for weighed in &mut ranked {
         weighed.cause.ohms = interval::of_cause(&levels, weighed);
@@ -92,10 +80,21 @@ fn examine(visit: &Visit, stage: Stage, settings: &DiagnosisSettings, about: Opt
 /// Causes below this probability are left out of the ranking, and what they had is shared out.
 const LISTED: f64 = 1e-4;
 
+/// How many times as probable as nothing wrong a cause must be to be named: one that is named has somebody open a wall or call
+/// the utility; one that is not still stands in the ranking, and is not ruled out.
+const NAMED: f64 = 1.5;
+
+/// The ranking: most probable first, but for "nothing wrong", which stands first where no cause is that much more probable.
 fn listed(ranked: Vec<Weighed>) -> Vec<Cause> {
     let mut causes: Vec<Cause> = ranked.into_iter().map(|w| w.cause).filter(|c| c.probability >= LISTED).collect();
     let total: f64 = causes.iter().map(|c| c.probability).sum();
     causes.iter_mut().for_each(|c| c.probability /= total);
+    if let Some(sound) = causes.iter().position(|c| c.kind == CauseKind::None)
+        && causes[0].probability < NAMED * causes[sound].probability
+    {
+        let sound = causes.remove(sound);
+        causes.insert(0, sound);
+    }
     causes
 }
 

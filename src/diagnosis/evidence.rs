@@ -3,6 +3,7 @@
 use super::hypotheses::{Evaluated, Hypothesis};
 use super::model::Model;
 use super::scan::log_sum;
+use super::settings::MOST_RUNS;
 use super::site::Site;
 use crate::network::SLOTS;
 use crate::quantity::math;
@@ -31,18 +32,33 @@ pub(super) struct Level<'a> {
     pub all: Vec<Evaluated>,
 }
 
+/// The hypotheses of one cause, with their weights.
+struct Group {
+    kind: CauseKind,
+    class: Option<usize>,
+    members: Vec<(f64, (usize, usize))>,
+}
+
+impl Group {
+    fn weighed(mut self, levels: &[Level], total: f64) -> Weighed {
+        self.members.sort_by(|a, b| b.0.total_cmp(&a.0));
+        let runs = self.class.map_or_else(Vec::new, |c| runs_of(levels[0].site, &self.kind, c));
+        let weights: Vec<f64> = self.members.iter().map(|m| m.0).collect();
+        let probability = math::exp(log_sum(&weights) - total);
+        let members = self.members.into_iter().map(|m| m.1).collect();
+        Weighed { cause: Cause { kind: self.kind, runs, probability, ohms: None }, members }
+    }
+}
+
 /// Groups the hypotheses of all levels into causes and ranks them.
 pub(super) fn rank(visit: &Visit, levels: &[Level]) -> Vec<Weighed> {
-    let mut groups: Vec<(CauseKind, Option<usize>, Vec<(usize, usize)>, Vec<f64>)> = Vec::new();
-    let mut add = |kind: CauseKind, class: Option<usize>, member: (usize, usize), weight: f64| match groups
-        .iter_mut()
-        .find(|g| g.0 == kind && g.1 == class)
-    {
-        Some(group) => {
-            group.2.push(member);
-            group.3.push(weight);
+    let mut groups: Vec<Group> = Vec::new();
+    let mut add = |kind: CauseKind, class: Option<usize>, member: (usize, usize), weight: f64| {
+        let same = groups.iter_mut().find(|g| g.kind == kind && g.class == class);
+        match same {
+            Some(group) => group.members.push((weight, member)),
+            None => groups.push(Group { kind, class, members: vec![(weight, member)] }),
         }
-        None => groups.push((kind, class, vec![member], vec![weight])),
     };
     for (l, level) in levels.iter().enumerate() {
         for (k, e) in level.all.iter().enumerate() {
@@ -51,20 +67,11 @@ pub(super) fn rank(visit: &Visit, levels: &[Level]) -> Vec<Weighed> {
             add(kind, class, (l, k), math::ln(level.prior * e.prior) + e.evidence);
         }
     }
-    let mut hidden = hidden(visit, levels);
-    let total = log_sum(&groups.iter().flat_map(|g| g.3.iter().copied()).chain(hidden.iter().map(|h| h.2)).collect::<Vec<_>>());
-    let mut ranked: Vec<Weighed> = groups
-        .into_iter()
-        .map(|(kind, class, members, weights)| {
-            let mut order: Vec<usize> = (0..members.len()).collect();
-            order.sort_by(|&a, &b| weights[b].total_cmp(&weights[a]));
-            let runs = class.map_or_else(Vec::new, |c| runs_of(levels[0].site, &kind, c));
-            let probability = math::exp(log_sum(&weights) - total);
-            let members = order.into_iter().map(|k| members[k]).collect();
-            Weighed { cause: Cause { kind, runs, probability, ohms: None }, members }
-        })
-        .collect();
-    ranked.extend(hidden.drain(..).map(|(kind, runs, weight)| Weighed {
+    let hidden = hidden(visit, levels);
+    let weights = groups.iter().flat_map(|g| g.members.iter().map(|m| m.0)).chain(hidden.iter().map(|h| h.2));
+    let total = log_sum(&weights.collect::<Vec<_>>());
+    let mut ranked: Vec<Weighed> = groups.into_iter().map(|g| g.weighed(levels, total)).collect();
+    ranked.extend(hidden.into_iter().map(|(kind, runs, weight)| Weighed {
         cause: Cause { kind, runs, probability: math::exp(weight - total), ohms: None },
         members: Vec::new(),
     }));
@@ -81,7 +88,8 @@ fn hidden(visit: &Visit, levels: &[Level]) -> Vec<(CauseKind, Vec<usize>, f64)> 
     let mut groups: BTreeMap<(usize, usize), (Vec<usize>, f64)> = BTreeMap::new();
     let mut top = vec![None; visit.runs.len()];
     for &run in visit.tree.order.iter().filter(|r| site.reduced.attached[**r] != Some(**r)) {
-        top[run] = visit.tree.parent[run].and_then(|p| top[p]).or(Some(run));
+        let branch = if visit.runs.len() > MOST_RUNS { site.reduced.attached[run] } else { Some(run) };
+        top[run] = visit.tree.parent[run].and_then(|p| top[p]).or(branch);
     }
     for &run in &visit.tree.order {
         let Some(at) = top[run] else { continue };

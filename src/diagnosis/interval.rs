@@ -57,11 +57,13 @@ fn pooled(levels: &[Level], weighed: &Weighed) -> Option<Vec<(f64, f64)>> {
 }
 
 fn pool(levels: &[Level], hypothesis: Hypothesis) -> Option<Vec<(f64, f64)>> {
-    let of_level = |l: &Level| {
-        let e = l.all.iter().find(|e| e.hypothesis == hypothesis)?;
-        (!e.curve.nodes.is_empty()).then(|| (math::ln(l.prior), e.curve.clone()))
+    let of_level = |l: &'_ Level| {
+        let k = l.all.iter().position(|e| e.hypothesis == hypothesis && !e.curve.nodes.is_empty())?;
+        Some((math::ln(l.prior), k))
     };
-    let curves: Vec<(f64, Curve)> = levels.iter().filter_map(of_level).collect();
+    let found: Vec<Option<(f64, usize)>> = levels.iter().map(of_level).collect();
+    let curves: Vec<(f64, &Curve)> =
+        levels.iter().zip(&found).filter_map(|(l, f)| f.map(|(weight, k)| (weight, &l.all[k].curve))).collect();
     let mut ohms: Vec<f64> = curves.iter().flat_map(|c| c.1.nodes.iter().map(|n| n.ohms)).collect();
     ohms.sort_by(f64::total_cmp);
     ohms.dedup();
@@ -150,7 +152,7 @@ impl<'l, 'a> Bounds<'l, 'a> {
             return ends(&points(&own.curve), level.all[0].evidence);
         }
         level.model.restart();
-        let curve = Scan { base: &self.task, at }.from_none(&mut level.model, &self.from);
+        let curve = Scan { base: &self.task, at }.upwards(&mut level.model, &self.from);
         ends(&points(&curve), self.from.evidence)
     }
 }

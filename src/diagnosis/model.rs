@@ -3,7 +3,7 @@
 use super::observation::Observations;
 use super::parameter::{Parameter, Target};
 use super::reduce::Reduced;
-use super::settings::{ADDED, EXPONENT_RANGE};
+use super::settings::{ADDED, EXPONENT_RANGE, MOST_WORK};
 use crate::network::{Gradient, Law, Network, Observed, SLOTS, SolveSettings, Span, Workspace};
 use crate::quantity::math;
 use crate::visit::{Conductor, Quantity};
@@ -74,6 +74,7 @@ pub(super) struct Model<'a> {
     jacobian: Vec<f64>,
     /// Unknowns of the present task.
     width: usize,
+    work: f64,
 }
 
 impl<'a> Model<'a> {
@@ -95,6 +96,7 @@ impl<'a> Model<'a> {
             residuals: vec![0.0; m],
             jacobian: Vec::new(),
             width: 0,
+            work: 0.0,
         })
     }
 
@@ -128,8 +130,13 @@ impl<'a> Model<'a> {
         }
     }
 
-    /// Computes the residuals; returns their sum of squares, `None` where the network was not solved.
+    /// Computes the residuals; returns their sum of squares, `None` where the network was not solved or the work is used up.
     pub fn residuals(&mut self, task: &Task, z: &[f64]) -> Option<f64> {
+        let size = (self.network.spans.len() * SPAN_WORK + self.network.loads.len() * LOAD_WORK) as f64;
+        self.work += size * self.spaces.len() as f64;
+        if self.work > MOST_WORK {
+            return None;
+        }
         self.width = self.parameters.len() + usize::from(task.has_unknown());
         self.unknowns.clear();
         for (k, z) in z.iter().enumerate().take(self.width) {
@@ -240,6 +247,8 @@ impl<'a> Model<'a> {
 
     /// Computes the derivatives at the last residuals.
     pub fn derivatives(&mut self, task: &Task, z: &[f64]) -> Option<()> {
+        let (m, n) = (self.observations.list.len() as f64, self.width as f64);
+        self.work += m * (n + (self.network.spans.len() * SPAN_WORK / 4) as f64) + m * m * (n + m / 3.0) / 2.0;
         self.jacobian.clear();
         self.jacobian.resize(self.observations.list.len() * self.width, 0.0);
         debug_assert_eq!(z.len(), self.width);
@@ -334,6 +343,10 @@ pub(super) fn exponent(x: f64) -> (f64, f64) {
     let range = EXPONENT_RANGE.1 - EXPONENT_RANGE.0;
     (EXPONENT_RANGE.0 + range * share, range * share * (1.0 - share))
 }
+
+/// Operations to solve for a span and for a load, about.
+const SPAN_WORK: usize = 400;
+const LOAD_WORK: usize = 200;
 
 /// Standard deviations by which a reading falls short before its other sign is tried.
 const DOUBT: f64 = 3.0;

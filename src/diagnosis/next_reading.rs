@@ -20,6 +20,8 @@ const MOST_CAUSES: usize = 8;
 const WORTH: f64 = 0.02;
 /// Places tried, at most.
 const MOST_PLACES: usize = 6;
+/// Runs times places tried, at most.
+const MOST_SPANS: usize = 6000;
 /// Readings proposed, at most: to tell causes apart, and in all.
 const MOST_TELLING: usize = 3;
 const MOST: usize = 8;
@@ -78,7 +80,8 @@ fn telling(visit: &Visit, network: &Network, suspects: &[Suspect]) -> Vec<NextRe
     }
     let mut places: Vec<usize> = suspects.iter().filter_map(|s| s.run).collect();
     places.dedup();
-    places.truncate(MOST_PLACES);
+    // On lists of thousands of runs each trial takes its time.
+    places.truncate((MOST_SPANS / network.spans.len().max(1)).min(MOST_PLACES));
     let mut all = Vec::new();
     for &run in &places {
         let Some(legs) = visit.runs[run].legs.as_ref().map(|l| l.value) else { continue };

@@ -1,7 +1,7 @@
 //! The readings as observations of the reduced network.
 
 use super::reduce::Reduced;
-use super::settings::{DRIFT, MOST_ROWS, SCATTER};
+use super::settings::{DRIFT, MOST_READINGS, SCATTER};
 use crate::diag::CellRef;
 use crate::network::Observed;
 use crate::quantity::math;
@@ -48,7 +48,7 @@ pub(super) struct Observations {
     pub gains: Vec<f64>,
 }
 
-/// The rows of a stage that can be used: at a run that hangs on the source, with a number. At most [`MOST_ROWS`].
+/// The rows of a stage that can be used: at a run that hangs on the source, with a number. At most [`MOST_READINGS`] readings.
 pub(super) fn usable_rows(visit: &Visit, stage: Stage) -> Vec<&ReadingRow> {
     let mut is_fed = vec![false; visit.runs.len()];
     for &run in &visit.tree.order {
@@ -57,8 +57,13 @@ pub(super) fn usable_rows(visit: &Visit, stage: Stage) -> Vec<&ReadingRow> {
     let has_number = |row: &&ReadingRow| row.readings.iter().any(|r| r.value.value().is_some());
     let is_fed = |row: &&ReadingRow| row.run.is_some_and(|r| is_fed.get(r) == Some(&true));
     let rows: Vec<&ReadingRow> = visit.rows.iter().filter(|r| r.stage == stage).filter(is_fed).filter(has_number).collect();
+    let readings: usize = rows.iter().map(|r| r.readings.len()).sum();
+    if readings <= MOST_READINGS {
+        return rows;
+    }
     let n = rows.len();
-    if n <= MOST_ROWS { rows } else { (0..MOST_ROWS).map(|k| rows[k * n / MOST_ROWS]).collect() }
+    let kept = (n * MOST_READINGS / readings).max(1);
+    (0..kept).map(|k| rows[k * n / kept]).collect()
 }
 
 /// Observations of the rows on the reduced network.

@@ -38,6 +38,8 @@ pub(super) struct Reduced {
     pub runs: Vec<Vec<usize>>,
     /// The span whose far end is the run's far end, where it is one.
     pub end: Vec<Option<usize>>,
+    /// The span a kept run is part of.
+    pub within: Vec<Option<usize>>,
     /// The kept run at whose far end a run's loads hang; itself for kept ones, `None` for runs that hang loose.
     pub attached: Vec<Option<usize>>,
     /// Set that a span belongs to: spans with the same measured locations at or below them, named by the lowest of them.
@@ -56,6 +58,7 @@ pub(super) fn reduce(visit: &Visit, measured: &[bool], settings: &DiagnosisSetti
         loads: Vec::new(),
         runs: Vec::new(),
         end: vec![None; visit.runs.len()],
+        within: vec![None; visit.runs.len()],
         attached: kept.attached.clone(),
         class: Vec::new(),
         common: 0,
@@ -86,9 +89,12 @@ impl Kept {
                 children[parent] += 1;
             }
         }
+        let is_short = n <= settings::MOST_RUNS;
         for &run in &tree.order {
             let is_branch = |p: &usize| is_kept[*p] && tree.parent[*p].is_some() && !is_feeder(visit, *p);
-            if let Some(parent) = tree.parent[run].filter(is_branch).filter(|_| !is_kept[run] && !visit.runs[run].loads.is_empty()) {
+            if let Some(parent) =
+                tree.parent[run].filter(is_branch).filter(|_| is_short && !is_kept[run] && !visit.runs[run].loads.is_empty())
+            {
                 is_kept[run] = true;
                 children[parent] += 1;
             }
@@ -215,7 +221,8 @@ impl Reduced {
             if legs_of(&spans[run]).is_none() {
                 continue;
             }
-            let leads_on = visit.tree.parent[run].is_some() && !measured[run] && kept.children[run] == 1 && !has_load(run);
+            let is_bare = !has_load(run) || visit.runs.len() > settings::MOST_RUNS;
+            let leads_on = visit.tree.parent[run].is_some() && !measured[run] && kept.children[run] == 1 && is_bare;
             let kind_of = |r: usize| spans[r].ohms.map(|o| o.is_some());
             let only = visit.tree.children[run].iter().find(|c| kept.is_kept[**c]);
             if leads_on && spans[run].electrode.is_none() && only.is_some_and(|&c| kind_of(c) == kind_of(run)) {
@@ -228,6 +235,7 @@ impl Reduced {
     /// Adds the span that ends with a run and begins at the next one above it that ends a span.
     fn add_span(&mut self, visit: &Visit, spans: &[Span], run: usize) {
         let mut span = spans[run].clone();
+        let at = self.network.spans.len();
         let mut runs = vec![run];
         let mut above = visit.tree.parent[run];
         while let Some(p) = above.filter(|p| self.end[*p].is_none()) {
@@ -236,19 +244,21 @@ impl Reduced {
                 span.reactance[s] += spans[p].reactance[s];
             }
             runs.push(p);
+            self.within[p] = Some(at);
             above = visit.tree.parent[p];
         }
         span.fed_from = above.and_then(|p| self.end[p]);
-        self.end[run] = Some(self.network.spans.len());
+        self.end[run] = Some(at);
+        self.within[run] = Some(at);
         self.network.spans.push(span);
         self.runs.push(runs);
     }
 
     fn add_loads(&mut self, lumps: &Lumps, full: &Network) {
         for (&(run, a, b, kind), lump) in &lumps.by_place {
-            let Some(at) = self.end[run] else { continue };
+            let Some(at) = self.within[run] else { continue };
             let rated = rated_volts(full, (a, b));
-            if !(rated > 0.0) || [a, b].iter().any(|s| self.network.spans[at].ohms[*s].is_none()) {
+            if rated <= 0.0 || [a, b].iter().any(|s| self.network.spans[at].ohms[*s].is_none()) {
                 continue;
             }
             let (law, rated_volts, power_factor) = lump.law.unwrap_or((Law::Power { exponent: 1.0 }, rated, 1.0));

@@ -50,9 +50,16 @@ fn is_same(found: &Cause, other: &Cause) -> bool {
 
 /// Cells of the readings at or below the runs found faulty, of both stages.
 fn cells(visit: &Visit, found: &Cause) -> Vec<CellRef> {
-    let concerns = |run: usize| found.runs.is_empty() || visit.tree.path_up(run).any(|r| found.runs.contains(&r));
+    let mut is_below = vec![found.runs.is_empty(); visit.runs.len()];
+    let mut is_faulty = vec![false; visit.runs.len()];
+    found.runs.iter().for_each(|r| is_faulty[*r] = true);
+    for &run in &visit.tree.order {
+        is_below[run] |= is_faulty[run] || visit.tree.parent[run].is_some_and(|p| is_below[p]);
+    }
+    let is_below = &is_below;
+    let concerns = |run: usize| is_below.get(run) == Some(&true);
     let of_stage = |stage: Stage| {
-        let rows = visit.rows.iter().filter(move |r| r.stage == stage && r.run.is_some_and(concerns));
+        let rows = visit.rows.iter().filter(move |r| r.stage == stage && r.run.is_some_and(&concerns));
         rows.flat_map(|r| r.readings.iter().map(|x| x.cell.clone())).take(MOST_CELLS / 2)
     };
     of_stage(Stage::AsFound).chain(of_stage(Stage::AsLeft)).collect()

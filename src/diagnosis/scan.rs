@@ -56,7 +56,7 @@ impl Scan<'_> {
     }
 
     /// Follows the curve up from the fit without added ohms, until it has fallen.
-    pub fn from_none(&self, model: &mut Model, from: &Fit) -> Curve {
+    pub fn upwards(&self, model: &mut Model, from: &Fit) -> Curve {
         let mut curve = Curve::default();
         self.follow(model, &mut curve, from, grid().chain([OPEN]));
         curve
@@ -196,11 +196,6 @@ impl Curve {
             }
             _ => f64::NEG_INFINITY,
         }
-    }
-
-    /// Best ln evidence.
-    pub fn height(&self) -> f64 {
-        self.peak().map_or(f64::NEG_INFINITY, |p| self.nodes[p].fit.evidence)
     }
 
     /// ln of the evidence averaged over the prior of the added ohms: log-uniform, and a share for open.

@@ -78,18 +78,25 @@ pub(super) const TWO_WIRE: f64 = 5.0;
 
 /// Probability of each kind of cause before any reading. A diagnosis is asked for where something was noticed; what is noticed
 /// with lights that brighten and dim is a neutral more often than all else together, and one visit in three finds nothing.
-pub(super) const PRIOR_SOUND: f64 = 0.28;
+pub(super) const PRIOR_SOUND: f64 = 0.25;
 /// Of a neutral that legs share, over all runs with one.
-pub(super) const PRIOR_NEUTRAL: f64 = 0.44;
+pub(super) const PRIOR_NEUTRAL: f64 = 0.48;
 /// Of a hot leg, over all of them.
 pub(super) const PRIOR_HOT: f64 = 0.12;
 /// Of the supply, low or high.
-pub(super) const PRIOR_SUPPLY: f64 = 0.08;
+pub(super) const PRIOR_SUPPLY: f64 = 0.075;
 /// Of a misread value, over all voltage readings.
-pub(super) const PRIOR_READING: f64 = 0.08;
+pub(super) const PRIOR_READING: f64 = 0.075;
 
 /// A misread voltage stands anywhere within so many volts: digits swapped or slipped.
 pub(super) const MISREAD: f64 = 60.0;
 
-/// Rows of readings used, at most; further ones are taken evenly out of all.
-pub(super) const MOST_ROWS: usize = 60;
+/// Readings used, at most; of more, rows are taken evenly out of all. The cost of a fit grows with their square.
+pub(super) const MOST_READINGS: usize = 150;
+
+/// Runs up to which a list is taken as it is; of longer ones loads on the way are moved to the end of their span, and what hangs
+/// unmeasured on one place is one.
+pub(super) const MOST_RUNS: usize = 400;
+
+/// Arithmetic operations spent on one level of trust, at most: some seconds. An ordinary visit takes a fiftieth.
+pub(super) const MOST_WORK: f64 = 2e9;

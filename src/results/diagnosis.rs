@@ -7,7 +7,8 @@ use crate::visit::{Leg, Quantity};
 /// Which cause explains the readings, and what they leave open. Runs are positions in the circuit list.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Diagnosis {
-    /// Causes with their probabilities, most probable first; they add to 1. The first is the answer.
+    /// Causes with their probabilities, most probable first; they add to 1. The first is the answer: nothing wrong, where no cause
+    /// is clearly more probable than that.
     pub ranking: Vec<Cause>,
     /// Added neutral resistance the readings allow in every run with a neutral, 95 %.
     pub neutral: Vec<NeutralInterval>,

@@ -52,7 +52,8 @@ pub(super) fn evaluate(benches: &mut [Bench], levels: &mut [Vec<Evaluated>]) {
     let Some(follows) = follows else { return };
     for &at in all.iter().filter(|at| found.iter().all(|f| f.0 != **at)) {
         let bench = &mut benches[follows];
-        let one = if at.1 == SLOTS - 1 { followed(bench, at) } else { to_first_order(bench, at) };
+        let followed = (at.1 == SLOTS - 1).then(|| followed(bench, at)).flatten();
+        let one = followed.or_else(|| to_first_order(bench, at));
         let Some(one) = one else { continue };
         let over = one.evidence - bench.sound.evidence;
         for (bench, level) in benches.iter().zip(&mut *levels) {
@@ -153,7 +154,7 @@ fn followed(bench: &mut Bench, at: At) -> Option<Evaluated> {
     let base = Task::default();
     let scan = Scan { base: &base, at };
     bench.model.restart();
-    let curve = scan.from_none(&mut bench.model, &bench.sound);
+    let curve = scan.upwards(&mut bench.model, &bench.sound);
     let node = &curve.nodes[curve.peak()?];
     let (prior, open) = prior(bench.site, at);
     let (task, fit) = (scan.task(node.ohms), node.fit.clone());
