@@ -10,6 +10,7 @@ mod outline;
 mod prose;
 #[path = "report/samples.rs"]
 mod samples;
+#[expect(dead_code, reason = "the fixtures also say what is expected of a rule, which the rules' own tests look at")]
 #[path = "rules/site.rs"]
 mod site;
 #[path = "report/tables.rs"]

@@ -111,7 +111,9 @@ impl Made {
     }
 
     pub fn findings(&self) -> Vec<Finding> {
-        midwire::rules::check(&self.fixture.facts(), &Rulebook::built_in())
+        let book = Rulebook::built_in();
+        let book = if self.fixture.book.is_empty() { book } else { book.overlay(&self.fixture.book, "fixture").unwrap() };
+        midwire::rules::check(&self.fixture.facts(), &book)
     }
 
     pub fn report(&self, file: &str, template: &str) -> Result<Document, TemplateError> {

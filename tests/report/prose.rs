@@ -2,9 +2,11 @@
 
 use crate::made::Made;
 use crate::outline;
+use midwire::report::BUILT_IN_TEMPLATES;
 use midwire::report::document::{Block, Document};
 use std::collections::BTreeSet;
 use std::fmt::Write as _;
+use std::path::Path;
 
 /// No gaps, no leftovers, no wrong plurals; tables whole; link targets unique.
 pub fn holds_together(document: &Document, what: &str) {
@@ -92,6 +94,19 @@ fn nothing_measured() {
         let text = whole(&Made::of(""), template);
         assert!(text.contains("Nothing was measured that could be judged"), "{text}");
         assert!(!text.contains("unsafe"), "{text}");
+    }
+}
+
+#[test]
+fn findings_of_every_rule_read_well() {
+    let rules = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/rules");
+    let folders = std::fs::read_dir(rules).unwrap().map(|e| e.unwrap().path()).filter(|p| p.is_dir());
+    let fixtures = folders.flat_map(|f| std::fs::read_dir(f).unwrap().map(|e| e.unwrap().path()));
+    for path in fixtures.filter(|p| p.extension().is_some_and(|e| e == "toml")) {
+        let made = Made::of(&std::fs::read_to_string(&path).unwrap());
+        for (template, _, _) in BUILT_IN_TEMPLATES {
+            holds_together(&made.built_in(template), &format!("{template} of {}", path.display()));
+        }
     }
 }
 
