@@ -63,7 +63,7 @@ fn every_template_holds_together_over_every_sample() {
 fn what_a_repair_settled_asks_for_nothing() {
     let checked = checked("service-call.xlsx");
     let text = outline::document(&report(checked, "client"));
-    assert!(text.contains("[NOTICE] Nothing unsafe was found"), "the fault was mended on the visit");
+    assert!(text.contains("[NOTICE] Nothing unsafe is left"), "the fault was mended on the visit");
     assert!(text.contains("<b>Mended on this visit.</b>"));
     assert!(!text.contains("## What to do"));
 }

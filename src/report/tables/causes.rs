@@ -22,14 +22,15 @@ pub(super) fn causes(source: &Source, language: &Language) -> Option<Table> {
         .column("probability", ColumnKind::Number, Some(Unit::Percent))
         .column("ohms", ColumnKind::Text, None);
     let ranking = &source.diagnosis?.ranking;
-    for (_, cause) in ranking.iter().enumerate().filter(|(i, c)| *i == 0 || c.probability >= WORTH_LISTING) {
+    let (first, others) = ranking.split_first()?;
+    for cause in std::iter::once(first).chain(others.iter().filter(|c| c.probability >= WORTH_LISTING)) {
         draft.row(vec![
             text(&words::cause(source, cause, language)),
             probability(cause.probability, language),
             opt(cause.ohms, |o| text(&ohms(&o, language))),
         ]);
     }
-    let rest: f64 = ranking.iter().skip(1).filter(|c| c.probability < WORTH_LISTING).map(|c| c.probability).sum();
+    let rest: f64 = others.iter().filter(|c| c.probability < WORTH_LISTING).map(|c| c.probability).sum();
     if rest > 0.0005 {
         draft.row(vec![text(&language.text("table-causes.rest")), number(100.0 * rest, 1), Cell::Empty]);
     }
