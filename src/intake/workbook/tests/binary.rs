@@ -84,8 +84,8 @@ fn numbers() -> [Vec<u8>; 3] {
     [119.6f64.to_le_bytes().to_vec(), ((1196u32 << 2) | 3).to_le_bytes().to_vec(), ((46_279u32 << 2) | 2).to_le_bytes().to_vec()]
 }
 
-#[test]
-fn every_form_of_a_cell() {
+/// A workbook with every form of a cell.
+pub fn every_form() -> Vec<u8> {
     let [long, hundredths, whole] = numbers();
     let formula = [0, 0, 3, 0, 0, 0, 0x1e, 1, 0];
     let cells = [
@@ -113,6 +113,11 @@ fn every_form_of_a_cell() {
         next(17, 0, &text("")),
         next(18, 0, &[1, 0, 0, 0]),
     ];
+    xlsb(&sheet(&cells), false)
+}
+
+#[test]
+fn every_form_of_a_cell() {
     let expected = [
         "B1 11.96",
         "C1 day 46279.0000",
@@ -132,7 +137,7 @@ fn every_form_of_a_cell() {
         "E3 119.6",
         r#"G3 "L1-N bold""#,
     ];
-    let book = book(&xlsb(&sheet(&cells), false));
+    let book = book(&every_form());
     assert_eq!(shown(&book.sheets[0]), expected);
     assert_eq!(book.sheets[0].hidden_rows, [1]);
 }
