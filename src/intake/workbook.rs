@@ -1,9 +1,8 @@
 //! Bytes to grid: the only place that knows the formats of workbooks.
 //!
-//! Every format is read by a streaming reader of its own rather than through a library for spreadsheets, for two reasons. What a
-//! stranger's file may cost is bounded ([`bounds`]): libraries make room for what a file states about itself, and on a false
-//! statement they take gigabytes, abort or hang. And the grid needs what they leave out: hidden rows and columns, formulas without
-//! a stored result, the difference between a moment and an elapsed time.
+//! What a stranger's file may cost is bounded ([`bounds`]), and the grid needs hidden rows and columns, formulas without a stored
+//! result, and the difference between a moment and an elapsed time. So the structure of every format is read here, as a stream. The
+//! cells of xlsb are then read by calamine, from a checked package of our own making; those of the other formats are read at once.
 
 mod archive;
 mod binary;

@@ -1,6 +1,7 @@
 //! Workbooks of other writers, read cell by cell; and files made to break a reader.
 
 mod another;
+mod binary;
 mod formats;
 mod hostile;
 mod package;

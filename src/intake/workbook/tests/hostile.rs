@@ -1,5 +1,6 @@
 //! Files made to break a reader: each is refused by the bound it exceeds or for what is broken, or costs what it holds.
 
+use super::binary::every_form;
 use super::package::{names, ods, xlsx, zip, zip_repeated};
 use super::{book, made, refusal, shown};
 use crate::intake::Content;
@@ -224,21 +225,35 @@ fn spoiled_files_never_panic() {
     }
 }
 
-/// Most spoiled packages fail by a checksum alone; so the parts are spoiled and packed again.
+/// Most spoiled packages fail by a checksum alone; so a part whose name ends so is spoiled and packed again, so many times.
+fn spoil_parts(package: &[u8], ending: &str, times: usize, random: &mut Random) {
+    let archive = Archive::open(package).unwrap();
+    let parts: Vec<(String, Vec<u8>)> =
+        names(package).into_iter().map(|name| (name.clone(), archive.whole(&name, 1 << 20).unwrap().unwrap())).collect();
+    let victims: Vec<usize> = (0..parts.len()).filter(|i| parts[*i].0.ends_with(ending)).collect();
+    for _ in 0..times {
+        let victim = victims[random.below(victims.len())];
+        let spoiled = spoil(&parts[victim].1, random);
+        let parts =
+            parts.iter().enumerate().map(|(i, (name, bytes))| (name.as_str(), if i == victim { &spoiled } else { bytes }.as_slice()));
+        survives(&zip(&parts.collect::<Vec<_>>()));
+    }
+}
+
 #[test]
 fn spoiled_parts_never_panic() {
     let mut random = Random(1900);
     for bytes in [made!("kinds.xlsx"), made!("kinds.xlsm"), made!("hand.ods"), made!("kinds.ods"), made!("plain.xlsb")] {
-        let archive = Archive::open(bytes).unwrap();
-        let parts: Vec<(String, Vec<u8>)> =
-            names(bytes).into_iter().map(|name| (name.clone(), archive.whole(&name, 1 << 20).unwrap().unwrap())).collect();
-        for _ in 0..400 {
-            let victim = random.below(parts.len());
-            let spoiled = spoil(&parts[victim].1, &mut random);
-            let parts =
-                parts.iter().enumerate().map(|(i, (name, bytes))| (name.as_str(), if i == victim { &spoiled } else { bytes }.as_slice()));
-            survives(&zip(&parts.collect::<Vec<_>>()));
-        }
+        spoil_parts(bytes, "", 400, &mut random);
+    }
+}
+
+/// The library that reads the cells of binary parts must not meet what was spoiled.
+#[test]
+fn spoiled_records_never_panic() {
+    let mut random = Random(1954);
+    for bytes in [made!("plain.xlsb"), &every_form()] {
+        spoil_parts(bytes, ".bin", 2000, &mut random);
     }
 }
 
