@@ -6,7 +6,9 @@ pub use json::{document as json_document, refusal as json_refusal};
 
 use crate::balance::{self, BalanceSettings};
 use crate::diag::Problem;
+use crate::diagnosis::{self, DiagnosisSettings};
 use crate::intake::{self, Beside, Content, Input, Refusal};
+use crate::network::{self, NetworkSettings};
 use crate::render;
 use crate::report::document::{Document, PageSize};
 use crate::report::{self, RuleBasis, Source, TemplateError};
@@ -23,13 +25,23 @@ pub struct Settings {
     pub rulebook: Rulebook,
     /// How the legs' balance is judged.
     pub balance: BalanceSettings,
+    /// What the network is taken to be where the workbook is silent.
+    pub network: NetworkSettings,
+    /// Priors and bounds of the diagnosis.
+    pub diagnosis: DiagnosisSettings,
     /// The words.
     pub language: Language,
 }
 
 impl Default for Settings {
     fn default() -> Self {
-        Self { rulebook: Rulebook::built_in(), balance: BalanceSettings::default(), language: Language::english() }
+        Self {
+            rulebook: Rulebook::built_in(),
+            balance: BalanceSettings::default(),
+            network: NetworkSettings::default(),
+            diagnosis: DiagnosisSettings::default(),
+            language: Language::english(),
+        }
     }
 }
 
@@ -90,7 +102,8 @@ pub fn check(input: &Input, beside: &dyn Beside, settings: &Settings) -> Result<
     let read = intake::read(input, &intake::Options { beside, mapping: None })?;
     let visit = read.value;
     let balance = balance::balance(&visit, &settings.balance);
-    let (diagnosis, exposure) = (None, Vec::new());
+    let diagnosis = diagnosis::diagnose(&visit, &settings.diagnosis);
+    let exposure = network::exposure(&visit, &settings.network);
     let facts = Facts { visit: &visit, balance: balance.as_ref(), diagnosis: diagnosis.as_ref(), exposure: &exposure };
     let findings = rules::check(&facts, &settings.rulebook);
     Ok(Checked { file: input.name.to_owned(), sha256, visit, problems: read.problems, findings, balance, diagnosis, exposure })

@@ -6,8 +6,10 @@
 pub mod document;
 pub mod drawing;
 
+mod duties;
 mod facts;
-mod figures;
+pub mod figures;
+mod repair;
 mod sheets;
 mod tables;
 mod template;

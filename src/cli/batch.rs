@@ -73,7 +73,7 @@ fn write(
             Outcome::Unchanged => {}
             Outcome::Failed(entry) => named.push((None, *entry)),
             Outcome::Rendered(rendered, mut entry) => {
-                let own = journal.name_of(&entry.file).filter(|own| name::base(own) == rendered.wanted).map(str::to_owned);
+                let own = journal.name_of(&entry.file).filter(|own| name::is_of(own, &rendered.wanted)).map(str::to_owned);
                 let chosen = own.unwrap_or_else(|| name::unique(&rendered.wanted, names));
                 if chosen != rendered.wanted {
                     anstream::eprintln!(

@@ -65,10 +65,11 @@ pub fn unique(name: &str, taken: &mut HashSet<String>) -> String {
     candidate
 }
 
-/// The name without the number that told it from others.
+/// The name is the wanted one, as it is or with a number that told it from others.
 #[must_use]
-pub fn base(name: &str) -> &str {
-    name.rsplit_once('-').filter(|(_, n)| n.parse::<u32>().is_ok_and(|n| n >= 2)).map_or(name, |(base, _)| base)
+pub fn is_of(name: &str, wanted: &str) -> bool {
+    let number = name.strip_prefix(wanted).map(|rest| rest.strip_prefix('-').map_or(rest.is_empty(), |n| n.parse::<u32>().is_ok()));
+    number == Some(true)
 }
 
 #[cfg(test)]
@@ -91,6 +92,12 @@ mod tests {
         assert_eq!(bounded("COM1"), "COM1_report");
         assert_eq!(bounded(&"x".repeat(500)).chars().count(), LONGEST);
         assert_eq!(bounded("--"), "report");
+    }
+
+    #[test]
+    fn a_number_behind_a_name_is_told_from_a_date() {
+        assert!(is_of("A_2026-09-14", "A_2026-09-14") && is_of("A_2026-09-14-2", "A_2026-09-14"));
+        assert!(!is_of("B", "A") && !is_of("A-b", "A"));
     }
 
     #[test]

@@ -9,7 +9,7 @@ mod number;
 mod wire;
 
 pub(super) use legs::{LegsText, legs};
-pub(super) use name::{poles_as_date, written_time};
+pub(super) use name::{larger_first, poles_as_date, written_time};
 pub(super) use number::Expected;
 
 use super::grid::Value;

@@ -91,15 +91,6 @@ impl Sheet {
         self.cells.chunk_by(|a, b| a.row == b.row).map(|cells| (cells[0].row, cells))
     }
 
-    /// The value at a position, or that of the merged area the position lies in.
-    #[must_use]
-    pub fn merged_value(&self, row: u32, col: u32) -> Option<&Value> {
-        self.get(row, col).or_else(|| {
-            let area = self.merged.iter().find(|a| (a.top..=a.bottom).contains(&row) && (a.left..=a.right).contains(&col))?;
-            self.get(area.top, area.left)
-        })
-    }
-
     /// Reference to a cell of this sheet.
     #[must_use]
     pub fn at(&self, row: u32, col: u32) -> CellRef {

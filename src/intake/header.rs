@@ -170,5 +170,15 @@ fn split(sheet: &Sheet, words: &Words, texts: &BTreeMap<u32, String>, rows: (u32
             return each;
         }
     }
-    found(texts).into_iter().collect()
+    let whole = found(texts);
+    halves(texts, whole.as_ref())
+        .and_then(|[left, right]| Some(vec![found(&left)?, found(&right)?]))
+        .unwrap_or_else(|| whole.into_iter().collect())
+}
+
+/// The two halves of a header that names its columns twice, as panel schedules do for the two sides of a panel.
+fn halves(texts: &BTreeMap<u32, String>, whole: Option<&Found>) -> Option<[BTreeMap<u32, String>; 2]> {
+    let cut = whole?.layouts.iter().flat_map(|l| &l.second).map(|(col, _)| *col).min()?;
+    let part = |keep: &dyn Fn(u32) -> bool| texts.iter().filter(|(col, _)| keep(**col)).map(|(c, t)| (*c, t.clone())).collect();
+    Some([part(&|col| col < cut), part(&|col| col >= cut)])
 }

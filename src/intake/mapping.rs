@@ -25,13 +25,45 @@
 use super::header::What;
 use super::words::{Kind, Words};
 use crate::quantity::parse::unit_word;
-use crate::rulebook::RulebookProblem;
-use crate::wording::{Arg, Sentence};
+use crate::wording::{Arg, Language, Sentence};
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
-/// One thing wrong with a mapping file: file, line, key, what stood there, what was expected.
-pub type MappingProblem = RulebookProblem;
+/// One thing wrong with a mapping file.
+#[derive(Clone, Debug, PartialEq)]
+pub struct MappingProblem {
+    /// The file as named by the caller.
+    pub file: String,
+    /// Line, from 1.
+    pub line: usize,
+    /// The key with its tables, dotted: `readings.Location`; empty for the file as a whole.
+    pub key: String,
+    /// What stood there, as text of bounded length.
+    pub found: String,
+    /// What was expected.
+    pub expected: Sentence,
+    /// The known name nearest to what stood there.
+    pub nearest: Option<String>,
+}
+
+impl MappingProblem {
+    /// The problem in one line: file, line, key, what stood there, what was expected.
+    #[must_use]
+    pub fn say(&self, language: &Language) -> String {
+        let sentence = Sentence::new(if self.key.is_empty() { "mapping.problem-in-file" } else { "mapping.problem" })
+            .with("file", self.file.as_str())
+            .with("line", self.line)
+            .with("key", self.key.as_str())
+            .with("found", self.found.as_str())
+            .with("expected", self.expected.clone());
+        let mut line = language.say(&sentence);
+        if let Some(nearest) = &self.nearest {
+            line.push(' ');
+            line.push_str(&language.say(&Sentence::new("intake.did-you-mean").with("likely", nearest.as_str())));
+        }
+        line
+    }
+}
 
 /// A user's words and entries, laid over the built-in ones.
 #[derive(Clone, Debug)]
@@ -55,7 +87,7 @@ impl Mapping {
         let (document, errors) = DeTable::parse_recoverable(text);
         for error in &errors {
             let at = error.span().map_or(0, |span| span.start);
-            let expected = Sentence::new("rulebook.expected-toml").with("message", error.message());
+            let expected = Sentence::new("mapping.expected-toml").with("message", error.message());
             reader.problem(at, "", reader.line_text(at), expected, None);
         }
         // After a syntax error the rest is guesswork.
@@ -187,7 +219,7 @@ impl Reader<'_> {
     fn table<'t, 'i>(&mut self, path: &str, value: &'t Value<'i>) -> Option<&'t DeTable<'i>> {
         let table = value.get_ref().as_table();
         if table.is_none() {
-            self.wrong(path, value, Sentence::new("rulebook.expected-table"));
+            self.wrong(path, value, Sentence::new("mapping.expected-table"));
         }
         table
     }
@@ -204,7 +236,7 @@ impl Reader<'_> {
         };
         let text = text.filter(|t| !t.is_empty());
         if text.is_none() {
-            self.wrong(path, value, Sentence::new("rulebook.expected-text"));
+            self.wrong(path, value, Sentence::new("mapping.expected-text"));
         }
         text
     }
@@ -220,7 +252,7 @@ impl Reader<'_> {
         let lower: Vec<String> = known.iter().map(|k| k.to_lowercase()).collect();
         let near = super::words::nearest(&found.to_lowercase(), lower.iter().map(String::as_str));
         let near = near.and_then(|n| lower.iter().position(|l| l == n)).and_then(|i| known.get(i)).map(|n| (*n).to_owned());
-        let expected = Sentence::new("rulebook.expected-one-of").with("known", known.iter().map(|k| Arg::from(*k)).collect::<Vec<_>>());
+        let expected = Sentence::new("mapping.expected-one-of").with("known", known.iter().map(|k| Arg::from(*k)).collect::<Vec<_>>());
         self.problem(at, path, found.to_owned(), expected, near);
     }
 
@@ -232,7 +264,7 @@ impl Reader<'_> {
     fn problem(&mut self, at: usize, path: &str, found: String, expected: Sentence, nearest: Option<String>) {
         let shown = |text: &str| text.chars().take(SHOWN).collect::<String>();
         let found = shown(found.lines().next().unwrap_or_default());
-        self.problems.push(RulebookProblem { file: self.file.to_owned(), line: self.line(at), key: shown(path), found, expected, nearest });
+        self.problems.push(MappingProblem { file: self.file.to_owned(), line: self.line(at), key: shown(path), found, expected, nearest });
     }
 
     /// The line of a position, from 1.

@@ -5,7 +5,6 @@ mod circuits;
 mod layouts;
 mod mapping;
 mod others;
-mod samples;
 mod scale;
 mod values;
 mod visit;

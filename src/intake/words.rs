@@ -85,6 +85,7 @@ pub(super) enum Column {
     Quantity,
     Value,
     Unit,
+    Reckoned,
     Test,
     Observation,
     SignalWord,
@@ -128,7 +129,14 @@ struct Section {
 }
 
 #[derive(Deserialize)]
+struct LeaveOut {
+    sheets: Vec<String>,
+}
+
+#[derive(Deserialize)]
+#[serde(rename_all = "kebab-case")]
 struct File {
+    leave_out: LeaveOut,
     items: BTreeMap<Item, Vec<String>>,
     heads: BTreeMap<HeadWord, Vec<String>>,
     entries: BTreeMap<String, BTreeMap<String, Vec<String>>>,
@@ -139,7 +147,7 @@ struct File {
 /// Words for one kind of thing: normalised spelling → thing, and the name each thing goes by.
 #[derive(Clone, Debug)]
 pub(super) struct Names<T> {
-    spellings: HashMap<String, T>,
+    spellings: HashMap<String, (T, usize)>,
     labels: BTreeMap<T, String>,
 }
 
@@ -147,8 +155,8 @@ impl<T: Copy + Ord> Names<T> {
     fn new(lists: BTreeMap<T, Vec<String>>) -> Self {
         let mut names = Self { spellings: HashMap::new(), labels: BTreeMap::new() };
         for (thing, words) in lists {
-            for word in &words {
-                names.spellings.entry(normal(word)).or_insert(thing);
+            for (rank, word) in words.iter().enumerate() {
+                names.spellings.entry(normal(word)).or_insert((thing, rank));
             }
             names.labels.extend(words.into_iter().next().map(|label| (thing, label)));
         }
@@ -157,7 +165,12 @@ impl<T: Copy + Ord> Names<T> {
 
     /// The thing a text names.
     pub fn get(&self, text: &str) -> Option<T> {
-        self.spellings.get(&normal(text)).copied()
+        self.spellings.get(&normal(text)).map(|(thing, _)| *thing)
+    }
+
+    /// How far down its list a spelling stands: of two columns that can be the same, the one named more to the point is.
+    pub fn rank(&self, text: &str) -> usize {
+        self.spellings.get(&normal(text)).map_or(usize::MAX, |(_, rank)| *rank)
     }
 
     /// The name a thing goes by.
@@ -174,7 +187,7 @@ impl<T: Copy + Ord> Names<T> {
 
     /// Another spelling; it takes the place of what it meant before.
     pub fn add(&mut self, text: &str, thing: T) {
-        self.spellings.insert(normal(text), thing);
+        self.spellings.insert(normal(text), (thing, 0));
     }
 
     /// The names all things go by.
@@ -196,6 +209,7 @@ pub(super) struct Words {
     own: HashMap<(Kind, String), What>,
     units: HashMap<What, Scale>,
     forced: HashMap<String, Option<Kind>>,
+    prose: HashSet<String>,
     /// Entries of a mapping.
     pub fixed: Fixed,
 }
@@ -289,6 +303,7 @@ impl Words {
             own: HashMap::new(),
             units: HashMap::new(),
             forced: HashMap::new(),
+            prose: file.leave_out.sheets.iter().map(|name| normal(name)).collect(),
             fixed: Fixed::none(),
         })
     }
@@ -321,6 +336,11 @@ impl Words {
     /// What a mapping says a sheet is: a table, or nothing to be read.
     pub fn forced(&self, sheet: &str) -> Option<Option<Kind>> {
         self.forced.get(&normal(sheet)).copied()
+    }
+
+    /// A sheet that is read by people alone, where it holds no table.
+    pub fn is_prose(&self, sheet: &str) -> bool {
+        self.prose.contains(&normal(sheet))
     }
 
     pub fn set_column(&mut self, kind: Kind, text: &str, what: What) {

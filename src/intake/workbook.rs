@@ -10,7 +10,7 @@ mod binary;
 mod bounds;
 mod bytes;
 mod compound;
-mod csv;
+mod csv_folder;
 mod draft;
 mod kind;
 mod ods;
@@ -49,7 +49,7 @@ pub(super) fn read(content: &Content) -> Result<Output<Workbook>, Refusal> {
         _ if size == 0 => Err(Refusal::Empty),
         _ if size > MOST_BYTES => Err(megabytes("it is more than", MOST_BYTES, "long")),
         Content::File(bytes) => file(bytes).map(|value| Output { value, problems: Vec::new() }),
-        Content::Folder(files) => csv::read(files, &mut Budget::new()),
+        Content::Folder(files) => csv_folder::read(files, &mut Budget::new()),
     };
     output.map_err(shortened)
 }
@@ -86,7 +86,7 @@ fn package(archive: &Archive, budget: &mut Budget) -> Result<Workbook, Refusal> 
         return ods::read(archive, budget);
     }
     let relations = relations::of(archive, "")?;
-    let main = relations.iter().find(|r| r.kind == "officeDocument").map_or("xl/workbook.xml", |r| r.target.as_str());
+    let main = relations::part(&relations, "officeDocument").unwrap_or("xl/workbook.xml");
     match main.rsplit_once('.') {
         Some((_, "bin")) if archive.has(main) => xlsb::read(archive, main, budget),
         Some((_, "xml")) if archive.has(main) && xlsx::is_book(archive, main)? => xlsx::read(archive, main, budget),

@@ -414,7 +414,7 @@ const NOTES: &[&str] = &[
 
 /// Where letters stand for digits, the text with the digits.
 fn mended(text: &str, error: NumberError) -> NumberError {
-    if error == NumberError::Several && !text.contains(['o', 'O', 'l', 'I']) {
+    if error == NumberError::Several && !text.contains(['o', 'O', 'l', 'I', 'S', 'B']) {
         return error;
     }
     let end = text.find(' ').unwrap_or(text.len());

@@ -93,10 +93,11 @@ pub(super) fn sign_off(source: &Source, language: &Language) -> Vec<(String, Opt
 #[must_use]
 pub fn visible(text: &str) -> String {
     let mut out = String::with_capacity(text.len());
-    for c in text.chars() {
+    let mut chars = text.chars().peekable();
+    while let Some(c) = chars.next() {
         match c {
-            '\n' | '\t' => out.push(' '),
-            '\r' => {}
+            '\r' if chars.peek() == Some(&'\n') => {}
+            '\r' | '\n' | '\t' => out.push(' '),
             c if c.is_control() || steers(c) => {
                 let _ = write!(out, "⟨U+{:04X}⟩", u32::from(c));
             }
@@ -106,7 +107,26 @@ pub fn visible(text: &str) -> String {
     out
 }
 
-/// Bidirectional marks and overrides, invisible characters, line separators, tags.
-pub(super) fn steers(c: char) -> bool {
-    matches!(c, '\u{061C}' | '\u{180E}' | '\u{200B}'..='\u{200F}' | '\u{2028}'..='\u{202E}' | '\u{2060}'..='\u{206F}' | '\u{FEFF}' | '\u{FFF9}'..='\u{FFFB}' | '\u{E0000}'..='\u{E007F}')
+/// Bidirectional marks and overrides, invisible characters, line separators, tags, and what XML can't hold. The joiners U+200C and
+/// U+200D stay: scripts need them, and they do nothing beyond their neighbours.
+fn steers(c: char) -> bool {
+    matches!(c, '\u{061C}' | '\u{180E}' | '\u{200B}' | '\u{200E}' | '\u{200F}' | '\u{2028}'..='\u{202E}' | '\u{2060}'..='\u{206F}')
+        || matches!(c, '\u{FEFF}' | '\u{FFF9}'..='\u{FFFB}' | '\u{FFFE}' | '\u{FFFF}' | '\u{E0000}'..='\u{E007F}')
+}
+
+#[cfg(test)]
+mod tests {
+    use super::visible;
+
+    #[test]
+    fn what_controls_or_reorders_is_shown() {
+        for (given, shown) in [
+            ("north wall\r\nbehind the stove\rleft\tside", "north wall behind the stove left side"),
+            ("\u{1b}[31mred\0", "⟨U+001B⟩[31mred⟨U+0000⟩"),
+            ("\u{202e}gpj.exe\u{2066}", "⟨U+202E⟩gpj.exe⟨U+2066⟩"),
+            ("می\u{200c}خواهم", "می\u{200c}خواهم"),
+        ] {
+            assert_eq!(visible(given), shown);
+        }
+    }
 }

@@ -14,36 +14,47 @@ pub(super) use findings::{limit, measured, shown};
 
 use super::Source;
 use super::document::{Cell, Column, ColumnKind, Number, Row, Table};
+use super::facts::visible;
 use crate::quantity::{Measured, Unit};
 use crate::visit::Stage;
 use crate::wording::Language;
 use std::sync::Arc;
 
-/// All tables that have something to say, by name.
+/// Makes a table, or none where the visit has nothing for it.
+type Make = fn(&Source, &Language) -> Option<Table>;
+
+/// Every table by its name.
+const TABLES: [(&str, Make); 20] = [
+    ("summary", findings::summary),
+    ("findings", findings::findings),
+    ("basis", findings::basis),
+    ("left-out", findings::left_out),
+    ("causes", causes::causes),
+    ("not-shown", causes::not_shown),
+    ("next", causes::next),
+    ("exposure", causes::exposure),
+    ("load-steps", causes::load_steps),
+    ("readings", readings::readings),
+    ("before-after", readings::before_after),
+    ("circuits", circuits::circuits),
+    ("legs", load::legs),
+    ("leg-circuits", load::circuits),
+    ("moves", load::moves),
+    ("instruments", sheets::instruments),
+    ("tests", sheets::tests),
+    ("observations", sheets::observations),
+    ("work", sheets::work),
+    ("revisions", sheets::revisions),
+];
+
+/// Names of all tables, whether this visit fills them or not.
+pub(super) fn known() -> impl Iterator<Item = &'static str> {
+    TABLES.iter().map(|t| t.0)
+}
+
+/// All tables that have something to say.
 pub(super) fn build(source: &Source, language: &Language) -> Vec<Arc<Table>> {
-    let tables = [
-        findings::summary,
-        findings::findings,
-        findings::basis,
-        findings::left_out,
-        causes::causes,
-        causes::not_shown,
-        causes::next,
-        causes::exposure,
-        causes::load_steps,
-        readings::readings,
-        readings::before_after,
-        circuits::circuits,
-        load::legs,
-        load::circuits,
-        load::moves,
-        sheets::instruments,
-        sheets::tests,
-        sheets::observations,
-        sheets::work,
-        sheets::revisions,
-    ];
-    tables.into_iter().filter_map(|table| table(source, language)).filter(|t| !t.rows.is_empty()).map(Arc::new).collect()
+    TABLES.iter().filter_map(|(_, make)| make(source, language)).filter(|t| !t.rows.is_empty()).map(Arc::new).collect()
 }
 
 /// A table being put together.
@@ -92,8 +103,9 @@ impl<'a> Draft<'a> {
     }
 }
 
+/// Text as it stands, with what controls or reorders made visible.
 fn text(value: &str) -> Cell {
-    if value.is_empty() { Cell::Empty } else { Cell::Text(value.to_owned()) }
+    if value.is_empty() { Cell::Empty } else { Cell::Text(visible(value)) }
 }
 
 fn number(value: f64, decimals: u8) -> Cell {

@@ -1,14 +1,15 @@
 //! Templates: Tera yields Markdown, Markdown yields blocks.
 //!
-//! Values reach the Markdown through an escape that makes every punctuation mark literal, so that no text of a workbook can
-//! become structure. Computed things are placed by images of special schemes: `![caption](table:NAME)`, `figure:NAME`,
-//! `facts:NAME`, `photos:`, `signoff:`, and `signal:WORD` within a line. A quotation that begins with `[!WARNING] Title` is a
-//! callout. Between two lines `+++` at the top stands TOML: the document's title, and the sheets of the XLSX.
+//! Values reach the Markdown opaque, so that no text of a workbook can become structure. Computed things are placed by images of
+//! special schemes: `![caption](table:NAME)`, `figure:NAME`, `facts:NAME`, `photos:`, `signoff:`, and `signal:WORD` within a line.
+//! A quotation that begins with `[!WARNING] Title` is a callout. Between two lines `+++` at the top stands TOML: the document's
+//! title, and the sheets of the XLSX.
 
 mod context;
 mod escape;
 mod front;
 mod markdown;
+mod names;
 mod places;
 
 pub(super) use context::Context;
@@ -25,15 +26,20 @@ const MOST_BYTES: usize = 16 << 20;
 /// A template put into blocks, with its front matter.
 pub(super) fn fill(file: &str, text: &str, context: &Context, places: &Places) -> Result<(Front, Vec<Block>), TemplateError> {
     let (front, body) = front::split(file, text)?;
-    let markdown = render(file, &body, context)?;
+    names::check(file, &front, text)?;
+    let markdown = render(file, &escape::plain(&body), context)?;
     Ok((front, markdown::blocks(&markdown, places)))
 }
 
 fn render(file: &str, body: &str, context: &Context) -> Result<String, TemplateError> {
     let fail = |e: &tera::Error| error(file, e, context);
     let mut tera = tera::Tera::new();
-    tera.set_escape_fn(escape::markdown);
+    tera.set_escape_fn(escape::opaque);
     tera.autoescape_on([""]);
+    // Filters that would let a value past the escape, or change it for another language, do nothing here.
+    for filter in ["safe", "escape", "escape_html", "escape_xml", "newlines_to_br"] {
+        tera.register_filter(filter, |value: tera::Value, _: tera::Kwargs, _: &tera::State| value);
+    }
     tera.add_raw_template(file, body).map_err(|e| fail(&e))?;
     let values = tera::Context::from_serialize(context).map_err(|e| fail(&e))?;
     let mut out = Bounded(Vec::new());
@@ -59,14 +65,13 @@ impl Write for Bounded {
 }
 
 fn error(file: &str, e: &tera::Error, context: &Context) -> TemplateError {
-    let (line, mut message) = match e.kind() {
+    let (line, message) = match e.kind() {
         tera::ErrorKind::SyntaxError(r) | tera::ErrorKind::RenderingError(r) => (r.span().start_line, r.message().to_owned()),
         _ => (1, root(e)),
     };
-    if let Some(near) = unknown(&message).and_then(|name| nearest(name, context)) {
-        message = format!("{message}; the nearest known name is `{near}`");
-    }
-    TemplateError { file: file.to_owned(), line, message }
+    let known = context.names();
+    let near = names::quoted(&message).and_then(|name| names::nearest(name, known.iter().map(String::as_str)));
+    TemplateError { file: file.to_owned(), line, message: names::hinted(&message, near) }
 }
 
 /// The innermost message.
@@ -76,19 +81,4 @@ fn root(e: &tera::Error) -> String {
         at = source;
     }
     at.to_string()
-}
-
-/// The name a message is about: what stands between its first backticks or quotes.
-fn unknown(message: &str) -> Option<&str> {
-    let open = message.find(['`', '\'', '"'])?;
-    let mark = message[open..].chars().next()?;
-    let rest = &message[open + 1..];
-    Some(&rest[..rest.find(mark)?])
-}
-
-fn nearest(name: &str, context: &Context) -> Option<String> {
-    let last = |n: &str| n.rsplit('.').next().unwrap_or(n).to_owned();
-    let wanted = last(name);
-    let score = |n: &String| strsim::jaro_winkler(&last(n), &wanted);
-    context.names().into_iter().max_by(|a, b| score(a).total_cmp(&score(b)).then(b.cmp(a)))
 }

@@ -5,6 +5,9 @@ use crate::quantity::Unit;
 use crate::results::{Cause, CauseKind, SupplyDirection};
 use crate::wording::{Arg, Language, Sentence};
 
+/// Less than this is shown as no ohms at all.
+const LEAST_OHMS: f64 = 0.005;
+
 /// A cause in a few words.
 pub(super) fn cause(source: &Source, cause: &Cause, language: &Language) -> String {
     let runs: Vec<Arg> = cause.runs.iter().filter_map(|&r| source.visit.runs.get(r)).map(|r| Arg::from(r.name.value.as_str())).collect();
@@ -19,11 +22,37 @@ pub(super) fn cause(source: &Source, cause: &Cause, language: &Language) -> Stri
     language.say(&sentence.with("n", runs.len()).with("runs", runs))
 }
 
-/// An interval of ohms: `0.12 Ω to 4.5 Ω`, `from 3.4 Ω up`.
+/// An interval of ohms: `0.12 Ω to 4.50 Ω`, `up to 4.50 Ω`, `3.40 Ω or more`.
 pub(super) fn between(low: f64, high: Option<f64>, language: &Language) -> String {
-    let show = |ohms: f64| language.quantity(ohms, if ohms < 10.0 { 2 } else { 0 }, Unit::Ohm);
-    match high {
-        Some(high) => format!("{} {} {}", show(low), language.text("report.to"), show(high)),
-        None => language.say(&Sentence::new("report.from-up").with("low", show(low))),
+    let key = match (low < LEAST_OHMS, high) {
+        (true, Some(_)) => "report.ohms-up-to",
+        (false, Some(_)) => "report.ohms-between",
+        (true, None) => "report.ohms-any",
+        (false, None) => "report.ohms-from",
+    };
+    let ohms = |s: Sentence, name, ohms: f64| s.number(name, ohms, digits(ohms), Unit::Ohm);
+    let sentence = ohms(Sentence::new(key), "low", low);
+    language.say(&high.into_iter().fold(sentence, |s, high| ohms(s, "high", high)))
+}
+
+/// A probability: `97 %`, `more than 99 %` where rounding would make it a certainty.
+pub(super) fn probability(p: f64, language: &Language) -> String {
+    match 100.0 * p {
+        percent if percent > 99.5 => language.text("cause.nearly-sure"),
+        percent => language.quantity(percent, 0, Unit::Percent),
     }
+}
+
+/// Digits of ohms worth showing.
+pub(super) fn digits(ohms: f64) -> u8 {
+    if ohms < 10.0 { 2 } else { 0 }
+}
+
+/// Names as a sentence lists them; beyond `most` only how many.
+pub(super) fn listed(names: &[String], most: usize, language: &Language) -> String {
+    let mut list: Vec<Arg> = names.iter().take(most).map(|n| Arg::from(n.as_str())).collect();
+    if names.len() > most {
+        list.push(Sentence::new("advice.more").with("n", names.len() - most).into());
+    }
+    language.arg(&list.into())
 }

@@ -11,7 +11,7 @@ use crate::wording::{Arg, Sentence};
 /// From this probability on a cause is taken as shown.
 pub(super) const SURE: Setting = Setting::new("sure-percent", 80.0, Unit::Percent, (0.0, 100.0));
 /// From this probability on a cause that is not the most probable one is said nevertheless.
-pub(super) const WORTH: Setting = Setting::new("worth-percent", 20.0, Unit::Percent, (0.0, 100.0));
+pub(super) const WORTH: Setting = Setting::new("worth-percent", 30.0, Unit::Percent, (0.0, 100.0));
 
 /// Cells of readings listed with a finding, at most.
 const MOST_CELLS: usize = 24;
@@ -35,11 +35,15 @@ pub(super) fn of_kind<'a>(facts: &Facts<'a>, settings: &Settings, is_kind: fn(&C
 /// A sentence about a cause: its runs, probability and ohms.
 pub(super) fn sentence(facts: &Facts, key: &'static str, cause: &Cause) -> Sentence {
     let runs: Vec<Arg> = cause.runs.iter().map(|r| Arg::from(facts.name(*r))).collect();
-    Sentence::new(key)
-        .with("n", runs.len())
-        .with("runs", runs)
-        .number("percent", 100.0 * cause.probability, 0, Unit::Percent)
-        .with("ohms", ohms(cause.ohms))
+    Sentence::new(key).with("n", runs.len()).with("runs", runs).with("percent", percent(cause.probability)).with("ohms", ohms(cause.ohms))
+}
+
+/// A probability in per cent, never rounded to a certainty.
+fn percent(probability: f64) -> Arg {
+    match 100.0 * probability {
+        value if value > 99.5 => Sentence::new("cause.nearly-sure").into(),
+        value => Arg::Number { value, decimals: 0, unit: Unit::Percent },
+    }
 }
 
 fn ohms(ohms: Option<AddedOhms>) -> Sentence {

@@ -4,6 +4,7 @@ use super::{Facts, Findings, Rule, Settings};
 use crate::quantity::Unit;
 use crate::results::{CauseKind, ExposedLeg, Exposure, Limit, Signal, Verdict};
 use crate::rulebook::{RuleSpec, Setting};
+use crate::visit::Quantity;
 use crate::wording::Sentence;
 
 const HIGH: Setting = Setting::new("high-percent", 110.0, Unit::Percent, (100.0, 1000.0));
@@ -27,12 +28,18 @@ fn run(facts: &Facts, settings: &Settings, out: &mut Findings) {
 }
 
 fn judge(facts: &Facts, settings: &Settings, exposure: &Exposure, out: &mut Findings) {
-    let nominal = facts.visit.system.line_to_neutral.0;
-    let highest = exposure.legs.iter().rev().max_by(|a, b| a.volts.0.total_cmp(&b.volts.0));
+    let band = |leg: &ExposedLeg| {
+        let nominal = facts.visit.system.nominal(Quantity::line_neutral(leg.leg)).unwrap_or(facts.visit.system.line_to_neutral).0;
+        Limit { low: Some(nominal * settings.get(&LOW) / 100.0), high: Some(nominal * settings.get(&HIGH) / 100.0) }
+    };
+    let excess = |leg: &ExposedLeg| leg.volts.0 / band(leg).high.unwrap_or(f64::INFINITY);
+    let highest = exposure.legs.iter().rev().max_by(|a, b| excess(a).total_cmp(&excess(b)));
     let (Some(highest), Some(run)) = (highest, facts.visit.runs.get(exposure.run)) else { return };
-    let limit = Limit { low: Some(nominal * settings.get(&LOW) / 100.0), high: Some(nominal * settings.get(&HIGH) / 100.0) };
-    let ends = |leg: &ExposedLeg| [Some(leg.volts.0), leg.low.map(|v| v.0)];
-    let is_off = exposure.legs.iter().flat_map(ends).flatten().any(|v| out.judge(v, 0.0, limit) == Verdict::Fail);
+    let limit = band(highest);
+    let is_out = |leg: &ExposedLeg| {
+        [Some(leg.volts.0), leg.low.map(|v| v.0)].into_iter().flatten().any(|v| out.judge(v, 0.0, band(leg)) == Verdict::Fail)
+    };
+    let is_off = exposure.legs.iter().any(is_out);
     let verdict = if is_off { Verdict::Fail } else { Verdict::Pass };
     let key = match (is_off, highest.low) {
         (false, _) => "open-neutral-exposure.pass",

@@ -10,7 +10,8 @@ use midwire::results::{Cause, CauseKind, Diagnosis, ExposedLeg, Exposure};
 use midwire::rulebook::Rulebook;
 use midwire::rules::{self, Facts};
 use midwire::visit::{
-    Between, Leg, Legs, Load, Metal, Quantity, Reading, ReadingRow, Run, Site, Stage, System, Tree, Visit, Wire, WireSize,
+    Between, Instrument, Leg, Legs, Load, Measures, Metal, Quantity, Reading, ReadingRow, Run, Site, Stage, System, Tree, Visit, Wire,
+    WireSize,
 };
 use midwire::wording::Language;
 use std::sync::Arc;
@@ -31,6 +32,7 @@ pub struct House {
     pub visit: Visit,
     pub diagnosis: Option<Diagnosis>,
     pub exposure: Vec<Exposure>,
+    pub width: f64,
 }
 
 pub fn leg(name: &str) -> Leg {
@@ -61,7 +63,7 @@ impl House {
             work: Vec::new(),
             revisions: Vec::new(),
         };
-        Self { visit, diagnosis: None, exposure: Vec::new() }
+        Self { visit, diagnosis: None, exposure: Vec::new(), width: WIDTH }
     }
 
     /// A run; `from` is empty for the utility.
@@ -84,6 +86,22 @@ impl House {
             cell: at(0),
         });
         self.visit.tree = Tree::new(&self.visit.runs);
+        self
+    }
+
+    /// The voltmeter all readings were taken with: ±(0.5 % + so many counts of 0.1 V).
+    pub fn meter(mut self, counts: f64) -> Self {
+        let at = |col| cell("Instruments", 1, col);
+        self.visit.instruments.push(Instrument {
+            name: Located::new("M1".to_owned(), at(0)),
+            measures: Located::new(Measures::Volts, at(1)),
+            serial: None,
+            calibrated_until: None,
+            accuracy_percent: Some(Located::new(0.5, at(4))),
+            accuracy_counts: Some(Located::new(counts, at(5))),
+            resolution: Some(Located::new(0.1, at(6))),
+            cell: at(0),
+        });
         self
     }
 
@@ -174,7 +192,7 @@ impl House {
             exposure: &self.exposure,
             rules: &[],
         };
-        figures::build(&source, &Language::english(), measure, WIDTH)
+        figures::build(&source, &Language::english(), measure, self.width)
     }
 
     /// The figures of one name.

@@ -247,6 +247,13 @@ fn numbers_take_the_decimal_mark_and_never_a_negative_zero() {
 }
 
 #[test]
+fn a_document_without_a_language_still_prints_numbers() {
+    let block = Block::Table(Arc::new(specimen::readings()));
+    let html = write_html(&Document { blocks: vec![block], ..Document::default() });
+    assert_eq!(texts(&html, "data")[0], "120.4");
+}
+
+#[test]
 fn anchors_are_unique_and_links_find_them() {
     let heading = |anchor: &str| Block::Heading { level: 2, text: text("H"), anchor: anchor.to_owned() };
     let link = Inline::Link { href: "#run 5/7".to_owned(), text: text("L") };

@@ -24,7 +24,7 @@ fn parts(bytes: &[u8]) -> Vec<(String, String)> {
         let mut file = archive.by_index(i).expect("a part");
         let mut text = String::new();
         file.read_to_string(&mut text).expect("text");
-        (file.name().to_owned(), text)
+        (file.name().expect("a name").into_owned(), text)
     };
     (0..zip::ZipArchive::new(Cursor::new(bytes)).expect("an archive").len()).map(&mut part).collect()
 }

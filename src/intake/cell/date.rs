@@ -91,7 +91,7 @@ pub(super) fn time_of_day(serial: f64) -> String {
 pub(super) fn read(text: &str) -> Result<Date, DateError> {
     let text = text.trim().trim_end_matches(['.', ',']);
     let bare = text.trim_matches(|c: char| "?~*() ".contains(c));
-    let result = whole(bare).or_else(|e| without_rest(bare).map_or(Err(e), Ok));
+    let result = whole(bare).or_else(|error| without_rest(bare).ok_or(error));
     match result {
         Ok(date) if bare.len() < text.len() => Err(DateError::Nearly(date)),
         other => other,

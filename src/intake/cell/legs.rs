@@ -68,6 +68,7 @@ impl Parsed {
         self.neutral = neutral;
         for word in text.split(|c: char| !c.is_alphanumeric()).filter(|w| !w.is_empty()) {
             match word {
+                "neutral" | "neut" => self.neutral = Some(true),
                 "leg" | "legs" | "line" | "phase" | "ph" | "hot" | "and" | "to" | "with" | "w" => {}
                 _ => self.word(word)?,
             }
@@ -79,7 +80,7 @@ impl Parsed {
         if let Ok(number) = word.parse::<u32>() {
             self.bare = true;
             self.poles.push(number);
-            return (number >= 1 && number <= 84).then_some(());
+            return (1..=84).contains(&number).then_some(());
         }
         let mut rest = word;
         while !rest.is_empty() {
@@ -198,6 +199,7 @@ mod tests {
             ("L1/L2/N", "L1 L2"),
             ("L1-L2-N", "L1 L2"),
             ("A B N", "L1 L2"),
+            ("L1/L2/neutral", "L1 L2"),
             ("ABN", "L1 L2"),
             ("L1 L2 shared neutral", "L1 L2"),
             ("L1/L2 with neutral", "L1 L2"),

@@ -15,11 +15,16 @@ impl Reader<'_> {
             && let Some(date) = serial_date(*serial)
         {
             let likely = circuit_name(date);
-            self.warning(field, Sentence::new("intake.name-as-date").with("likely", likely.as_str())).hint =
-                Some(Sentence::new("intake.name-as-date-hint"));
+            self.read_from_date(field, &likely);
             return Some(Located::new(likely, field.cell()));
         }
         self.text(field)
+    }
+
+    /// Says what was read of an entry that the spreadsheet took for a date.
+    pub fn read_from_date(&mut self, field: Field<'_>, likely: &str) {
+        self.warning(field, Sentence::new("intake.made-a-date").with("likely", likely)).hint =
+            Some(Sentence::new("intake.made-a-date-hint"));
     }
 }
 
@@ -36,6 +41,12 @@ pub(crate) fn poles_as_date(value: &Value) -> Option<String> {
         Value::DateTime(serial) => serial_date(*serial).map(circuit_name),
         _ => None,
     }
+}
+
+/// A gauge or a rating with a number of conductors or poles that a spreadsheet took for a date: `12/2`, `20/1`.
+pub(crate) fn larger_first(value: &Value) -> Option<String> {
+    let Value::DateTime(serial) = value else { return None };
+    serial_date(*serial).map(|date| format!("{}/{}", date.month.max(date.day), date.month.min(date.day)))
 }
 
 /// A time as written; of a time of the spreadsheet, hours and minutes.

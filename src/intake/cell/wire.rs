@@ -1,7 +1,6 @@
 //! Conductors: `12 Cu`, `#12 CU`, `12/2 NM`, `4/0 AL SER`, `250 kcmil`, `2.5 mm2 Cu`.
 
-use super::date::serial_date;
-use super::{Reader, plain_text};
+use super::{Reader, larger_first, plain_text};
 use crate::diag::Located;
 use crate::intake::grid::Value;
 use crate::intake::header::Field;
@@ -39,14 +38,9 @@ impl Reader<'_> {
         if self.broken(field) {
             return None;
         }
-        let mut text = plain_text(field.value);
-        if let Value::DateTime(serial) = field.value
-            && let Some(date) = serial_date(*serial)
-        {
-            // 12/2 and its like became a date; the gauge is the larger of the two.
-            text = format!("{}/{}", date.month.max(date.day), date.month.min(date.day));
-            self.warning(field, Sentence::new("intake.wire-as-date").with("likely", text.as_str())).hint =
-                Some(Sentence::new("intake.name-as-date-hint"));
+        let text = larger_first(field.value).unwrap_or_else(|| plain_text(field.value));
+        if matches!(field.value, Value::DateTime(_)) {
+            self.read_from_date(field, &text);
         } else if crate::quantity::parse::not_measured(&text) {
             return None;
         }
@@ -84,6 +78,9 @@ pub(super) fn read(words: &Words, text: &str, millimetres: bool) -> Result<WireT
         .replace("sq mm", "mm2")
         .replace("sqmm", "mm2")
         .replace("mm^2", "mm2");
+    if parallel(&text) {
+        return Err(WireError::Parallel);
+    }
     let mut metal = None;
     let mut size: Option<WireSize> = None;
     let mut others = false;
@@ -96,7 +93,9 @@ pub(super) fn read(words: &Words, text: &str, millimetres: bool) -> Result<WireT
                 }
                 continue;
             }
-            None if words.choice("cable", &token).is_some() => continue,
+            None if words.choice("clad", &token).is_some() => return Err(WireError::TwoMetals),
+            // What kind of cable it is, its insulation, its colour: not asked here.
+            None if token.starts_with(|c: char| c.is_alphabetic()) && unit_of(&token).is_none() => continue,
             None => {}
         }
         match (unit_of(&token), &mut size) {
@@ -114,6 +113,22 @@ pub(super) fn read(words: &Words, text: &str, millimetres: bool) -> Result<WireT
     let size = checked(size.ok_or(WireError::NotAWire)?, millimetres)?;
     let metal_assumed = metal.is_none();
     Ok(WireText { wire: Wire { size, metal: metal.unwrap_or(Metal::Copper), metal_assumed }, others })
+}
+
+/// Several conductors: `2x4/0`, `3 \u{d7} 2.5`, `3G2.5`, `(2) 4/0`, `4/0 parallel`.
+fn parallel(text: &str) -> bool {
+    let times = text
+        .chars()
+        .filter(|c| !c.is_whitespace())
+        .collect::<Vec<_>>()
+        .windows(3)
+        .any(|w| w[0].is_ascii_digit() && matches!(w[1], 'x' | '*' | '\u{d7}' | 'g') && w[2].is_ascii_digit());
+    let counted = text
+        .trim_start()
+        .strip_prefix('(')
+        .and_then(|rest| rest.split_once(')'))
+        .is_some_and(|(count, rest)| count.parse::<u8>().is_ok() && rest.trim_start().starts_with(|c: char| c.is_ascii_digit()));
+    times || counted || ["parallel", "sets", "per phase"].iter().any(|word| text.contains(word))
 }
 
 /// Blank-divided words, with letters and the digits before them parted: `12cu`, `2.5mm2`, `250mcm`.
@@ -171,9 +186,6 @@ const AWG: [i8; 15] = [18, 16, 14, 12, 10, 8, 6, 4, 3, 2, 1, 0, -1, -2, -3];
 
 /// The size in a token, if any, and whether further sizes stand there.
 fn sizes(token: &str, have: bool) -> Result<(Option<WireSize>, bool), WireError> {
-    if token.contains(['x', '*', '\u{d7}']) {
-        return Err(WireError::Parallel);
-    }
     let aught = |part: &str| match part {
         "1/0" | "0" => Some(0),
         "2/0" | "00" => Some(-1),
@@ -275,6 +287,9 @@ mod tests {
             ("1.5 mm^2 Cu", "1.5 mm2 Cu"),
             ("6 Cu", "6 Cu"),
             ("3 Cu", "3 Cu"),
+            ("12 AWG THHN/THWN-2 Cu", "12 Cu"),
+            ("12 Cu in EMT", "12 Cu"),
+            ("blue 14", "14 Cu assumed"),
             ("(12 Cu)", "12 Cu"),
         ] {
             assert_eq!(wire(text), expected, "{text}");
@@ -293,8 +308,12 @@ mod tests {
             ("2.5 Cu", "NoUnit"),
             ("260 kcmil", "NoSuchSize"),
             ("12 Cu Al", "TwoMetals"),
+            ("12 CCA", "TwoMetals"),
             ("2x4/0 Al", "Parallel"),
             ("3x2.5 mm2", "Parallel"),
+            ("3G2.5 mm2", "Parallel"),
+            ("(2) 4/0 Al", "Parallel"),
+            ("2 sets 250 kcmil", "Parallel"),
             ("9999 mm2", "NoSuchSize"),
             ("", "NotAWire"),
             ("kcmil", "NotAWire"),

@@ -128,21 +128,31 @@ fn share(layouts: &mut [Layout]) {
 fn layout(words: &Words, kind: Kind, texts: &BTreeMap<u32, String>) -> Layout {
     let mut layout = Layout { kind, placed: Vec::new(), unplaced: Vec::new(), second: Vec::new(), elsewhere: Vec::new() };
     for (&col, text) in texts {
-        match place(words, kind, text) {
-            Some((What::Named(column), unit)) if !layout.has(column) || both(column, unit, &layout) => {
-                layout.placed.push(Placed::new(col, What::Named(column), unit, text));
+        let Some((what, unit)) = place(words, kind, text) else {
+            layout.unplaced.push((col, text.clone()));
+            continue;
+        };
+        let rank = |text: &str| words.columns(kind).rank(text);
+        let earlier = match what {
+            What::Named(column) if !both(column, unit, &layout) => layout.placed.iter_mut().find(|p| p.what == what),
+            _ => None,
+        };
+        let placed = Placed::new(col, what, unit, text);
+        match earlier {
+            None => layout.placed.push(placed),
+            Some(earlier) if rank(text) < rank(&earlier.text) => {
+                let less = std::mem::replace(earlier, placed);
+                layout.second.push((less.col, less.text));
             }
-            Some((what @ What::Head(_), unit)) => layout.placed.push(Placed::new(col, what, unit, text)),
             Some(_) => layout.second.push((col, text.clone())),
-            None => layout.unplaced.push((col, text.clone())),
         }
     }
     layout
 }
 
-/// A length may stand in feet and in metres beside each other.
+/// A length may stand in feet and in metres beside each other, and a sheet may reckon as much as it likes.
 fn both(column: Column, unit: Option<Scale>, layout: &Layout) -> bool {
-    column == Column::Length && layout.placed.iter().all(|p| p.what != What::Named(column) || p.unit != unit)
+    column == Column::Reckoned || column == Column::Length && layout.placed.iter().all(|p| p.what != What::Named(column) || p.unit != unit)
 }
 
 /// The meaning of one header text in a kind of table, with the unit it states or a mapping gives it.

@@ -86,6 +86,15 @@ impl<'a> Table<'a> {
         })
     }
 
+    /// Filled cells in the table's rows, but beside its columns.
+    pub fn beside(&self) -> impl Iterator<Item = &'a Cell> {
+        let cells = &self.sheet.cells;
+        let start = cells.partition_point(|c| c.row < self.rows.0);
+        let end = cells.partition_point(|c| c.row < self.rows.1);
+        let columns = self.columns.0..=self.columns.1;
+        cells[start..end].iter().filter(move |c| !columns.contains(&c.col) && !is_blank(&c.value))
+    }
+
     /// The column of a name.
     pub fn column(&self, column: Column) -> Option<&Placed> {
         self.placed.iter().find(|p| p.what == What::Named(column))
@@ -193,6 +202,14 @@ impl Field<'_> {
 }
 
 impl<'a> Field<'a> {
+    /// The same cell, read as another value.
+    pub fn with_value<'b>(self, value: &'b Value) -> Field<'b>
+    where
+        'a: 'b,
+    {
+        Field { value, ..self }
+    }
+
     /// A cell outside any table's columns.
     pub fn new(sheet: &'a Sheet, row: u32, col: u32, value: &'a Value) -> Self {
         Self { sheet, row, col, value, unit: None, square_millimetres: false }

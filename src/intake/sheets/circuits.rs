@@ -3,11 +3,13 @@
 use super::Tables;
 use super::known::nearest_run;
 use super::legs::{Pending, PendingLoad};
-use crate::diag::{Located, Severity};
-use crate::intake::cell::{Expected, LegsText, Reader, did_you_mean, legs, plain_text};
+use crate::diag::{Located, Problem, Severity};
+use crate::intake::cell::{Expected, LegsText, Reader, did_you_mean, larger_first, legs, plain_text, poles_as_date};
+use crate::intake::grid::Value;
 use crate::intake::header::heads::Head;
 use crate::intake::header::{Field, Row, Table, What};
 use crate::intake::words::{Column, Kind};
+use crate::quantity::parse::written;
 use crate::quantity::{Amperes, Measured, Metres, Unit, Watts};
 use crate::visit::{Load, LoadKind, Run, System, Tree, TreeFault, name_key};
 use crate::wording::Sentence;
@@ -39,10 +41,12 @@ pub(super) fn read<'a>(
     reader: &mut Reader<'a>,
 ) -> Circuits {
     let mut circuits = Circuits { runs: Vec::new(), pending: Pending::default() };
+    let mut said = HashSet::new();
     for table in tables.of(Kind::Circuits) {
-        if table.column(Column::FedFrom).is_none() && reader.words.fixed.column(Kind::Circuits, Column::FedFrom).is_none() {
+        let sources = table.column(Column::FedFrom).is_some() || reader.words.fixed.column(Kind::Circuits, Column::FedFrom).is_some();
+        if !sources && said.insert(&table.sheet.name) {
             let message = Sentence::new("intake.no-fed-from");
-            reader.problems.push(crate::diag::Problem::in_sheet(Severity::Warning, &table.sheet.name, "", message));
+            reader.problems.push(Problem::in_sheet(Severity::Warning, &table.sheet.name, "", message));
         }
         say_headers(table, reader);
         for row in table.body() {
@@ -91,15 +95,13 @@ fn run<'a>(row: &Row<'a>, system: &System, reader: &mut Reader<'a>, circuits: &m
     };
     let index = circuits.runs.len();
     let legs = row.field(Column::Legs).and_then(|f| run_legs(f, system, index, reader, &mut circuits.pending));
-    let number = |column, unit, (least, most): (f64, f64), reader: &mut Reader<'_>| {
-        row.field(column).and_then(|f| reader.number(f, &Expected::new(unit, least, most)))
-    };
+    let (breaker, tied) = row.field(Column::Breaker).map_or((None, None), |f| breaker(f, reader));
     let run = Run {
         fed_from: row.field(Column::FedFrom).and_then(|f| reader.name(f)).filter(|f| !crate::quantity::parse::not_measured(&f.value)),
         serves: row.field(Column::Serves).and_then(|f| reader.entry(f)),
         legs,
-        breaker: number(Column::Breaker, Unit::Ampere, BREAKER, reader).map(|l| l.map(Amperes)),
-        tie: row.field(Column::Tie).and_then(|f| reader.yes_no(f)),
+        tie: row.field(Column::Tie).and_then(|f| reader.yes_no(f)).or(tied),
+        breaker,
         wire: row.field(Column::Wire).and_then(|f| reader.wire(f)),
         neutral_wire: row.field(Column::NeutralWire).and_then(|f| reader.wire(f)),
         length: length(row, reader),
@@ -112,6 +114,40 @@ fn run<'a>(row: &Row<'a>, system: &System, reader: &mut Reader<'a>, circuits: &m
     circuits.runs.push(run);
 }
 
+/// The rating, and the common disconnect that a breaker of two or three poles is.
+fn breaker(field: Field<'_>, reader: &mut Reader<'_>) -> (Option<Located<Amperes>>, Option<Located<bool>>) {
+    let text = larger_first(field.value).unwrap_or_else(|| plain_text(field.value));
+    let words = text.split_whitespace().filter(|word| reader.words.choice("breaker", word).is_none());
+    let bare = words.collect::<Vec<_>>().join(" ");
+    if let Some((amperes, poles)) = with_poles(&bare) {
+        if matches!(field.value, Value::DateTime(_)) {
+            reader.read_from_date(field, &text);
+        }
+        return (Some(Located::new(Amperes(amperes), field.cell())), (poles > 1).then(|| Located::new(true, field.cell())));
+    }
+    let kind_aside = Value::Text(bare);
+    let plain = matches!(&kind_aside, Value::Text(bare) if *bare != text && written(bare).is_ok());
+    let field = if plain { field.with_value(&kind_aside) } else { field };
+    let amperes = reader.number(field, &Expected::new(Unit::Ampere, BREAKER.0, BREAKER.1));
+    (amperes.map(|a| a.map(Amperes)), None)
+}
+
+/// A rating with its poles: `20/1`, `30A/2P`, `2P-30A`.
+fn with_poles(text: &str) -> Option<(f64, u32)> {
+    let compact: String = text.to_lowercase().chars().filter(|c| !c.is_whitespace()).collect();
+    let words = compact.split(|c: char| !c.is_alphabetic()).filter(|w| !w.is_empty());
+    let mut known = words.map(|w| ["a", "amp", "amps", "p", "pole", "poles"].contains(&w));
+    let numbers: Vec<u32> = compact.split(|c: char| !c.is_ascii_digit()).filter_map(|d| d.parse().ok()).collect();
+    let marked = compact.contains(['/', 'p']) && compact.chars().all(|c| c.is_ascii_alphanumeric() || c == '/' || c == '-');
+    match numbers[..] {
+        [a, b] if marked && known.all(|k| k) => {
+            let (amperes, poles) = (a.max(b), a.min(b));
+            ((1..=3).contains(&poles) && (10..=4000).contains(&amperes)).then(|| (f64::from(amperes), poles))
+        }
+        _ => None,
+    }
+}
+
 fn run_legs<'a>(
     field: Field<'a>,
     system: &System,
@@ -122,10 +158,7 @@ fn run_legs<'a>(
     if reader.broken(field) {
         return None;
     }
-    let text = match crate::intake::cell::poles_as_date(field.value) {
-        Some(poles) => poles,
-        None => plain_text(field.value),
-    };
+    let text = poles_as_date(field.value).unwrap_or_else(|| plain_text(field.value));
     if crate::quantity::parse::not_measured(&text) {
         return None;
     }

@@ -198,10 +198,10 @@ impl Readings<'_> {
         match self.visit_date {
             Some(visit) if visit.value != date.value => {
                 let message = Sentence::new("intake.other-date").with("visit", visit.value.to_string());
-                reader.error(field, message);
+                reader.warning(field, message);
             }
             None if !first => {
-                reader.error(field, Sentence::new("intake.two-dates"));
+                reader.warning(field, Sentence::new("intake.two-dates"));
             }
             _ => {}
         }

@@ -41,10 +41,18 @@ fn pair(a: u32, b: u32, words: Words) -> Option<System> {
     }
 }
 
-/// The nominal voltages in a text: whole numbers of 50 V and more.
+/// The nominal voltages in a text: whole numbers of 50 V and more that are no amperes (`120/240 V 200 A`).
 fn voltages(text: &str) -> Vec<u32> {
-    let numbers = text.split(|c: char| !c.is_ascii_digit()).filter_map(|digits| digits.parse().ok());
-    numbers.filter(|v| (50..=1000).contains(v)).collect()
+    let mut rest = text;
+    let mut numbers = Vec::new();
+    while let Some(start) = rest.find(|c: char| c.is_ascii_digit()) {
+        let digits = &rest[start..];
+        let end = digits.find(|c: char| !c.is_ascii_digit()).unwrap_or(digits.len());
+        rest = &digits[end..];
+        let amperes = rest.trim_start().starts_with('a') && !rest.trim_start().starts_with("and");
+        numbers.extend(digits[..end].parse::<u32>().ok().filter(|v| (50..=1000).contains(v) && !amperes));
+    }
+    numbers
 }
 
 /// The letter stands directly behind digits, as in `208Y/120`.
@@ -85,6 +93,8 @@ mod tests {
             ("120/240V 1\u{f8} 3W", "120/240"),
             ("120 / 240 single phase", "120/240"),
             ("120-240", "120/240"),
+            ("120/240V 1ph 200A", "120/240"),
+            ("200 A 120/240", "120/240"),
             ("split phase 120/240", "120/240"),
             ("240/120 single-phase", "120/240"),
             ("240/120", "240/120"),

@@ -107,10 +107,10 @@ fn kind(name: &str, details: &str, unit: Option<Scale>) -> TestKind {
     } else if has(&["loop"]) {
         TestKind::LoopImpedance
     } else if has(&["torque", "tightness"]) {
-        TestKind::Torque {
-            specified: number_with(details, Dimension::Torque)
-                .or_else(|| number_behind(details, &["specified", "spec", "required", "rated"])),
-        }
+        // A bare specified torque is in the unit of the result.
+        let factor = unit.filter(|u| u.dimension == Dimension::Torque).map_or(1.0, |u| u.factor);
+        let bare = number_behind(details, &["specified", "spec", "required", "rated"]).map(|torque| torque * factor);
+        TestKind::Torque { specified: number_with(details, Dimension::Torque).or(bare) }
     } else if has(&["temperature", "temp rise", "temp. rise", "delta t", "\u{3b4}t", "thermograph", "thermal", "hot spot"]) {
         TestKind::TemperatureRise { over_ambient: details.to_lowercase().contains("ambient") }
     } else if has(&["element", "filament", "lamp", "bulb", "heater resistance"]) {
@@ -210,6 +210,7 @@ mod tests {
         assert_eq!(of("Loop impedance", "ohm"), TestKind::LoopImpedance);
         assert_eq!(of("torque of the device terminals, specified 1.6", "N\u{b7}m"), TestKind::Torque { specified: Some(1.6) });
         assert_eq!(of("Torque, spec 20 in-lb", "in-lb"), TestKind::Torque { specified: Some(20.0 * 4.448_221_615_260_5 * 0.0254) });
+        assert_eq!(of("Torque, specified 20", "in-lb"), TestKind::Torque { specified: Some(20.0 * 4.448_221_615_260_5 * 0.0254) });
         assert_eq!(of("Temperature rise over ambient", "\u{b0}C"), TestKind::TemperatureRise { over_ambient: true });
         assert_eq!(
             of("Element resistance 1500 W 120 V", "ohm"),

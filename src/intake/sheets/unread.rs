@@ -8,19 +8,22 @@ use crate::intake::header::Table;
 use crate::intake::words::{Kind, Words};
 use crate::wording::{Arg, Sentence};
 use std::collections::{BTreeSet, HashSet};
+use std::sync::Arc;
 
 /// Numbers of rows and columns listed in one sentence.
 const LISTED: usize = 8;
 
 pub(super) fn say<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, reader: &mut Reader<'a>) {
+    let mut said = HashSet::new();
     for table in &tables.0 {
         unplaced(table, reader);
+        outside(table, tables, &mut said, reader);
     }
     for sheet in &workbook.sheets {
         hidden(sheet, reader);
         let read = tables.0.iter().any(|t| std::ptr::eq(t.sheet, sheet));
         let form = reader.problems.iter().any(|p| p.sheet.as_ref() == Some(&sheet.name));
-        let left_out = reader.words.forced(&sheet.name) == Some(None);
+        let left_out = reader.words.forced(&sheet.name) == Some(None) || reader.words.is_prose(&sheet.name);
         if !read && !form && !left_out && !sheet.cells.is_empty() && !is_form(sheet, reader.words) {
             reader.problems.push(Problem::in_sheet(Severity::Warning, &sheet.name, "", Sentence::new("intake.no-table")));
         }
@@ -50,6 +53,22 @@ fn unplaced(table: &Table<'_>, reader: &mut Reader<'_>) {
                 let at = table.sheet.at(cell.row, cell.col);
                 reader.at(Severity::Warning, &at, plain_text(&cell.value), Sentence::new("intake.no-header"));
             }
+        }
+    }
+}
+
+/// Cells beside a table, in its rows but in no table's columns: said once a column.
+fn outside<'a>(table: &'a Table<'a>, tables: &Tables<'a>, said: &mut HashSet<(Arc<str>, u32)>, reader: &mut Reader<'a>) {
+    if is_form(table.sheet, reader.words) {
+        return;
+    }
+    let own: Vec<&Table<'_>> = tables.0.iter().filter(|t| std::ptr::eq(t.sheet, table.sheet)).collect();
+    let taken =
+        |row: u32, col: u32| own.iter().any(|t| (t.header.0..t.rows.1).contains(&row) && (t.columns.0..=t.columns.1).contains(&col));
+    for cell in table.beside() {
+        if !taken(cell.row, cell.col) && said.insert((Arc::clone(&table.sheet.name), cell.col)) {
+            let at = table.sheet.at(cell.row, cell.col);
+            reader.at(Severity::Warning, &at, plain_text(&cell.value), Sentence::new("intake.no-header"));
         }
     }
 }

@@ -158,28 +158,18 @@ pub(super) fn circuits(visit: &Visit) -> String {
     lines.join("\n")
 }
 
-/// The problems by place and kind, a line each: `error Readings!B2 letters`.
+/// The problems by place and kind, a line each: `error Readings!B2 letters`. The language file must have words for each.
 pub(super) fn problems(problems: &[Problem]) -> String {
+    static ENGLISH: std::sync::LazyLock<Language> = std::sync::LazyLock::new(Language::english);
     let line = |p: &Problem| {
+        let words = [Some(&p.message), p.hint.as_ref()].into_iter().flatten().map(|s| ENGLISH.say(s)).collect::<String>();
+        assert!(!words.is_empty() && !words.contains(['⟨', '⟩']), "{words}");
         let place = match (&p.cell, &p.sheet) {
             (Some(cell), _) => cell.to_string(),
             (None, Some(sheet)) => sheet.to_string(),
             (None, None) => "workbook".to_owned(),
         };
         format!("{} {place} {}", p.severity.name(), p.message.key.trim_start_matches("intake."))
-    };
-    problems.iter().map(line).collect::<Vec<_>>().join("\n")
-}
-
-/// The problems in words, as a terminal shows them; no entry or value is missing from the language file.
-pub(super) fn said(problems: &[Problem]) -> String {
-    let english = Language::english();
-    let line = |p: &Problem| {
-        let place = p.cell.as_ref().map(ToString::to_string).or(p.sheet.as_ref().map(ToString::to_string)).unwrap_or_default();
-        let hint = p.hint.as_ref().map(|h| format!(" {}", english.say(h))).unwrap_or_default();
-        let text = format!("{} {place} `{}`: {}{hint}", p.severity.name(), p.found, english.say(&p.message));
-        assert!(!text.contains(['⟨', '⟩']), "{text}");
-        text
     };
     problems.iter().map(line).collect::<Vec<_>>().join("\n")
 }

@@ -30,6 +30,14 @@ fn a_panel_schedule_is_a_circuit_list() {
 }
 
 #[test]
+fn both_sides_of_a_panel_are_read() {
+    let expected = "1 15 A\n3 20 A\n2 20 A\n4 15 A";
+    let said = "warning C no-fed-from";
+    check("side by side", "Ckt|Load served|Bkr|Ckt|Load served|Bkr\n1|lights|15|2|counter|20\n3|heat|20|4|hall|15", NONE, expected, said);
+    check("mirrored", "Ckt|Load served|Bkr|Bkr|Load served|Ckt\n1|lights|15|20|counter|2\n3|heat|20|15|hall|4", NONE, expected, said);
+}
+
+#[test]
 fn sources_are_found_or_named() {
     check("utility in words", "Circuit|Fed from\nSVC|Utility\n9|svc", NONE, "SVC\n9 < svc", "");
     check("a circuit by the name of the utility", "Circuit|Fed from\nMains|\n9|mains", NONE, "Mains\n9 < mains", "");

@@ -175,6 +175,17 @@ fn every_table_in_whatever_sheet_is_read() {
 }
 
 #[test]
+fn what_a_sheet_reckons_is_not_read() {
+    let rows = "Location|L1-N|L2-N|L1-L2|L1-N off nominal %|L2-N off nominal %|Leg sum less L1-L2\nSVC|120|120|240|0|0|0\nSP1|119|121|240|=B3|-1|0";
+    check("field workbook", rows, "SVC: L1-N 120, L2-N 120, L1-L2 240\nSP1: L1-N 119, L2-N 121, L1-L2 240", "");
+    let book = Book::new()
+        .sheet("How to", "Field workbook\n\nVisit: one line an item.")
+        .sheet("Visit", VISIT)
+        .sheet("R", "Location|L1-N\nSVC|120");
+    check_book("a sheet for people", book, "SVC: L1-N 120", "");
+}
+
+#[test]
 fn hidden_parts_are_read_and_said_once() {
     let rows = "Location|L1-N|L2-N\nSVC|120.1|119.9";
     let mut book = Book::new().sheet("Visit", VISIT).sheet("R", rows);
@@ -196,7 +207,7 @@ fn names_that_became_dates_are_named() {
     assert_eq!(readings(&out.value), "1/3: L1-N 120.1");
     assert_eq!(out.value.rows[0].run, Some(1));
     assert_eq!(out.value.tree.order, [0, 1, 2]);
-    assert_eq!(problems(&out.problems), "warning Circuits!A3 name-as-date\nwarning Circuits!B4 name-as-date\nwarning R!A2 name-as-date");
+    assert_eq!(problems(&out.problems), "warning Circuits!A3 made-a-date\nwarning Circuits!B4 made-a-date\nwarning R!A2 made-a-date");
 }
 
 #[test]

@@ -88,3 +88,12 @@ fn what_is_wrong_with_a_mapping_is_named_with_key_and_line() {
     let broken = Mapping::from_toml("[readings\nx", "own.toml").expect_err("wrong");
     assert!(broken[0].say(&english).starts_with("own.toml, line 1: "), "{broken:?}");
 }
+
+#[test]
+fn the_manual_page_shows_a_sound_mapping() {
+    let page = include_str!("../../../docs/your-own-layout.md");
+    let example = page.split("```toml").nth(1).and_then(|rest| rest.split("```").next()).expect("an example");
+    let english = Language::english();
+    let said: Vec<String> = Mapping::from_toml(example, "layout.toml").err().into_iter().flatten().map(|p| p.say(&english)).collect();
+    assert_eq!(said, Vec::<String>::new());
+}

@@ -17,9 +17,11 @@ fn the_system_is_named_computed_or_assumed_and_said() {
         ("System|240/120", "240/120", ""),
         ("System|230", "230", ""),
         ("Service|120/208", "120/208", ""),
-        ("Client|Orla Penhallow", "120/240", "warning workbook system-assumed"),
+        ("Service|120/240 V 200 A", "120/240", ""),
+        ("Service|200 A\nSystem|208Y/120", "208Y/120", ""),
+        ("Client|Orla Penhallow", "120/240", "warning Visit system-assumed"),
         ("System|", "120/240", "warning workbook system-assumed"),
-        ("System|n/a", "120/240", "warning workbook system-assumed"),
+        ("System|n/a", "120/240", "warning Visit system-assumed"),
         ("System|two hots and a neutral", "120/240", "error Visit!B2 unknown-system"),
         ("System|#REF!", "120/240", "error Visit!B2 error-value"),
         ("Nominal L-N|127\nNominal L-L|220", "220Y/127", ""),
@@ -41,7 +43,10 @@ fn items_are_read_under_a_header_or_as_a_form() {
     let items = "Job number|AF-2101\nClient|Orla Penhallow\nSite address|4 Quarry Lane, Alder Ferry\nVisit date|@2026-09-14\nPurpose|Home inspection\nPrepared by|Ines Marlow\nLicence|Inspector 0417\nCompany|Kestrel & Rowe Electrical\nSystem|120/240\nService rating|200 A\nSupplied by|Ferry Valley Light & Water\nCode in force|as adopted\nWeather|dry\nRemarks|none of note";
     let form = format!("Kestrel & Rowe Electrical\n\n{}", items.replace('|', ":|"));
     let beside = "Job no.|AF-2101||Customer|Orla Penhallow\nAddress|4 Quarry Lane, Alder Ferry||Date|@2026-09-14\nType of visit|inspection||Inspector|Ines Marlow\nLicense|Inspector 0417||Contractor|Kestrel & Rowe Electrical\nSystem|120/240||Main breaker|200 A\nUtility|Ferry Valley Light & Water||Code|as adopted\nWeather|dry||Notes|none of note";
-    for sheet in [format!("Item|Entry\n{items}"), items.to_owned(), form, beside.to_owned()] {
+    let pairs = items.lines().filter_map(|line| line.split_once('|'));
+    let (heads, entries): (Vec<&str>, Vec<&str>) = pairs.unzip();
+    let across = format!("{}\n{}", heads.join("|"), entries.join("|"));
+    for sheet in [format!("Item|Entry\n{items}"), items.to_owned(), form, beside.to_owned(), across] {
         let out = Book::new().sheet("Any", &sheet).sheet("R", READINGS).visit();
         let site = out.value.site;
         let texts = [
@@ -103,9 +108,15 @@ fn one_workbook_is_one_visit() {
     let out = Book::new().sheet("Visit", &twice).sheet("R", READINGS).visit();
     assert_eq!(problems(&out.problems), "error Visit!B4 item-twice");
     assert_eq!(out.value.site.date.map(|d| d.value.day), Some(14));
+    let again = "Date:|14 Sep 2026\n\nLocation|L1-N\nSVC|120";
+    let out = Book::new().sheet("Visit", first).sheet("R", again).visit();
+    assert_eq!(problems(&out.problems), "");
+    let other = again.replace("14 Sep", "15 Sep");
+    let out = Book::new().sheet("Visit", first).sheet("R", &other).visit();
+    assert_eq!(problems(&out.problems), "error R!B1 second-visit-dated");
     let dated = "Date|Location|L1-N\n@2026-09-14|SVC|120\n@2026-09-15|SVC|121\n@2026-09-15|9|119";
     let out = Book::new().sheet("Visit", first).sheet("R", dated).visit();
-    assert_eq!(problems(&out.problems), "error R!A3 other-date");
+    assert_eq!(problems(&out.problems), "warning R!A3 other-date");
     assert_eq!(out.value.rows.len(), 3);
 }
 

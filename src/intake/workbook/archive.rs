@@ -82,11 +82,6 @@ impl<'a> Archive<'a> {
         self.entries.contains_key(&key(name))
     }
 
-    /// Names of the parts, in lower case, sorted.
-    pub fn names(&self) -> impl Iterator<Item = &str> {
-        self.entries.keys().map(String::as_str)
-    }
-
     /// A part as a stream, if there is one of that name.
     ///
     /// # Errors

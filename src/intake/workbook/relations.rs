@@ -15,6 +15,31 @@ pub struct Relation {
     pub target: String,
 }
 
+/// A sheet as a workbook's main part lists it.
+pub struct Entry {
+    /// Its name.
+    pub name: String,
+    /// The id of the relation to its part.
+    pub relation: String,
+    /// It is hidden.
+    pub hidden: bool,
+}
+
+/// The part of a kind of which there is at most one.
+pub fn part<'a>(relations: &'a [Relation], kind: &str) -> Option<&'a str> {
+    relations.iter().find(|r| r.kind == kind).map(|r| r.target.as_str())
+}
+
+/// The part of a listed sheet; none for a chart sheet or a macro sheet, which hold no cells of their own.
+///
+/// # Errors
+/// There is no such part.
+pub fn worksheet<'a>(relations: &'a [Relation], entry: &Entry) -> Result<Option<&'a str>, Refusal> {
+    let relation = relations.iter().find(|r| r.id == entry.relation);
+    let relation = relation.ok_or_else(|| Refusal::Damaged(format!("sheet {} is listed but not there", entry.name)))?;
+    Ok((relation.kind == "worksheet").then_some(relation.target.as_str()))
+}
+
 /// The relations of a part, or of the package (the empty name). Those that lead out of the package are left out.
 ///
 /// # Errors

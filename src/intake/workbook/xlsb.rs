@@ -6,7 +6,7 @@ use super::archive::Archive;
 use super::binary;
 use super::bounds::{Budget, MOST_ENTRIES, MOST_SHEETS, at_most};
 use super::draft::Draft;
-use super::relations;
+use super::relations::{self, Entry};
 use super::serial::Kind;
 use super::texts::Texts;
 use crate::intake::Refusal;
@@ -22,13 +22,6 @@ struct Context {
     texts: Texts,
 }
 
-/// A sheet as the workbook part lists it.
-struct Entry {
-    name: String,
-    relation: String,
-    hidden: bool,
-}
-
 /// Reads a workbook, given the name of its main part.
 ///
 /// # Errors
@@ -37,15 +30,12 @@ pub fn read(archive: &Archive, main: &str, budget: &mut Budget) -> Result<Workbo
     let mut context = Context::default();
     let entries = context.book(archive, main)?;
     let relations = relations::of(archive, main)?;
-    let part = |kind: &str| relations.iter().find(|r| r.kind == kind).map(|r| r.target.as_str());
-    part("styles").map_or(Ok(()), |name| context.styles(archive, name))?;
-    part("sharedStrings").map_or(Ok(()), |name| context.texts(archive, name))?;
+    relations::part(&relations, "styles").map_or(Ok(()), |name| context.styles(archive, name))?;
+    relations::part(&relations, "sharedStrings").map_or(Ok(()), |name| context.texts(archive, name))?;
     let mut sheets = Vec::new();
     for entry in &entries {
-        let relation = relations.iter().find(|r| r.id == entry.relation);
-        let relation = relation.ok_or_else(|| Refusal::Damaged(format!("sheet {} is listed but not there", entry.name)))?;
-        if relation.kind == "worksheet" {
-            sheets.push(context.sheet(archive, &relation.target, entry, budget)?);
+        if let Some(part) = relations::worksheet(&relations, entry)? {
+            sheets.push(context.sheet(archive, part, entry, budget)?);
         }
     }
     Ok(Workbook { sheets })

@@ -6,7 +6,7 @@ mod styles;
 
 use super::archive::Archive;
 use super::bounds::{Budget, MOST_SHEETS, at_most};
-use super::relations::{self, Relation};
+use super::relations::{self, Entry};
 use super::texts::Texts;
 use super::xml::{Node, Xml};
 use crate::intake::Refusal;
@@ -33,13 +33,6 @@ struct Book {
     sheets: Vec<Entry>,
 }
 
-/// A sheet as the workbook part lists it.
-struct Entry {
-    name: String,
-    relation: String,
-    hidden: bool,
-}
-
 /// Reads a workbook, given the name of its main part.
 ///
 /// # Errors
@@ -47,24 +40,16 @@ struct Entry {
 pub fn read(archive: &Archive, main: &str, budget: &mut Budget) -> Result<Workbook, Refusal> {
     let book = book(archive, main)?;
     let relations = relations::of(archive, main)?;
-    let part = |kind: &str| relations.iter().find(|r| r.kind == kind).map(|r| r.target.as_str());
-    let kinds = part("styles").map_or(Ok(Vec::new()), |name| styles::read(archive, name))?;
-    let texts = part("sharedStrings").map_or(Ok(Texts::default()), |name| strings::read(archive, name))?;
+    let kinds = relations::part(&relations, "styles").map_or(Ok(Vec::new()), |name| styles::read(archive, name))?;
+    let texts = relations::part(&relations, "sharedStrings").map_or(Ok(Texts::default()), |name| strings::read(archive, name))?;
     let context = sheet::Context { kinds: &kinds, texts: &texts, from_1904: book.from_1904 };
     let mut sheets = Vec::new();
     for entry in &book.sheets {
-        if let Some(part) = worksheet(&relations, entry)? {
+        if let Some(part) = relations::worksheet(&relations, entry)? {
             sheets.push(sheet::read(archive, part, entry, &context, budget)?);
         }
     }
     Ok(Workbook { sheets })
-}
-
-/// The part of a listed sheet; none for a chart sheet or a macro sheet, which hold no cells of their own.
-fn worksheet<'a>(relations: &'a [Relation], entry: &Entry) -> Result<Option<&'a str>, Refusal> {
-    let relation = relations.iter().find(|r| r.id == entry.relation);
-    let relation = relation.ok_or_else(|| Refusal::Damaged(format!("sheet {} is listed but not there", entry.name)))?;
-    Ok((relation.kind == "worksheet").then_some(relation.target.as_str()))
 }
 
 fn book(archive: &Archive, main: &str) -> Result<Book, Refusal> {

@@ -8,7 +8,7 @@ use crate::report::document::Inline;
 pub(super) fn write(page: &mut Markup, text: &[Inline]) {
     for inline in text {
         match inline {
-            Inline::Text(text) => page.text(text),
+            Inline::Text(text) => words(page, text),
             Inline::Strong(text) => page.element("strong", &[], |page| write(page, text)),
             Inline::Emphasis(text) => page.element("em", &[], |page| write(page, text)),
             Inline::Link { href, text } => link(page, href, text),
@@ -16,6 +16,24 @@ pub(super) fn write(page: &mut Markup, text: &[Inline]) {
             Inline::Break => page.void("br", &[]),
         }
     }
+}
+
+/// Text in which the names of quantities (`L1-N`, `N-G`) are kept on one line.
+pub(super) fn words(page: &mut Markup, text: &str) {
+    for (n, word) in text.split(' ').enumerate() {
+        page.text(if n > 0 { " " } else { "" });
+        if is_quantity(word) {
+            page.element("span", &[("class", "whole")], |page| page.text(word));
+        } else {
+            page.text(word);
+        }
+    }
+}
+
+/// Two short names joined by a hyphen, with or without a mark behind them.
+fn is_quantity(word: &str) -> bool {
+    let is_name = |name: &str| (1..=3).contains(&name.len()) && name.bytes().all(|b| b.is_ascii_uppercase() || b.is_ascii_digit());
+    word.trim_end_matches([',', '.', ':', ';', ')']).split_once('-').is_some_and(|(a, b)| is_name(a) && is_name(b))
 }
 
 /// A link within the document, to a secure page or to a mail address; the text of any other stands alone.

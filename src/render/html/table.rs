@@ -11,8 +11,15 @@ const WIDE: usize = 8;
 /// The longest name that is kept on one line.
 const LONGEST_NAME: usize = 34;
 
+/// The longest text of a column whose cells are kept on one line.
+const LONGEST_WORD: usize = 10;
+/// The longest text of a column that needs no room of its own.
+const LONGEST_SHORT: usize = 18;
+
 /// Writes a table; one without rows says so.
 pub(super) fn write(page: &mut Markup, table: &Table, decimal_mark: char) {
+    // A document without a language has no decimal mark.
+    let decimal_mark = if decimal_mark == '\0' { '.' } else { decimal_mark };
     if table.rows.is_empty() || table.columns.is_empty() {
         return page.element("div", &[("class", "table empty")], |page| {
             page.element("p", &[("class", "caption")], |page| page.text(&table.caption));
@@ -40,6 +47,8 @@ struct Shape<'a> {
     first: bool,
     /// Most decimals of its numbers.
     decimals: u8,
+    /// Characters of its longest text.
+    longest: usize,
     /// Whether any of its numbers has an uncertainty, which then stands in a column of its own.
     uncertain: bool,
 }
@@ -53,7 +62,14 @@ impl<'a> Shape<'a> {
             })
         };
         let decimals = numbers().map(|n| n.decimals).max().unwrap_or(0);
-        Self { column, first: index == 0, decimals, uncertain: numbers().any(|n| n.uncertainty.is_some()) }
+        let length = |cell: &Cell| match cell {
+            Cell::Text(text) => text.chars().count(),
+            Cell::Rich(_) => usize::MAX,
+            _ => 0,
+        };
+        let cells = table.rows.iter().filter(|row| !row.group).filter_map(|row| row.cells.get(index));
+        let longest = cells.map(length).max().unwrap_or(0);
+        Self { column, first: index == 0, decimals, longest, uncertain: numbers().any(|n| n.uncertainty.is_some()) }
     }
 
     fn span(&self) -> usize {
@@ -63,6 +79,8 @@ impl<'a> Shape<'a> {
     fn class(&self) -> &'static str {
         match self.column.kind {
             ColumnKind::Name => "name",
+            ColumnKind::Text if self.longest <= LONGEST_WORD => "name",
+            ColumnKind::Text if self.longest <= LONGEST_SHORT => "short",
             ColumnKind::Text => "text",
             ColumnKind::Number => "number",
             ColumnKind::Signal | ColumnKind::Verdict => "word",
@@ -73,7 +91,7 @@ impl<'a> Shape<'a> {
         let span = self.span().to_string();
         let attributes = [("scope", "col"), ("class", self.class()), ("colspan", span.as_str())];
         page.element("th", &attributes[..if self.uncertain { 3 } else { 2 }], |page| {
-            page.text(&self.column.heading);
+            inline::words(page, &self.column.heading);
             if let Some(symbol) = self.column.unit.map(|u| u.symbol()).filter(|s| !s.is_empty()) {
                 page.text(" ");
                 page.element("span", &[("class", "unit")], |page| page.text(symbol));
@@ -123,7 +141,7 @@ fn write_cell(page: &mut Markup, cell: &Cell, shape: &Shape, decimal_mark: char)
 fn content(page: &mut Markup, cell: &Cell, decimal_mark: char) {
     match cell {
         Cell::Empty => {}
-        Cell::Text(text) => page.text(text),
+        Cell::Text(text) => inline::words(page, text),
         Cell::Rich(text) => inline::write(page, text),
         Cell::Number(number) => page.text(&digits(number.value, number.decimals, decimal_mark)),
         Cell::Signal(signal) => mark::signal(page, *signal),

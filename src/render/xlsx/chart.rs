@@ -20,6 +20,8 @@ pub(super) struct Place<'a> {
     pub header: u32,
     /// Its first and last row.
     pub rows: (u32, u32),
+    /// Whether a value is below zero; columns otherwise stand on it.
+    pub below_zero: bool,
     /// Row whose first cell holds the chart's title.
     pub title: u32,
 }
@@ -46,15 +48,27 @@ pub(super) fn column(wanted: &document::Chart, place: &Place, accent: [u8; 3]) -
         .set_name((place.sheet, place.title, 0))
         .set_font(ChartFont::new().set_size(12).set_bold().set_color(ink))
         .set_overlay(false);
-    chart.legend().set_position(ChartLegendPosition::Bottom);
+    match wanted.values.as_slice() {
+        [_] => chart.legend().set_hidden(),
+        _ => chart.legend().set_position(ChartLegendPosition::Bottom),
+    };
     let guide = ChartLine::new().set_color(color(Colour::Faint.srgb(accent))).set_width(0.5).clone();
-    chart.y_axis().set_major_gridlines_line(&guide).set_num_format("0").set_min(0);
+    chart.y_axis().set_major_gridlines_line(&guide).set_num_format("0").set_name(unit(wanted, place));
+    if !place.below_zero {
+        chart.y_axis().set_min(0);
+    }
     chart
         .set_width(SIZE.0)
         .set_height(SIZE.1)
         .set_alt_text(visible(&wanted.alt))
         .set_object_movement(ObjectMovement::MoveButDontSizeWithCells);
     Some(chart)
+}
+
+/// The unit of the values, for the axis.
+fn unit(wanted: &document::Chart, place: &Place) -> &'static str {
+    let column = wanted.values.first().and_then(|key| place.grid.find(key));
+    column.and_then(|p| p.column.unit).map_or("", |u| u.symbol())
 }
 
 /// Fills that stay apart in grey: dark, light, between.

@@ -64,19 +64,19 @@ mod tests {
         Arc::new(Table { name: String::new(), caption: String::new(), columns: Vec::new(), rows, when_empty: String::new() })
     }
 
-    fn layout(facts: usize, tables: &[usize], most: usize) -> Vec<Vec<Range<usize>>> {
+    fn layout(facts: usize, tables: &[usize], most: usize) -> Vec<Vec<(usize, usize)>> {
         let facts = vec![(String::new(), String::new()); facts];
         let sheet = Sheet { name: String::new(), facts, tables: tables.iter().map(|&n| table(n)).collect(), chart: None };
-        pages(&sheet, most).iter().map(|p| p.parts.iter().map(|t| t.rows.clone()).collect()).collect()
+        pages(&sheet, most).iter().map(|p| p.parts.iter().map(|t| (t.rows.start, t.rows.end)).collect()).collect()
     }
 
     #[test]
     fn rows_that_do_not_fit_go_on_in_a_further_worksheet() {
         assert_eq!(layout(0, &[], 10), [vec![]]);
-        assert_eq!(layout(0, &[6], 10), [vec![0..6]]);
-        assert_eq!(layout(0, &[7], 10), [vec![0..6], vec![6..7]]);
-        assert_eq!(layout(2, &[0, 3], 12), [vec![0..0, 0..2], vec![2..3]]);
-        assert_eq!(layout(9, &[2], 10), [vec![], vec![0..2]]);
-        assert_eq!(layout(0, &[13], 10), [vec![0..6], vec![6..12], vec![12..13]]);
+        assert_eq!(layout(0, &[6], 10), [vec![(0, 6)]]);
+        assert_eq!(layout(0, &[7], 10), [vec![(0, 6)], vec![(6, 7)]]);
+        assert_eq!(layout(2, &[0, 3], 12), [vec![(0, 0), (0, 2)], vec![(2, 3)]]);
+        assert_eq!(layout(9, &[2], 10), [vec![], vec![(0, 2)]]);
+        assert_eq!(layout(0, &[13], 10), [vec![(0, 6)], vec![(6, 12)], vec![(12, 13)]]);
     }
 }

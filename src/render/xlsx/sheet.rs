@@ -3,7 +3,7 @@
 use super::formula::{self, Line};
 use super::grid::{self, Grid, Place};
 use super::page::{CHART_ROWS, Page, Part};
-use super::style::{Styles, color, mark_words};
+use super::style::{Styles, color, inset, mark_words};
 use super::{cell, chart, width};
 use crate::render::text::{not_finite, visible};
 use crate::report::document::{Cell, ColumnKind, Meta, Number, PageSize};
@@ -98,7 +98,8 @@ impl Writer<'_> {
     fn part(&mut self, part: &Part) -> Result<(), XlsxError> {
         let alone = self.page.parts.len() == 1;
         self.row += u32::from(self.row > 1);
-        if !part.table.caption.is_empty() && !(alone && part.table.caption == self.page.sheet.name) {
+        let repeats_title = alone && part.table.caption == self.page.sheet.name;
+        if !part.table.caption.is_empty() && !repeats_title {
             cell::write(self.sheet, self.row, 0, &part.table.caption, &self.styles.caption)?;
             self.row += 1;
         }
@@ -128,18 +129,15 @@ impl Writer<'_> {
         let mut most = 1;
         for place in &grid.places {
             let text = width::heading(place.column);
-            let format = self.styles.heading(place.column.kind, place.uncertainty.is_some(), filtered);
+            let format = match place.column.kind {
+                ColumnKind::Number => self.styles.number_heading(place.uncertainty.is_some(), filtered),
+                _ => inset(&self.styles.heading(filtered), place.at),
+            };
             cell::write(self.sheet, self.row, place.at, &text, &format)?;
             most = most.max(width::lines(&text, self.width(place.at)));
             if let Some(at) = place.uncertainty {
                 let unit = place.column.unit.map_or("", |u| u.symbol());
-                cell::write(
-                    self.sheet,
-                    self.row,
-                    at,
-                    format!("± {unit}").trim_end(),
-                    &self.styles.heading(ColumnKind::Text, false, filtered),
-                )?;
+                cell::write(self.sheet, self.row, at, format!("± {unit}").trim_end(), &self.styles.heading(filtered))?;
             }
         }
         self.set_lines(most + u32::from(filtered))?;
@@ -174,7 +172,7 @@ impl Writer<'_> {
 
     fn cell(&mut self, content: &Cell, place: &Place, line: Line) -> Result<(), XlsxError> {
         let Self { styles, row, .. } = *self;
-        let text = if line.row.group { &styles.group } else { &styles.text };
+        let text = &inset(if line.row.group { &styles.group } else { &styles.text }, place.at);
         if let Some(beside) = place.uncertainty {
             self.sheet.write_blank(row, beside, text)?;
         }
@@ -183,8 +181,8 @@ impl Writer<'_> {
             Cell::Text(words) => cell::write(self.sheet, row, place.at, words, text),
             Cell::Rich(words) => cell::write_rich(self.sheet, row, place.at, words, text),
             Cell::Number(number) => self.number(number, place, line),
-            Cell::Signal(signal) => cell::write(self.sheet, row, place.at, signal.word(), &styles.word),
-            Cell::Verdict(verdict) => cell::write(self.sheet, row, place.at, verdict.name(), &styles.word),
+            Cell::Signal(signal) => cell::write(self.sheet, row, place.at, signal.word(), text),
+            Cell::Verdict(verdict) => cell::write(self.sheet, row, place.at, verdict.name(), text),
         }
     }
 
@@ -230,7 +228,9 @@ impl Writer<'_> {
             return Ok(());
         };
         self.row += 1;
-        let place = chart::Place { sheet: &self.sheet.name(), grid, header, rows, title: self.row };
+        let mut cells = part.table.rows.iter().flat_map(|row| &row.cells);
+        let below_zero = cells.any(|c| matches!(c, Cell::Number(n) if n.value < 0.0));
+        let place = chart::Place { sheet: &self.sheet.name(), grid, header, rows, below_zero, title: self.row };
         if let Some(drawn) = chart::column(wanted, &place, self.styles.accent) {
             // The title is a cell's text, behind the chart: a text given to the chart itself could be taken for a reference.
             cell::write(self.sheet, self.row, 0, &wanted.title, &Format::new())?;

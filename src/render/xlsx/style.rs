@@ -4,7 +4,7 @@
 //! what is undecided is italic.
 
 use crate::render::contrast;
-use crate::report::document::{ColumnKind, Number};
+use crate::report::document::Number;
 use crate::report::drawing::Colour;
 use crate::results::{Signal, Verdict};
 use rust_xlsxwriter::{Color, ConditionalFormatCell, ConditionalFormatCellRule, Format, FormatAlign, FormatBorder, Worksheet, XlsxError};
@@ -21,10 +21,8 @@ pub(super) struct Styles {
     pub caption: Format,
     /// A row that heads a group.
     pub group: Format,
-    /// Text.
+    /// Text, signal words and verdicts.
     pub text: Format,
-    /// Signal words and verdicts.
-    pub word: Format,
     /// The accent, dark enough to be read on white.
     pub accent: [u8; 3],
     heading: Format,
@@ -54,16 +52,19 @@ impl Styles {
             heading,
             group: data.clone().set_bold().set_background_color(GROUP_FILL),
             text: data.clone().set_text_wrap(),
-            word: data.clone(),
             number: data,
             accent,
         }
     }
 
-    /// The heading of a column.
-    pub(super) fn heading(&self, kind: ColumnKind, uncertain: bool, filtered: bool) -> Format {
-        let format = if filtered { self.heading.clone().set_align(FormatAlign::Top) } else { self.heading.clone() };
-        if kind == ColumnKind::Number { spaced(format, uncertain) } else { format }
+    /// The heading of a column; at the top where a filter's button stands below it.
+    pub(super) fn heading(&self, filtered: bool) -> Format {
+        if filtered { self.heading.clone().set_align(FormatAlign::Top) } else { self.heading.clone() }
+    }
+
+    /// The heading of a column of numbers.
+    pub(super) fn number_heading(&self, uncertain: bool, filtered: bool) -> Format {
+        spaced(self.heading(filtered), uncertain)
     }
 
     /// A number with its decimals, as it was judged; `uncertain` where its uncertainty may stand right of it.
@@ -82,6 +83,11 @@ impl Styles {
     pub(super) fn uncertainty(&self, decimals: u8) -> Format {
         self.number.clone().set_align(FormatAlign::Left).set_num_format(format!("\"± \"{}", pattern(decimals)))
     }
+}
+
+/// Text a little away from the column at its left.
+pub(super) fn inset(format: &Format, at: u16) -> Format {
+    if at > 0 { format.clone().set_align(FormatAlign::Left).set_indent(1) } else { format.clone() }
 }
 
 /// Right-aligned, away from the text at its right; the uncertainty belongs close to its number.

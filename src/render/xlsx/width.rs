@@ -7,9 +7,11 @@ use crate::report::document::{Cell, Column, ColumnKind, Number, Table};
 use unicode_width::UnicodeWidthStr;
 
 /// The widest a worksheet gets before its running text is set narrower, so that its print can still be read.
-const WIDEST: f64 = 165.0;
+const WIDEST: f64 = 150.0;
 /// The narrowest running text is set.
-const NARROWEST_TEXT: f64 = 26.0;
+const NARROWEST_TEXT: u8 = 28;
+/// The widest it is set.
+const WIDEST_TEXT: u8 = 65;
 /// Running text is narrower than as many digits, by which widths are counted.
 const TEXT_TO_DIGITS: f64 = 1.06;
 /// The widest heading that is kept on one line with its unit.
@@ -29,11 +31,11 @@ pub(super) fn columns(page: &Page) -> Vec<f64> {
         }
     }
     if page.first && !page.sheet.facts.is_empty() {
-        columns.resize(columns.len().max(2), Width { wide: 60.0, elastic: true });
+        columns.resize(columns.len().max(2), Width { wide: WIDEST_TEXT.into(), elastic: true });
         let label = page.sheet.facts.iter().map(|(label, _)| widest_line(label)).max().unwrap_or(0);
         columns[0].fit(characters(label.min(24)), false);
     }
-    squeezed(columns)
+    squeezed(&columns)
 }
 
 /// Width of the widest line of a text.
@@ -43,7 +45,7 @@ pub(super) fn widest_line(text: &str) -> usize {
 
 /// How many lines a text takes in a column or merged cell of that width.
 pub(super) fn lines(text: &str, wide: f64) -> u32 {
-    let room = ((wide - 1.0) * TEXT_TO_DIGITS).max(4.0);
+    let room = ((wide - 2.0) * TEXT_TO_DIGITS).max(4.0);
     text.lines().map(|line| wrapped(line, room)).sum::<u32>().max(1)
 }
 
@@ -78,13 +80,11 @@ impl Width {
     }
 }
 
-/// The columns with their running text set narrower where the worksheet would be too wide.
-fn squeezed(columns: Vec<Width>) -> Vec<f64> {
-    let excess = (columns.iter().map(|c| c.wide).sum::<f64>() - WIDEST).max(0.0);
-    let gives = |c: &Width| if c.elastic { (c.wide - NARROWEST_TEXT).max(0.0) } else { 0.0 };
-    let room: f64 = columns.iter().map(gives).sum();
-    let share = if room > 0.0 { (excess / room).min(1.0) } else { 0.0 };
-    columns.iter().map(|c| c.wide - gives(c) * share).collect()
+/// The columns, their widest running text set narrower by as much as the worksheet is too wide.
+fn squeezed(columns: &[Width]) -> Vec<f64> {
+    let at_most = |most: f64| columns.iter().map(move |c| if c.elastic { c.wide.min(most) } else { c.wide });
+    let most = (NARROWEST_TEXT..=WIDEST_TEXT).rev().map(f64::from).find(|most| at_most(*most).sum::<f64>() <= WIDEST);
+    at_most(most.unwrap_or(NARROWEST_TEXT.into())).collect()
 }
 
 /// Width of a column: its widest cell within what its kind allows, and its heading's longest word.
@@ -92,8 +92,8 @@ fn content(part: &Part, place: &Place) -> f64 {
     let cells = part.table.rows.iter().filter(|r| !r.group).filter_map(|r| r.cells.get(place.index));
     let widest = cells.map(cell_width).max().unwrap_or(0);
     let (least, most) = match place.column.kind {
-        ColumnKind::Name => (6, 34),
-        ColumnKind::Text => (12, 58),
+        ColumnKind::Name => (6, 28),
+        ColumnKind::Text => (8, 58),
         ColumnKind::Number => (6, 20),
         ColumnKind::Signal | ColumnKind::Verdict => (10, 20),
     };
@@ -137,5 +137,5 @@ fn digits(value: f64, decimals: u8) -> usize {
 
 /// A width that shows so many characters with room at both sides; the format allows 255.
 pub(super) fn characters(n: usize) -> f64 {
-    f64::from(u8::try_from(n).unwrap_or(200).min(200)) * 1.05 + 1.6
+    f64::from(u8::try_from(n).unwrap_or(200).min(200)) * 1.05 + 2.6
 }

@@ -3,9 +3,11 @@
 //! A run that is the only one fed from its source goes straight down below it; only where a source feeds several do they step
 //! in. So a chain stays a chain however long it is, and the eye reads a branching as a branching.
 
-use super::canvas::Canvas;
+use super::Scene;
+use super::canvas::{Canvas, clean};
 use crate::report::drawing::Colour;
 use crate::visit::Tree;
+use crate::wording::Sentence;
 use std::ops::Range;
 
 /// Steps in, at most. Beyond, a run names its source instead of being joined to it.
@@ -36,6 +38,15 @@ impl Twig {
 
 /// Room for the node of column 0.
 const NODE: f64 = 4.0;
+
+impl Scene<'_> {
+    /// Where a run is fed from, in words, where no line of the tree shows it.
+    pub fn source_of(&self, twig: &Twig) -> Option<String> {
+        let run = self.source.visit.runs.get(twig.run).filter(|_| twig.is_apart || twig.parent.is_none())?;
+        let source = run.fed_from.as_ref()?;
+        Some(self.say(&Sentence::new("figure.from").with("run", clean(&source.value))))
+    }
+}
 
 /// Lays out runs, given in the order of the tree with those that hang loose behind. Linear in the number of runs.
 pub(super) fn twigs(tree: &Tree, shown: &[usize]) -> Vec<Twig> {
@@ -104,5 +115,40 @@ pub(super) fn trunks(canvas: &mut Canvas, twigs: &[Twig], y: &[f64], page: Range
                 canvas.line(&[(from, at), (to, at)], 0.8, Colour::Faint);
             }
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// A tree from each run's source.
+    fn tree(parents: &[Option<usize>]) -> Tree {
+        let mut tree = Tree { parent: parents.to_vec(), ..Tree::default() };
+        tree.order = (0..parents.len()).collect();
+        tree
+    }
+
+    #[test]
+    fn a_chain_goes_straight_down_and_a_branching_steps_in() {
+        // 0 ─ 1 ─┬ 2
+        //        └ 3 ─ 4
+        let all: Vec<Twig> = twigs(&tree(&[None, Some(0), Some(1), Some(1), Some(3)]), &[0, 1, 2, 3, 4]);
+        assert_eq!(all.iter().map(|t| t.column).collect::<Vec<_>>(), [0, 0, 1, 1, 1]);
+    }
+
+    #[test]
+    fn a_run_whose_source_is_not_shown_hangs_on_the_next_above() {
+        let some = twigs(&tree(&[None, Some(0), Some(1), Some(2)]), &[0, 3]);
+        assert_eq!((some[1].parent, some[1].skips), (Some(0), true));
+    }
+
+    #[test]
+    fn too_deep_a_branching_stands_apart_at_the_last_step() {
+        // Every even run feeds a leaf and the next even run.
+        let parents: Vec<Option<usize>> = (0..41).map(|i: usize| (i > 0).then(|| (i - 1) / 2 * 2)).collect();
+        let all = twigs(&tree(&parents), &(0..41).collect::<Vec<_>>());
+        assert_eq!(all.iter().map(|t| t.column).max(), Some(MOST_COLUMNS));
+        assert!(all[40].is_apart && !all[1].is_apart);
     }
 }

@@ -93,7 +93,8 @@ impl<'a> Canvas<'a> {
     /// The text as far as it fits, with an ellipsis where it was cut; empty where nothing of it fits.
     fn fitted(&self, text: &str, style: Style, room: f64) -> String {
         let text = clean(text);
-        let fits = |t: &str| self.measure.width(t, style.size, style.bold) <= room;
+        // A column is often as wide as its widest entry: rounding must not cut that one.
+        let fits = |t: &str| self.measure.width(t, style.size, style.bold) <= room + 1e-6;
         if fits(&text) {
             return text;
         }
@@ -166,4 +167,51 @@ pub(super) fn pages(heights: &[f64], room: f64) -> Vec<Range<usize>> {
         pages.push(start..heights.len());
     }
     pages
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    struct Em;
+    impl Measure for Em {
+        fn width(&self, text: &str, size: f64, _bold: bool) -> f64 {
+            text.chars().count() as f64 * size
+        }
+    }
+
+    fn texts(canvas: Canvas) -> Vec<String> {
+        let text = |s| if let Shape::Text { text, .. } = s { Some(text) } else { None };
+        canvas.shapes.into_iter().filter_map(text).collect()
+    }
+
+    #[test]
+    fn a_text_is_cut_to_its_room_and_left_out_where_none_of_it_fits() {
+        let mut canvas = Canvas::new(&Em);
+        for letters in [9.0, 5.0, 2.0, 1.0, -3.0] {
+            canvas.text((0.0, 0.0), "north wall", Style::QUIET, Anchor::Start, letters * SMALL);
+        }
+        assert_eq!(texts(canvas), ["north wa…", "nort…", "n…"]);
+    }
+
+    #[test]
+    fn a_label_is_one_line_without_characters_that_steer() {
+        assert_eq!(clean(" a\t\n b\u{202e}c\u{1b}[2J "), "a b\u{fffd}c\u{fffd}[2J");
+        assert_eq!(clean(&"x".repeat(5000)).len(), MOST_CHARACTERS);
+    }
+
+    #[test]
+    fn a_sentence_is_broken_between_words() {
+        let canvas = Canvas::new(&Em);
+        assert_eq!(canvas.broken("aa bb cc dd", Style::QUIET, 5.0 * SMALL, 2), ["aa bb", "cc dd"]);
+        assert_eq!(canvas.broken("aa bb cc dd", Style::QUIET, 2.0 * SMALL, 2), ["aa", "bb cc dd"]);
+    }
+
+    #[test]
+    fn pages_are_even_and_lose_no_row() {
+        assert_eq!(pages(&[10.0; 12], 50.0), [0..4, 4..8, 8..12]);
+        assert_eq!(pages(&[10.0; 5], 50.0).len(), 1);
+        assert_eq!(pages(&[90.0, 10.0, 90.0], 50.0), [0..1, 1..2, 2..3]);
+        assert!(pages(&[], 50.0).is_empty());
+    }
 }

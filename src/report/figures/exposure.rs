@@ -15,7 +15,7 @@ use std::sync::Arc;
 const MOST: usize = 40;
 const ROW: f64 = 15.0;
 const GAP: f64 = 7.0;
-const HEAD: f64 = 26.0;
+const HEAD: f64 = 20.0;
 const FOOT: f64 = 4.0;
 const RISE: f64 = 3.0;
 /// The end of a range is an open mark.
@@ -33,6 +33,12 @@ pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
     let heights: Vec<f64> = shown.iter().map(|e| height(e)).collect();
     let pages = pages(&heights, MOST_HEIGHT - HEAD - FOOT);
     let mut caption = scene.say(&Sentence::new("figure.exposure"));
+    if chart.band.is_some() {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.exposure-shaded")));
+    }
+    if shown.iter().flat_map(|e| &e.legs).any(|l| l.low.is_some()) {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.exposure-range")));
+    }
     if shown.len() < all.len() {
         let left_out = Sentence::new("figure.exposure-left-out").with("n", shown.len()).with("of", all.len());
         caption = format!("{caption} {}", scene.say(&left_out));
@@ -52,7 +58,7 @@ fn can_be_drawn(exposure: &Exposure) -> bool {
 }
 
 /// The least and the most volts of a leg; twice the same where there is one solution.
-pub(super) fn ends(leg: &ExposedLeg) -> [f64; 2] {
+fn ends(leg: &ExposedLeg) -> [f64; 2] {
     [leg.low.unwrap_or(leg.volts).0, leg.volts.0]
 }
 
@@ -120,17 +126,19 @@ impl<'a> Chart<'a> {
             canvas.rect(self.x(from), HEAD - 4.0, (self.x(to) - self.x(from), bottom - HEAD + 4.0), 0.0, Colour::Band);
         }
         canvas.line(&[(self.x(nominal), HEAD - 4.0), (self.x(nominal), bottom)], 0.5, Colour::Faint);
-        canvas.text((left, 18.0), &say(0.0), Style::QUIET, Anchor::Middle, 30.0);
+        canvas.text((left, 10.0), &say(0.0), Style::QUIET, Anchor::Middle, 30.0);
         let middle = if from < to {
             let tolerated = Sentence::new("figure.tolerated").number("low", from, 0, Unit::One).number("high", to, 0, Unit::Volt);
             self.scene.say(&tolerated)
         } else {
             say(nominal)
         };
-        canvas.text((self.x((from + to) / 2.0), 18.0), &middle, Style::QUIET, Anchor::Middle, self.x(self.most) - left - 80.0);
+        let centre = self.x((from + to) / 2.0);
+        let room = 2.0 * ((centre - left).min(right - centre) - 22.0);
+        canvas.text((centre, 10.0), &middle, Style::QUIET, Anchor::Middle, room);
         let head = self.scene.say(&Sentence::new("figure.exposed-head"));
-        canvas.text((right + 24.0, 18.0), &head, Style::QUIET, Anchor::Start, self.scene.width - right - 24.0);
-        canvas.text((right, 18.0), &say(self.most), Style::QUIET, Anchor::Middle, 40.0);
+        canvas.text((right + 24.0, 10.0), &head, Style::QUIET, Anchor::Start, self.scene.width - right - 24.0);
+        canvas.text((right, 10.0), &say(self.most), Style::QUIET, Anchor::Middle, 40.0);
     }
 
     fn leg(&self, canvas: &mut Canvas, leg: &ExposedLeg, finding: Option<&Finding>, y: f64) {
@@ -144,11 +152,11 @@ impl<'a> Chart<'a> {
         let nominal = self.scene.source.visit.system.line_to_neutral.0;
         if leg.low.is_some() {
             canvas.line(&[(self.x(low), y), (self.x(high), y)], 2.2, colour);
-            mark(canvas, (self.x(low), y), 0.0, RANGE_END, colour);
-            mark(canvas, (self.x(high), y), 0.0, RANGE_END, colour);
+            mark(canvas, (self.x(low), y), (0.0, 0.0), RANGE_END, colour);
+            mark(canvas, (self.x(high), y), (0.0, 0.0), RANGE_END, colour);
         } else {
             canvas.line(&[(self.x(nominal), y), (self.x(high), y)], 2.2, colour);
-            mark(canvas, (self.x(high), y), 0.0, Kind::default(), colour);
+            mark(canvas, (self.x(high), y), (0.0, 0.0), Kind::default(), colour);
         }
         let style = if is_off { Style::PLAIN.loud(colour) } else { Style::PLAIN };
         let at = canvas.run(right + 10.0, y + RISE, &self.volts(leg), style, self.scene.width);

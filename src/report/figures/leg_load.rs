@@ -1,6 +1,6 @@
 //! Leg load: the volt-amperes on each leg, circuit by circuit, as they are and after the suggested moves.
 
-use super::canvas::{Canvas, Style};
+use super::canvas::{Canvas, Style, clean};
 use super::{Figure, Scene};
 use crate::quantity::{Unit, VoltAmperes};
 use crate::report::drawing::{Anchor, Colour};
@@ -24,7 +24,9 @@ const MARGIN: f64 = 3.0;
 const MOST_MOVES: usize = 12;
 
 pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
-    let Some(balance) = scene.source.balance.filter(|b| b.legs.iter().any(|l| l.va.0 > 0.0)) else {
+    let Some(balance) =
+        scene.source.balance.filter(|b| b.legs.iter().chain(&b.after).all(|l| l.va.0.is_finite()) && b.legs.iter().any(|l| l.va.0 > 0.0))
+    else {
         return Vec::new();
     };
     let chart = Chart::new(scene, balance);
@@ -36,23 +38,23 @@ pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
 
 /// One piece of a bar: a circuit, or several too small to be drawn apart.
 #[derive(Clone, Debug, PartialEq)]
-pub(super) struct Piece {
+struct Piece {
     /// The circuit; `None` for others together.
-    pub run: Option<usize>,
-    pub va: f64,
+    run: Option<usize>,
+    va: f64,
     /// Circuits in it.
-    pub count: usize,
-    pub is_moved: bool,
+    count: usize,
+    is_moved: bool,
 }
 
 /// A leg's circuits as pieces: the greatest first, then those too small for `has_room` together, and last those that move, so that
 /// the bars before and after differ at their end.
-pub(super) fn pieces(leg: &LegLoad, moves: &[Move], has_room: impl Fn(&Piece) -> bool) -> Vec<Piece> {
+fn pieces(leg: &LegLoad, moves: &[Move], has_room: impl Fn(&Piece) -> bool) -> Vec<Piece> {
     let is_moved = |run: usize| moves.iter().any(|m| m.run == run);
     let piece = |&(run, va): &(usize, VoltAmperes)| Piece { run: Some(run), va: va.0, count: 1, is_moved: is_moved(run) };
     let (moved, mut rest): (Vec<Piece>, Vec<Piece>) = leg.circuits.iter().filter(|c| c.1.0 > 0.0).map(piece).partition(|p| p.is_moved);
     rest.sort_by(|a, b| b.va.total_cmp(&a.va));
-    let small = rest.split_off(rest.iter().position(|p| !has_room(p)).unwrap_or(rest.len()));
+    let (mut rest, small): (Vec<Piece>, Vec<Piece>) = rest.into_iter().partition(has_room);
     match small.as_slice() {
         [] => {}
         [one] => rest.push(one.clone()),
@@ -88,6 +90,10 @@ impl<'a> Chart<'a> {
 
     fn draw(&self, canvas: &mut Canvas) -> f64 {
         let balance = self.balance;
+        let lines = if balance.moves.is_empty() { 1.0 } else { 2.0 };
+        let one = lines * (BAR + GAP) - GAP + LEG_GAP;
+        // Under the bars, so that it crosses no name.
+        self.mean(canvas, HEAD + one * balance.legs.len() as f64 - LEG_GAP + 3.0);
         let mut y = HEAD;
         for (i, leg) in balance.legs.iter().enumerate() {
             canvas.text((0.0, y + BAR / 2.0 + RISE), leg.leg.name(), Style::NAME, Anchor::Start, 22.0);
@@ -103,7 +109,6 @@ impl<'a> Chart<'a> {
             }
             y += BAR + LEG_GAP;
         }
-        self.mean(canvas, y - LEG_GAP + 3.0);
         y += 4.0;
         for sentence in self.summary() {
             y = canvas.paragraph((0.0, y), &self.scene.say(&sentence), Style::PLAIN, self.scene.width, 2);
@@ -138,7 +143,7 @@ impl<'a> Chart<'a> {
 
     /// The piece can be named.
     fn has_room(&self, canvas: &Canvas, piece: &Piece) -> bool {
-        self.room(piece) >= ROOMY || canvas.width_of(&self.label(piece), Style::NAME) <= self.room(piece)
+        self.room(piece) >= ROOMY || canvas.width_of(&self.label(piece), Style::PLAIN.loud(Colour::Ink)) <= self.room(piece)
     }
 
     fn label(&self, piece: &Piece) -> String {
@@ -150,11 +155,8 @@ impl<'a> Chart<'a> {
 
     fn piece(&self, canvas: &mut Canvas, piece: &Piece, at: (f64, f64), width: f64) {
         let (x, y) = at;
-        let (fill, ink, quiet) = match (piece.is_moved, piece.run) {
-            (true, _) => (Colour::Accent, Colour::Paper, Colour::Paper),
-            (false, Some(_)) => (Colour::Band, Colour::Ink, Colour::Quiet),
-            (false, None) => (Colour::Faint, Colour::Ink, Colour::Quiet),
-        };
+        let (fill, ink, quiet) =
+            if piece.is_moved { (Colour::Accent, Colour::Paper, Colour::Paper) } else { (Colour::Band, Colour::Ink, Colour::Quiet) };
         canvas.rect(x, y, ((width - JOINT).max(0.3), BAR), 0.0, fill);
         if self.has_room(canvas, piece) {
             let (base, end) = (y + BAR / 2.0 + RISE, x + MARGIN + self.room(piece));
@@ -204,9 +206,12 @@ impl<'a> Chart<'a> {
     }
 
     fn moved(&self, m: &Move) -> String {
-        let sentence =
-            Sentence::new("figure.move").with("run", self.scene.name(m.run)).with("from", m.from.as_str()).with("to", m.to.as_str());
-        self.scene.say(&sentence)
+        let serves = self.scene.source.visit.runs.get(m.run).and_then(|r| r.serves.as_ref());
+        let sentence = match serves {
+            Some(serves) => Sentence::new("figure.move-serves").with("serves", clean(&serves.value)),
+            None => Sentence::new("figure.move"),
+        };
+        self.scene.say(&sentence.with("run", self.scene.name(m.run)).with("from", m.from.as_str()).with("to", m.to.as_str()))
     }
 
     /// Lists the moves; returns the height of the drawing.

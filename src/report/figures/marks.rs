@@ -4,8 +4,9 @@ use super::canvas::Canvas;
 use crate::report::drawing::Colour;
 use crate::visit::{ReadingRow, Stage, name_key};
 
-/// Narrowest mark that can be told apart by shape, in points.
-pub(super) const LEAST_WIDTH: f64 = 3.6;
+/// Narrowest bar and lozenge that can be told apart by shape, in points.
+const LEAST_WIDTH: f64 = 3.6;
+const LEAST_WAIST: f64 = 5.2;
 const HEIGHT: f64 = 10.0;
 const OUTLINE: f64 = 1.1;
 
@@ -38,19 +39,19 @@ pub(super) fn is_default_state(row: &ReadingRow) -> bool {
     [Stage::AsFound, Stage::AsLeft].iter().any(|s| name_key(&row.state) == s.name())
 }
 
-/// Draws a mark about a point; its width is `width`, but never less than what can be seen.
-pub(super) fn mark(canvas: &mut Canvas, at: (f64, f64), width: f64, kind: Kind, colour: Colour) {
+/// Draws a mark at a point over a span of the beam, but never narrower than can be seen.
+pub(super) fn mark(canvas: &mut Canvas, at: (f64, f64), span: (f64, f64), kind: Kind, colour: Colour) {
     let (x, y) = at;
-    let half = width.max(LEAST_WIDTH) / 2.0;
-    let tall = HEIGHT / 2.0;
     let inset = if kind.is_left { OUTLINE / 2.0 } else { 0.0 };
     let (fill, stroke) = if kind.is_left { (Colour::Paper, Some((OUTLINE, colour))) } else { (colour, None) };
-    let (half, tall) = (half - inset, tall - inset);
+    let tall = HEIGHT / 2.0 - inset;
+    let least = if kind.is_own_state { LEAST_WAIST } else { LEAST_WIDTH };
+    let (from, to) = if span.1 - span.0 >= least { span } else { (x - least / 2.0, x + least / 2.0) };
+    let (from, to) = (from + inset, to - inset);
     let outline = if kind.is_own_state {
-        let waist = half.max(2.6);
-        vec![(x, y - tall), (x + waist, y), (x, y + tall), (x - waist, y)]
+        [(x, y - tall), (to, y), (x, y + tall), (from, y)]
     } else {
-        vec![(x - half, y - tall), (x + half, y - tall), (x + half, y + tall), (x - half, y + tall)]
+        [(from, y - tall), (to, y - tall), (to, y + tall), (from, y + tall)]
     };
     canvas.polygon(&outline, Some(fill), stroke);
 }

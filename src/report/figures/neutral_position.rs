@@ -46,6 +46,11 @@ impl<'a> Judgements<'a> {
         judgements
     }
 
+    /// The rule judged nothing: it is switched off.
+    pub fn is_empty(&self) -> bool {
+        self.by_cell.is_empty()
+    }
+
     /// The finding on a row.
     pub fn finding(&self, row: &ReadingRow) -> Option<&'a Finding> {
         row.readings.iter().find_map(|r| self.by_cell.get(&r.cell).copied())
@@ -123,7 +128,12 @@ pub(super) fn volts(row: &ReadingRow, quantity: Quantity) -> Option<f64> {
 /// What a reader who cannot see the drawing must know of the shifts: how many are judged off, and what the readings point at.
 pub(super) fn alternative(scene: &Scene, judgements: &Judgements, rows: &[&ReadingRow], worst: Option<Sentence>) -> String {
     let faults = rows.iter().filter(|r| judgements.fault(r).is_some()).count();
-    let mut parts = vec![scene.say(&Sentence::new("figure.position-alt").with("n", rows.len()).with("off", faults))];
+    let key = match faults {
+        _ if judgements.is_empty() => "figure.position-alt-plain",
+        0 => "figure.position-alt-sound",
+        _ => "figure.position-alt",
+    };
+    let mut parts = vec![scene.say(&Sentence::new(key).with("n", rows.len()).with("off", faults))];
     parts.extend(worst.map(|w| scene.say(&w)));
     parts.extend(scene.pointed_at());
     parts.join(" ")

@@ -44,13 +44,13 @@ struct Set<'a> {
 }
 
 /// Where the neutral sits: the first leg's share of the sum of both.
-pub(super) fn position([first, second]: [f64; 2]) -> f64 {
+fn position([first, second]: [f64; 2]) -> f64 {
     first / (first + second)
 }
 
 /// Expanded uncertainty of the position. One instrument's gain error raises both readings alike and cancels; the counts are
 /// independent (JCGM 100, 5.1.2).
-pub(super) fn position_uncertainty([first, second]: [f64; 2], counts: f64) -> f64 {
+fn position_uncertainty([first, second]: [f64; 2], counts: f64) -> f64 {
     let sum = first + second;
     2.0 * counts * (math::hypot(first, second) / sum) / sum
 }
@@ -72,6 +72,9 @@ pub(super) fn figures(scene: &Scene, first: Leg, second: Leg) -> Vec<Figure> {
     let pages = pages(&heights, MOST_HEIGHT - HEAD - FOOT);
     let alt = alternative(scene, &judgements, &all, farthest(scene, &rows, legs));
     let mut caption = scene.say(&Sentence::new("figure.position").with("first", first.name()).with("second", second.name()));
+    if !judgements.is_empty() {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.position-shaded")));
+    }
     if rows.len() < all.len() {
         let left_out = Sentence::new("figure.position-left-out").with("n", rows.len()).with("of", all.len());
         caption = format!("{caption} {}", scene.say(&left_out));
@@ -105,7 +108,7 @@ fn farthest(scene: &Scene, rows: &[&ReadingRow], legs: [Leg; 2]) -> Option<Sente
             .with("second", legs[1].name())
             .with("a", scene.language.quantity(volts[0], 1, Unit::Volt))
             .with("b", scene.language.quantity(volts[1], 1, Unit::Volt))
-            .number("percent", 100.0 * position(volts), 0, Unit::Percent),
+            .number("percent", 100.0 * position(volts), 1, Unit::Percent),
     )
 }
 
@@ -131,18 +134,20 @@ fn arrange<'a>(scene: &Scene<'a>, rows: &[&'a ReadingRow], legs: [Leg; 2]) -> (V
             is_first,
             twig: row.run.and(twig),
             has_note: is_first && row.run.is_some() && row.run.as_ref() == noted,
-            said: said(scene, row, is_first, is_only),
+            said: said(scene, row, twig.filter(|_| is_first && row.run.is_some()).and_then(|t| twigs.get(t)), is_only),
         });
     }
     (sets, twigs)
 }
 
-/// What stands behind the name: what the run serves, once; when the readings were taken, where that is not plain.
-fn said(scene: &Scene, row: &ReadingRow, is_first: bool, is_only: bool) -> String {
-    let run = row.run.and_then(|r| scene.source.visit.runs.get(r)).filter(|_| is_first);
+/// What stands behind the name: where the run is fed from, if no line shows it, and what it serves, once; when the readings were
+/// taken, where that is not plain.
+fn said(scene: &Scene, row: &ReadingRow, twig: Option<&Twig>, is_only: bool) -> String {
+    let source = twig.and_then(|t| scene.source_of(t));
+    let run = twig.and_then(|t| scene.source.visit.runs.get(t.run));
     let serves = run.and_then(|r| r.serves.as_ref()).map(|s| clean(&s.value));
     let is_plain = is_only && Kind::of(row) == Kind::default();
-    let parts: Vec<String> = serves.into_iter().chain((!is_plain).then(|| taken(row))).collect();
+    let parts: Vec<String> = source.into_iter().chain(serves).chain((!is_plain).then(|| taken(row))).collect();
     parts.join(" · ")
 }
 
@@ -277,8 +282,9 @@ impl<'a> Strip<'a> {
             None => {}
         }
         let counts = self.scene.source.visit.accuracy_of(set.row, Quantity::line_neutral(self.legs[0])).counts();
-        let width = 2.0 * position_uncertainty(set.volts, counts) * (right - left);
-        mark(canvas, (at, y), width.min(right - left), Kind::of(set.row), colour);
+        // The neutral cannot be off the beam, however unsure its place is.
+        let (share, unsure) = (position(set.volts), position_uncertainty(set.volts, counts));
+        mark(canvas, (at, y), (self.x(share - unsure), self.x(share + unsure)), Kind::of(set.row), colour);
         let style = if fault.is_some() { Style::VALUE.loud(colour) } else { Style::VALUE };
         let say = |v: f64| self.scene.language.quantity(v, 1, Unit::Volt);
         canvas.text((left - 7.0, y + RISE), &say(set.volts[0]), style, Anchor::End, left - 15.0 - self.labels);
@@ -291,7 +297,7 @@ impl<'a> Strip<'a> {
         kinds.dedup();
         let mut x = 6.0;
         for kind in kinds {
-            mark(canvas, (x, y - RISE + 0.5), 0.0, kind, Colour::Ink);
+            mark(canvas, (x, y - RISE + 0.5), (x, x), kind, Colour::Ink);
             x = canvas.run(x + 7.0, y, &self.scene.say(&Sentence::new(kind.key())), Style::QUIET, self.scene.width) + 16.0;
         }
     }

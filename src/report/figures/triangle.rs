@@ -16,22 +16,24 @@ const HEAD: f64 = 26.0;
 /// Room about a triangle for the volts at its corners.
 const ABOVE: f64 = 8.0;
 const BELOW: f64 = 14.0;
-const FOOT: f64 = 16.0;
+const FOOT: f64 = 6.0;
+/// Room for a leg and its volts.
+const LABEL: f64 = 46.0;
 /// Between two lines of triangles.
 const GAP: f64 = 12.0;
 type Point = (f64, f64);
 
 /// The lines and the neutral as points in volts: L1 and L2 (on a high-leg delta L1 and L3) on the level, the third above.
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) struct Place {
-    pub corners: [Point; 3],
-    pub neutral: Point,
+struct Place {
+    corners: [Point; 3],
+    neutral: Point,
     /// Where it belongs in this triangle.
-    pub nominal: Point,
+    nominal: Point,
 }
 
 impl Place {
-    pub fn shift(&self) -> f64 {
+    fn shift(&self) -> f64 {
         math::hypot(self.neutral.0 - self.nominal.0, self.neutral.1 - self.nominal.1)
     }
 }
@@ -58,6 +60,12 @@ pub(super) fn figures(scene: &Scene) -> Vec<Figure> {
     });
     let alt = alternative(scene, &judgements, &all, farthest);
     let mut caption = scene.say(&Sentence::new("figure.triangle"));
+    if !judgements.is_empty() {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.triangle-circle")));
+    }
+    if !grid.has_third {
+        caption = format!("{caption} {}", scene.say(&Sentence::new("figure.triangle-two")));
+    }
     if rows.len() < all.len() {
         let left_out = Sentence::new("figure.position-left-out").with("n", rows.len()).with("of", all.len());
         caption = format!("{caption} {}", scene.say(&left_out));
@@ -85,7 +93,7 @@ fn between(a: Leg, b: Leg) -> Quantity {
 }
 
 /// Places lines and neutral by the readings; `None` where they were not all read or form no triangle.
-pub(super) fn place(scene: &Scene, row: &ReadingRow) -> Option<Place> {
+fn place(scene: &Scene, row: &ReadingRow) -> Option<Place> {
     let arrangement = scene.source.visit.system.arrangement;
     let [a, b, c] = order(arrangement);
     let to_neutral = |leg| volts(row, Quantity::line_neutral(leg));
@@ -115,6 +123,22 @@ fn apex(side: f64, from_first: f64, from_second: f64) -> Option<Point> {
     let x = (from_first * from_first - from_second * from_second + side * side) / (2.0 * side);
     let square = from_first * from_first - x * x;
     (square > 1e-4 * side * side).then(|| (x, square.sqrt()))
+}
+
+/// From volts to the page.
+struct Fit {
+    /// Where the middle of the lowest level stands.
+    foot: Point,
+    centre: f64,
+    low: f64,
+    /// Points a volt.
+    scale: f64,
+}
+
+impl Fit {
+    fn on_page(&self, (x, y): Point) -> Point {
+        (self.foot.0 + (x - self.centre) * self.scale, self.foot.1 - (y - self.low) * self.scale)
+    }
 }
 
 struct Grid<'a> {
@@ -160,7 +184,7 @@ impl<'a> Grid<'a> {
             self.triangle(canvas, judgements, row, (left, top));
         }
         let bottom = self.line_height() * page.len().div_ceil(self.columns) as f64;
-        self.legend(canvas, page, bottom + 8.0);
+        self.legend(canvas, page, bottom);
         bottom + FOOT
     }
 
@@ -175,18 +199,11 @@ impl<'a> Grid<'a> {
         let style = if fault.is_some() { Style::PLAIN.loud(colour) } else { Style::QUIET };
         canvas.text((left, top + 20.0), &self.scene.say(&shift), style, Anchor::Start, room);
 
-        let foot = (left + self.cell / 2.0, top + HEAD + ABOVE + self.tall());
-        let bounds = (left + 2.0, left + self.cell - 12.0, top + HEAD, foot.1 + 2.0);
-        let side = place.corners[1].0;
-        let on_page = |p: Point| {
-            let x = foot.0 - 5.0 + (p.0 - side / 2.0) * self.points_per_volt;
-            (x.clamp(bounds.0, bounds.1), (foot.1 - p.1 * self.points_per_volt).clamp(bounds.2, bounds.3))
-        };
-        let corners = place.corners.map(on_page);
-        let (neutral, nominal) = (on_page(place.neutral), on_page(place.nominal));
+        let fit = self.fit(&place, (left + self.cell / 2.0 - 5.0, top + HEAD + ABOVE + self.tall()));
+        let corners = place.corners.map(|p| fit.on_page(p));
+        let (neutral, nominal) = (fit.on_page(place.neutral), fit.on_page(place.nominal));
         if let Some(allowed) = judgements.allowed(self.scene, row) {
-            let radius = (allowed * self.points_per_volt).min(self.tall());
-            canvas.circle(nominal, radius, Some(Colour::Band), Some((0.6, Colour::Quiet)));
+            canvas.circle(nominal, (allowed * fit.scale).min(self.tall() / 2.0), Some(Colour::Band), Some((0.6, Colour::Quiet)));
         }
         let spokes = if fault.is_some() { colour } else { Colour::Faint };
         let [first, second, third] = corners;
@@ -202,17 +219,39 @@ impl<'a> Grid<'a> {
             canvas.line(&[nominal, neutral], 2.2, colour);
         }
         point(canvas, neutral, row, colour);
-        self.corners(canvas, row, corners);
+        self.volts(canvas, row, corners, left);
     }
 
-    /// The volts to the neutral at each corner.
-    fn corners(&self, canvas: &mut Canvas, row: &ReadingRow, corners: [Point; 3]) {
-        let anchors = [(0.0, 10.0, Anchor::Start), (0.0, 10.0, Anchor::End), (0.0, -5.0, Anchor::Middle)];
-        for ((leg, corner), (dx, dy, anchor)) in self.legs.iter().zip(corners).zip(anchors) {
+    /// The scale of one triangle, the level side centred over `foot`; smaller where something would leave the cell.
+    fn fit(&self, place: &Place, foot: Point) -> Fit {
+        let centre = place.corners[1].0 / 2.0;
+        let points = place.corners.iter().chain([&place.neutral]);
+        let wide = points.clone().map(|p| (p.0 - centre).abs()).fold(0.0, f64::max);
+        let high = points.clone().map(|p| p.1).fold(0.0, f64::max);
+        let low = points.map(|p| p.1).fold(0.0, f64::min);
+        let scale = self.points_per_volt.min((self.cell / 2.0 - 9.0) / wide).min(self.tall() / (high - low));
+        Fit { foot, centre, low, scale }
+    }
+
+    /// The volts to the neutral beside each corner: those of the level side below it, each in its half of the cell.
+    fn volts(&self, canvas: &mut Canvas, row: &ReadingRow, corners: [Point; 3], left: f64) {
+        let middle = left + self.cell / 2.0 - 5.0;
+        let [first, second, third] = corners;
+        let places = [
+            (first.0.min(middle - LABEL), first.1 + 10.0, Anchor::Start),
+            (second.0.max(middle + LABEL), second.1 + 10.0, Anchor::End),
+            (third.0.clamp(left + LABEL / 2.0, left + self.cell - LABEL / 2.0), third.1 - 5.0, Anchor::Middle),
+        ];
+        let shown = if self.has_third { 3 } else { 2 };
+        for (leg, (x, y, anchor)) in self.legs.iter().zip(places).take(shown) {
             let Some(volts) = volts(row, Quantity::line_neutral(*leg)) else { continue };
             let label = format!("{leg} {}", self.scene.language.quantity(volts, 1, Unit::Volt));
-            let room = (self.cell - 16.0) / 2.0;
-            canvas.text((corner.0 + dx, corner.1 + dy), &label, Style::PLAIN, anchor, room);
+            let room = match anchor {
+                Anchor::Start => middle - 1.0 - x,
+                Anchor::End => x - middle - 1.0,
+                Anchor::Middle => LABEL,
+            };
+            canvas.text((x, y), &label, Style::PLAIN, anchor, room);
         }
     }
 

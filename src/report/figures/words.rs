@@ -63,9 +63,10 @@ impl Scene<'_> {
     }
 }
 
-/// A probability in per cent; near the ends with a decimal, and never 0 or 100.
+/// A probability in per cent: near the ends with a decimal, and never 100, for the readings prove nothing beyond doubt.
 pub(super) fn percent(language: &Language, probability: f64) -> String {
     let percent = 100.0 * probability.clamp(0.0, 1.0);
     let decimals = u8::from(!(1.0..=99.0).contains(&percent));
-    language.quantity(percent.clamp(0.1, 99.9), decimals, Unit::Percent)
+    let shown = language.quantity(percent.min(99.9), decimals, Unit::Percent);
+    if percent < 99.95 { shown } else { language.say(&Sentence::new("figure.over").with("percent", shown)) }
 }

@@ -20,8 +20,7 @@ pub(super) fn causes(source: &Source, language: &Language) -> Option<Table> {
         .column("probability", ColumnKind::Number, Some(Unit::Percent))
         .column("ohms", ColumnKind::Text, None);
     let ranking = &source.diagnosis?.ranking;
-    for (i, cause) in ranking.iter().enumerate().filter(|(i, c)| *i == 0 || c.probability >= WORTH_LISTING) {
-        let _ = i;
+    for (_, cause) in ranking.iter().enumerate().filter(|(i, c)| *i == 0 || c.probability >= WORTH_LISTING) {
         draft.row(vec![
             text(&words::cause(source, cause, language)),
             number(100.0 * cause.probability, 1),
@@ -37,14 +36,10 @@ pub(super) fn causes(source: &Source, language: &Language) -> Option<Table> {
 
 fn ohms(o: &AddedOhms, language: &Language) -> String {
     let best = match o.best {
-        Some(best) if best.0 < OPEN => language.quantity(best.0, digits(best.0), Unit::Ohm),
+        Some(best) if best.0 < OPEN => language.quantity(best.0, words::digits(best.0), Unit::Ohm),
         _ => language.text("report.open"),
     };
     format!("{best} ({})", words::between(o.low.0, o.high.map(|h| h.0), language))
-}
-
-fn digits(ohms: f64) -> u8 {
-    if ohms < 10.0 { 2 } else { 0 }
 }
 
 /// What neutral resistance the readings could not have shown, run by run.

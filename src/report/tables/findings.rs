@@ -3,18 +3,29 @@
 use super::{Draft, number, opt, stage, state, text};
 use crate::report::Source;
 use crate::report::document::{Cell, ColumnKind, Number, Table};
+use crate::report::repair::Repair;
 use crate::results::{Finding, Limit, Signal, Verdict};
 use crate::wording::Language;
+use std::collections::BTreeMap;
+
+/// Limits named with a rule.
+const MOST_LIMITS: usize = 8;
 
 /// How many findings of each signal word failed and are undecided.
 pub(super) fn summary(source: &Source, language: &Language) -> Option<Table> {
     let mut draft = Draft::new("summary", language)
         .column("signal", ColumnKind::Signal, None)
         .column("failed", ColumnKind::Number, None)
-        .column("undecided", ColumnKind::Number, None);
+        .column("undecided", ColumnKind::Number, None)
+        .column("mended", ColumnKind::Number, None);
+    let repair = Repair::of(source);
+    let (mended, standing): (Vec<&Finding>, Vec<&Finding>) =
+        shown(source).into_iter().partition(|f| repair.as_ref().is_some_and(|r| r.settles(f)));
     for signal in Signal::ALL.into_iter().rev() {
-        let count = |v: Verdict| source.findings.iter().filter(|f| f.signal == signal && f.verdict == v).count() as f64;
-        draft.row(vec![Cell::Signal(signal), number(count(Verdict::Fail), 0), number(count(Verdict::Undecided), 0)]);
+        let count = |v: Verdict| number(standing.iter().filter(|f| f.signal == signal && f.verdict == v).count() as f64, 0);
+        let mended = mended.iter().filter(|f| f.signal == signal).count();
+        let mended = if repair.is_some() { number(mended as f64, 0) } else { Cell::Empty };
+        draft.row(vec![Cell::Signal(signal), count(Verdict::Fail), count(Verdict::Undecided), mended]);
     }
     draft.finish()
 }
@@ -33,8 +44,11 @@ pub(super) fn findings(source: &Source, language: &Language) -> Option<Table> {
         .column("limit", ColumnKind::Text, None)
         .column("advice", ColumnKind::Text, None)
         .column("basis", ColumnKind::Text, None)
-        .column("cells", ColumnKind::Text, None);
+        .column("cells", ColumnKind::Text, None)
+        .column("mended", ColumnKind::Name, None);
+    let repair = Repair::of(source);
     for f in shown(source) {
+        let mended = repair.as_ref().filter(|r| r.settles(f)).map(|_| text(&language.text("report.yes")));
         let cells: Vec<String> = f.cells.iter().map(ToString::to_string).collect();
         draft.row(vec![
             Cell::Signal(f.signal),
@@ -49,6 +63,7 @@ pub(super) fn findings(source: &Source, language: &Language) -> Option<Table> {
             text(&language.say(&f.advice)),
             text(&f.basis),
             text(&cells.join(", ")),
+            mended.unwrap_or(Cell::Empty),
         ]);
     }
     draft.finish()
@@ -100,10 +115,28 @@ pub(super) fn basis(source: &Source, language: &Language) -> Option<Table> {
         .column("title", ColumnKind::Text, None)
         .column("limits", ColumnKind::Text, None)
         .column("basis", ColumnKind::Text, None);
+    let used = limits_used(source, language);
     for rule in source.rules {
-        draft.row(vec![text(&rule.rule), text(&rule.title), text(&rule.limits), text(&rule.basis)]);
+        let used = used.get(rule.rule.as_str()).map(|limits| limits.join("; ")).unwrap_or_default();
+        let limits = if rule.limits.is_empty() { used } else { rule.limits.clone() };
+        draft.row(vec![text(&rule.rule), text(&rule.title), text(&limits), text(&rule.basis)]);
     }
     draft.finish()
+}
+
+/// The limits that each rule's findings were judged by, each once, no more than a table can show.
+fn limits_used<'a>(source: &Source<'a>, language: &Language) -> BTreeMap<&'a str, Vec<String>> {
+    let mut used: BTreeMap<&str, Vec<String>> = BTreeMap::new();
+    for f in source.findings {
+        let shown = used.entry(f.rule).or_default();
+        if shown.len() < MOST_LIMITS {
+            let limit = limit(f, language);
+            if !limit.is_empty() && !shown.contains(&limit) {
+                shown.push(limit);
+            }
+        }
+    }
+    used
 }
 
 /// Cells that were left out, or used with a remark.

@@ -8,6 +8,7 @@ use crate::report::document::{Cell, ColumnKind, Formula, Number, Table};
 use crate::results::Verdict;
 use crate::visit::{Arrangement, Leg, Quantity, ReadingRow, Stage};
 use crate::wording::Language;
+use std::collections::{BTreeMap, HashMap};
 
 /// All rows of readings, one column a quantity, leg sum and deviation from nominal beside them.
 pub(super) fn readings(source: &Source, language: &Language) -> Option<Table> {
@@ -28,11 +29,14 @@ pub(super) fn readings(source: &Source, language: &Language) -> Option<Table> {
     }
     draft = draft.column("remarks", ColumnKind::Text, None);
     let judged = verdicts(source);
+    // A column that says `as found` in every row says nothing.
+    let stated = visit.rows.iter().any(|r| r.state != Stage::AsFound.name());
+    let staged = visit.rows.iter().any(|r| r.stage != Stage::AsFound);
     for row in &visit.rows {
         let mut cells = vec![
             text(&row.location.value),
-            text(&state(language, &row.state)),
-            text(&stage(language, row.stage)),
+            if stated { text(&state(language, &row.state)) } else { Cell::Empty },
+            if staged { text(&stage(language, row.stage)) } else { Cell::Empty },
             opt(row.time.as_ref(), |t| text(&t.value)),
         ];
         cells.extend(Quantity::ALL.map(|q| reading(source, row, q, &judged)));
@@ -50,7 +54,7 @@ fn key(quantity: Quantity) -> String {
 }
 
 /// The worst verdict on each cell from the rules that judge the cell as their primary one.
-type Verdicts<'a> = std::collections::HashMap<&'a crate::diag::CellRef, Verdict>;
+type Verdicts<'a> = HashMap<&'a crate::diag::CellRef, Verdict>;
 
 fn verdicts<'a>(source: &Source<'a>) -> Verdicts<'a> {
     let mut verdicts = Verdicts::new();
@@ -105,26 +109,29 @@ pub(super) fn before_after(source: &Source, language: &Language) -> Option<Table
         .column("location", ColumnKind::Name, None)
         .column("quantity", ColumnKind::Name, None)
         .column("state", ColumnKind::Text, None)
+        .column("unit", ColumnKind::Name, None)
         .column("found", ColumnKind::Number, None)
         .column("left", ColumnKind::Number, None)
         .column("change", ColumnKind::Number, None);
-    let rows = &source.visit.rows;
-    for left in rows.iter().filter(|r| r.stage == Stage::AsLeft) {
-        let same = |r: &&ReadingRow| r.stage == Stage::AsFound && r.location.value == left.location.value && r.state == left.state;
-        let Some(found) = rows.iter().find(same) else { continue };
+    let judged = verdicts(source);
+    let mut found: BTreeMap<(&str, &str), &ReadingRow> = BTreeMap::new();
+    for row in source.visit.rows.iter().filter(|r| r.stage == Stage::AsFound) {
+        found.entry((&row.location.value, &row.state)).or_insert(row);
+    }
+    for left in source.visit.rows.iter().filter(|r| r.stage == Stage::AsLeft) {
+        let Some(found) = found.get(&(left.location.value.as_str(), left.state.as_str())) else { continue };
         for quantity in Quantity::ALL {
-            if let (Some(before), Some(after)) = (found.reading(quantity), left.reading(quantity)) {
-                let (Some(b), Some(a)) = (before.value.value(), after.value.value()) else { continue };
-                let change = Formula::Subtract(Box::new(Formula::Column("left".into())), Box::new(Formula::Column("found".into())));
-                draft.row(vec![
-                    text(&left.location.value),
-                    text(&quantity.to_string()),
-                    text(&state(language, &left.state)),
-                    Cell::Number(judged(b, 1, None, None, Some(before.cell.clone()))),
-                    Cell::Number(judged(a, 1, None, None, Some(after.cell.clone()))),
-                    Cell::Number(Number { formula: Some(change), ..Number::new(a - b, 1) }),
-                ]);
-            }
+            let (Some(before), Some(after)) = (found.value(quantity), left.value(quantity)) else { continue };
+            let change = Formula::Subtract(Box::new(Formula::Column("left".into())), Box::new(Formula::Column("found".into())));
+            draft.row(vec![
+                text(&left.location.value),
+                text(&quantity.to_string()),
+                text(&state(language, &left.state)),
+                text(quantity.unit().symbol()),
+                reading(source, found, quantity, &judged),
+                reading(source, left, quantity, &judged),
+                Cell::Number(Number { formula: Some(change), ..Number::new(after - before, 1) }),
+            ]);
         }
     }
     draft.finish()

@@ -1,16 +1,20 @@
-//! What a template knows.
+//! What a template knows: the values of a report, as text, in the words of its language.
 
+mod actions;
+mod causes;
+mod groups;
+
+use super::places::FIGURES;
+use crate::diag::Severity;
 use crate::quantity::Unit;
-use crate::report::tables::{limit, measured, shown};
-use crate::report::{Source, words};
-use crate::results::{Diagnosis, Finding, Signal, Verdict};
+use crate::report::Source;
+use crate::report::repair::Repair;
+use crate::report::tables::{self, shown};
+use crate::results::{Balance, Finding, Signal, Verdict};
 use crate::visit::Stage;
-use crate::wording::{Language, Sentence};
+use crate::wording::Language;
 use serde::Serialize;
-use std::collections::BTreeMap;
-
-/// Findings of one group that are told one by one.
-const MOST_ITEMS: usize = 6;
+use std::collections::{BTreeMap, BTreeSet};
 
 /// The values of a template; texts are as they stand in the workbook and are escaped where they are printed.
 #[derive(Debug, Serialize)]
@@ -18,11 +22,20 @@ pub struct Context {
     site: BTreeMap<&'static str, String>,
     system: System,
     document: Identity,
-    worst: String,
+    /// Is it safe? One of `danger`, `warning`, `open`, `caution`, `notice`, `clear`, `unjudged`.
+    answer: &'static str,
+    /// The worst signal word of what failed, or of what is undecided where that is the answer; empty where there is none.
+    worst: &'static str,
     counts: BTreeMap<&'static str, usize>,
-    findings: Vec<Group>,
-    actions: Vec<Action>,
-    diagnosis: Option<Causes>,
+    findings: Vec<groups::Group>,
+    /// Findings in groups beyond those told.
+    more_findings: usize,
+    actions: Vec<actions::Action>,
+    /// How many of the actions may follow from the cause found.
+    follow_ups: usize,
+    /// Actions beyond those told.
+    more_actions: usize,
+    diagnosis: Option<causes::Causes>,
     balance: Option<Legs>,
     has: BTreeMap<String, bool>,
     left_out: LeftOut,
@@ -44,55 +57,6 @@ struct Identity {
     date: String,
 }
 
-/// Findings of one rule that ask for the same.
-#[derive(Debug, Serialize)]
-struct Group {
-    rule: String,
-    title: String,
-    signal: &'static str,
-    undecided: bool,
-    items: Vec<Item>,
-    /// Findings of the group beyond the listed ones.
-    more: usize,
-    advice: String,
-    basis: String,
-}
-
-#[derive(Debug, Serialize)]
-struct Item {
-    says: String,
-    location: String,
-    state: String,
-    stage: String,
-    measured: String,
-    limit: String,
-    cells: String,
-}
-
-/// Something to do.
-#[derive(Debug, Serialize)]
-struct Action {
-    signal: &'static str,
-    advice: String,
-    title: String,
-    places: String,
-    when: String,
-}
-
-#[derive(Debug, Serialize)]
-struct Causes {
-    kind: &'static str,
-    cause: String,
-    probability: String,
-    sure: bool,
-    ohms: String,
-    together: bool,
-    runs: String,
-    /// Runs in which an open neutral would not have shown.
-    open_not_shown: String,
-    repair: String,
-}
-
 #[derive(Debug, Serialize)]
 struct Legs {
     neutral: String,
@@ -111,17 +75,15 @@ struct LeftOut {
 impl Context {
     /// Of a checked visit.
     pub fn new(source: &Source, language: &Language, date: Option<&str>, tables: &[&str], figures: &[&str]) -> Self {
-        let groups = groups(source, language);
         let shown = shown(source);
-        let count = |s: Signal| shown.iter().filter(|f| f.signal == s).count();
-        let errors = source.problems.iter().filter(|p| p.severity == crate::diag::Severity::Error).count();
-        let undecided = shown.iter().filter(|f| f.verdict == Verdict::Undecided).count();
-        let mut has: BTreeMap<String, bool> = HAS.iter().map(|n| (n.replace('-', "_"), false)).collect();
-        for name in tables.iter().chain(figures) {
-            has.insert(name.replace('-', "_"), true);
-        }
-        has.insert("photos".into(), source.visit.photos.iter().any(|p| p.bytes.is_some()));
-        has.insert("as_left".into(), source.visit.rows.iter().any(|r| r.stage == Stage::AsLeft));
+        let repair = Repair::of(source);
+        let standing: Vec<&Finding> = shown.iter().copied().filter(|f| !repair.as_ref().is_some_and(|r| r.settles(f))).collect();
+        let counts = counts(source, &standing, shown.len());
+        let (answer, worst) = answer(&standing, counts["readings"] + counts["passed"]);
+        let groups = groups::groups(source, &shown, repair.as_ref(), language);
+        let (actions, more_actions) = actions::actions(&groups, causes::found(source));
+        let (findings, more_findings) = groups::told(groups);
+        let errors = source.problems.iter().filter(|p| p.severity == Severity::Error).count();
         Self {
             site: site(source),
             system: system(source, language),
@@ -131,31 +93,17 @@ impl Context {
                 program: source.program.to_owned(),
                 date: date.unwrap_or_default().to_owned(),
             },
-            worst: shown.iter().map(|f| f.signal).max().map_or_else(String::new, |s| s.word().to_owned()),
-            counts: [
-                ("danger", count(Signal::Danger)),
-                ("warning", count(Signal::Warning)),
-                ("caution", count(Signal::Caution)),
-                ("notice", count(Signal::Notice)),
-                ("failed", shown.len() - undecided),
-                ("undecided", undecided),
-                ("passed", source.findings.len() - shown.len()),
-                ("readings", source.visit.rows.iter().map(|r| r.readings.len()).sum()),
-                ("locations", locations(source)),
-                ("circuits", source.visit.runs.len()),
-            ]
-            .into(),
-            actions: actions(&groups, language),
-            findings: groups,
-            diagnosis: source.diagnosis.and_then(|d| causes(source, d, language)),
-            balance: source.balance.map(|b| Legs {
-                neutral: language.quantity(b.neutral.0, 1, Unit::Ampere),
-                imbalance: language.quantity(b.imbalance_percent, 0, Unit::Percent),
-                moves: b.moves.len(),
-                neutral_after: language.quantity(b.neutral_after.0, 1, Unit::Ampere),
-                imbalance_after: language.quantity(b.imbalance_after_percent, 0, Unit::Percent),
-            }),
-            has,
+            answer,
+            worst: worst.map_or("", Signal::word),
+            counts,
+            findings,
+            more_findings,
+            follow_ups: actions.iter().filter(|a| a.follows).count(),
+            actions,
+            more_actions,
+            diagnosis: source.diagnosis.and_then(|d| causes::causes(source, d, language)),
+            balance: source.balance.map(|b| legs(b, language)),
+            has: has(source, tables, figures),
             left_out: LeftOut { errors, warnings: source.problems.len() - errors },
         }
     }
@@ -170,33 +118,50 @@ impl Context {
     }
 }
 
-/// Tables and figures a template may ask for with `has`, so that asking is no error where there is none.
-const HAS: [&str; 24] = [
-    "summary",
-    "findings",
-    "basis",
-    "left-out",
-    "causes",
-    "not-shown",
-    "next",
-    "exposure",
-    "load-steps",
-    "readings",
-    "before-after",
-    "circuits",
-    "legs",
-    "leg-circuits",
-    "moves",
-    "instruments",
-    "tests",
-    "observations",
-    "work",
-    "revisions",
-    "neutral-position",
-    "run-tree",
-    "leg-load",
-    "photos",
-];
+/// Is it safe? What failed decides, unless something worse is undecided.
+fn answer(shown: &[&Finding], judged: usize) -> (&'static str, Option<Signal>) {
+    let worst = |verdict| shown.iter().filter(|f| f.verdict == verdict).map(|f| f.signal).max();
+    match (worst(Verdict::Fail), worst(Verdict::Undecided)) {
+        (Some(Signal::Danger), _) => ("danger", Some(Signal::Danger)),
+        (Some(Signal::Warning), open) if open != Some(Signal::Danger) => ("warning", Some(Signal::Warning)),
+        (_, open @ Some(Signal::Danger | Signal::Warning)) => ("open", open),
+        (Some(Signal::Caution), _) | (_, Some(Signal::Caution)) => ("caution", Some(Signal::Caution)),
+        (Some(_), _) | (_, Some(_)) => ("notice", Some(Signal::Notice)),
+        (None, None) if judged == 0 => ("unjudged", None),
+        (None, None) => ("clear", None),
+    }
+}
+
+/// Findings that stand, failed by signal word, and all that was looked at.
+fn counts(source: &Source, standing: &[&Finding], shown: usize) -> BTreeMap<&'static str, usize> {
+    let count = |s: Signal| standing.iter().filter(|f| f.signal == s && f.verdict == Verdict::Fail).count();
+    let undecided = standing.iter().filter(|f| f.verdict == Verdict::Undecided).count();
+    let locations: BTreeSet<&str> = source.visit.rows.iter().map(|r| r.location.value.as_str()).collect();
+    [
+        ("danger", count(Signal::Danger)),
+        ("warning", count(Signal::Warning)),
+        ("caution", count(Signal::Caution)),
+        ("notice", count(Signal::Notice)),
+        ("failed", standing.len() - undecided),
+        ("undecided", undecided),
+        ("mended", shown - standing.len()),
+        ("passed", source.findings.len() - shown),
+        ("readings", source.visit.rows.iter().map(|r| r.readings.len()).sum()),
+        ("locations", locations.len()),
+        ("circuits", source.visit.runs.len()),
+    ]
+    .into()
+}
+
+/// Which tables, figures and more there are; of every name, so that asking is no error where there is none.
+fn has(source: &Source, tables: &[&str], figures: &[&str]) -> BTreeMap<String, bool> {
+    let key = |name: &str| name.replace('-', "_");
+    let mut has: BTreeMap<String, bool> = tables::known().chain(FIGURES).map(|n| (key(n), false)).collect();
+    has.extend(tables.iter().chain(figures).map(|n| (key(n), true)));
+    has.insert("photos".into(), source.visit.photos.iter().any(|p| p.bytes.is_some()));
+    has.insert("as_left".into(), source.visit.rows.iter().any(|r| r.stage == Stage::AsLeft));
+    has
+}
 
 fn collect(prefix: &str, value: &toml::Value, names: &mut Vec<String>) {
     match value {
@@ -209,6 +174,16 @@ fn collect(prefix: &str, value: &toml::Value, names: &mut Vec<String>) {
         }
         toml::Value::Array(items) => items.iter().take(1).for_each(|inner| collect(prefix, inner, names)),
         _ => {}
+    }
+}
+
+fn legs(balance: &Balance, language: &Language) -> Legs {
+    Legs {
+        neutral: language.quantity(balance.neutral.0, 1, Unit::Ampere),
+        imbalance: language.quantity(balance.imbalance_percent, 0, Unit::Percent),
+        moves: balance.moves.len(),
+        neutral_after: language.quantity(balance.neutral_after.0, 1, Unit::Ampere),
+        imbalance_after: language.quantity(balance.imbalance_after_percent, 0, Unit::Percent),
     }
 }
 
@@ -241,109 +216,4 @@ fn system(source: &Source, language: &Language) -> System {
         line_to_line: language.quantity(s.line_to_line.0, 0, Unit::Volt),
         three_phase: s.legs().len() > 2,
     }
-}
-
-fn locations(source: &Source) -> usize {
-    let mut names: Vec<&str> = source.visit.rows.iter().map(|r| r.location.value.as_str()).collect();
-    names.sort_unstable();
-    names.dedup();
-    names.len()
-}
-
-fn groups(source: &Source, language: &Language) -> Vec<Group> {
-    let mut groups: Vec<Group> = Vec::new();
-    for f in shown(source) {
-        let advice = language.say(&f.advice);
-        let undecided = f.verdict == Verdict::Undecided;
-        let same = |g: &&mut Group| g.rule == f.rule && g.signal == f.signal.word() && g.undecided == undecided && g.advice == advice;
-        if let Some(group) = groups.iter_mut().find(same) {
-            if group.items.len() < MOST_ITEMS {
-                group.items.push(item(f, language))
-            } else {
-                group.more += 1
-            }
-            continue;
-        }
-        let title = source.rules.iter().find(|r| r.rule == f.rule).map_or_else(|| f.rule.to_owned(), |r| r.title.clone());
-        groups.push(Group {
-            rule: f.rule.to_owned(),
-            title,
-            signal: f.signal.word(),
-            undecided,
-            items: vec![item(f, language)],
-            more: 0,
-            advice,
-            basis: f.basis.clone(),
-        });
-    }
-    groups
-}
-
-fn item(f: &Finding, language: &Language) -> Item {
-    let cells: Vec<String> = f.cells.iter().take(4).map(ToString::to_string).collect();
-    let more = f.cells.len() - cells.len();
-    let cells = if more > 0 {
-        format!("{} {}", cells.join(", "), language.say(&Sentence::new("report.and-more").with("n", more)))
-    } else {
-        cells.join(", ")
-    };
-    Item {
-        says: language.say(&f.says),
-        location: f.location.clone().unwrap_or_default(),
-        state: f.state.clone().unwrap_or_default(),
-        stage: f.stage.map_or_else(String::new, |s| s.name().to_owned()),
-        measured: measured(f, language),
-        limit: limit(f, language),
-        cells,
-    }
-}
-
-/// What to do, each advice once, worst first.
-fn actions(groups: &[Group], language: &Language) -> Vec<Action> {
-    let mut actions: Vec<Action> = Vec::new();
-    for group in groups.iter().filter(|g| g.signal != Signal::Notice.word()) {
-        if actions.iter().any(|a| a.advice == group.advice) {
-            continue;
-        }
-        let mut places: Vec<&str> = group.items.iter().map(|i| i.location.as_str()).filter(|l| !l.is_empty()).collect();
-        places.dedup();
-        actions.push(Action {
-            signal: group.signal,
-            advice: group.advice.clone(),
-            title: group.title.clone(),
-            places: places.join(", "),
-            when: language.text(&format!("report.when-{}", group.signal.to_lowercase())),
-        });
-    }
-    actions
-}
-
-fn causes(source: &Source, d: &Diagnosis, language: &Language) -> Option<Causes> {
-    use crate::results::{CauseKind, RepairOutcome};
-    let lead = d.ranking.first()?;
-    let name = |r: &usize| source.visit.runs.get(*r).map(|r| r.name.value.clone());
-    let open: Vec<String> =
-        d.neutral.iter().filter(|n| n.high.is_none() && !lead.runs.contains(&n.run)).filter_map(|n| name(&n.run)).collect();
-    let repair = d.repair.as_ref().map(|r| match r.outcome {
-        RepairOutcome::Proven => "report.repair-proven",
-        RepairOutcome::NotRepaired => "report.repair-not",
-        RepairOutcome::NotShown => "report.repair-not-shown",
-    });
-    Some(Causes {
-        kind: match lead.kind {
-            CauseKind::None => "none",
-            CauseKind::Neutral => "neutral",
-            CauseKind::Hot(_) => "hot",
-            CauseKind::Supply(_) => "supply",
-            CauseKind::Reading(_) => "reading",
-        },
-        cause: words::cause(source, lead, language),
-        probability: language.quantity((100.0 * lead.probability).clamp(1.0, 99.0), 0, Unit::Percent),
-        sure: lead.probability >= 0.8,
-        ohms: lead.ohms.map_or_else(String::new, |o| words::between(o.low.0, o.high.map(|h| h.0), language)),
-        together: lead.runs.len() > 1,
-        runs: lead.runs.iter().filter_map(name).collect::<Vec<_>>().join(", "),
-        open_not_shown: open.join(", "),
-        repair: repair.map_or_else(String::new, |key| language.text(key)),
-    })
 }

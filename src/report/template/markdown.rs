@@ -1,6 +1,7 @@
 //! Markdown (CommonMark) into blocks.
 
 use super::Places;
+use super::escape::{decoded, target};
 use crate::report::document::{Block, Inline};
 use crate::results::Signal;
 use pulldown_cmark::{Event, HeadingLevel, Options, Parser, Tag, TagEnd};
@@ -13,7 +14,7 @@ pub(super) fn blocks(markdown: &str, places: &Places) -> Vec<Block> {
         match event {
             Event::Start(tag) => builder.start(&tag, &markdown[range]),
             Event::End(tag) => builder.end(tag),
-            Event::Text(text) | Event::Code(text) | Event::Html(text) | Event::InlineHtml(text) => builder.text(&text),
+            Event::Text(text) | Event::Code(text) | Event::Html(text) | Event::InlineHtml(text) => builder.text(&decoded(&text)),
             Event::SoftBreak => builder.soft_break(),
             Event::HardBreak => builder.inline(Inline::Break),
             Event::Rule => builder.block(Block::PageBreak),
@@ -30,8 +31,13 @@ enum Kind {
     Heading(u8),
     List(Option<u64>),
     Item,
-    Quote(Option<Signal>),
-    Callout { signal: Option<Signal>, title: Vec<Inline> },
+    Quote,
+    /// A quotation that begins with `[!WORD]`, its title not yet read.
+    Marked(Option<Signal>),
+    Callout {
+        signal: Option<Signal>,
+        title: Vec<Inline>,
+    },
     Strong,
     Emphasis,
     Link(String),
@@ -84,9 +90,7 @@ impl Builder<'_> {
 
     /// A line end is a blank; behind the first line of a callout it ends the title.
     fn soft_break(&mut self) {
-        let quoted =
-            self.stack.len().checked_sub(2).and_then(|i| self.stack.get(i)).is_some_and(|f| matches!(f.kind, Kind::Quote(Some(_))));
-        if quoted { self.title() } else { self.text(" ") }
+        if self.in_marked() { self.title() } else { self.text(" ") }
     }
 
     /// What the open paragraph holds is the title of the callout around it.
@@ -98,7 +102,7 @@ impl Builder<'_> {
         title.retain(|i| *i != Inline::Text(String::new()));
         let at = self.stack.len().saturating_sub(2);
         if let Some(frame) = self.stack.get_mut(at) {
-            let signal = if let Kind::Quote(signal) = frame.kind { signal } else { None };
+            let signal = if let Kind::Marked(signal) = frame.kind { signal } else { None };
             frame.kind = Kind::Callout { signal, title };
         }
     }
@@ -126,12 +130,12 @@ impl Builder<'_> {
                 Kind::List(*start)
             }
             Tag::Item => Kind::Item,
-            Tag::BlockQuote(_) => Kind::Quote(signal(source)),
+            Tag::BlockQuote(_) => marked(source).map_or(Kind::Quote, Kind::Marked),
             Tag::Strong => Kind::Strong,
             Tag::Emphasis => Kind::Emphasis,
-            Tag::Link { dest_url, .. } => Kind::Link(dest_url.to_string()),
+            Tag::Link { dest_url, .. } => Kind::Link(target(dest_url)),
             Tag::Image { dest_url, .. } => {
-                self.image = Some((dest_url.to_string(), String::new()));
+                self.image = Some((decoded(dest_url), String::new()));
                 return;
             }
             Tag::CodeBlock(_) => Kind::Paragraph,
@@ -143,7 +147,7 @@ impl Builder<'_> {
     fn end(&mut self, tag: TagEnd) {
         match tag {
             TagEnd::Image => return self.place(),
-            TagEnd::Paragraph if self.in_quote() => self.title(),
+            TagEnd::Paragraph if self.in_marked() => self.title(),
             TagEnd::Paragraph
             | TagEnd::CodeBlock
             | TagEnd::Heading(_)
@@ -163,8 +167,9 @@ impl Builder<'_> {
         }
     }
 
-    fn in_quote(&self) -> bool {
-        self.stack.len().checked_sub(2).and_then(|i| self.stack.get(i)).is_some_and(|f| matches!(f.kind, Kind::Quote(Some(_))))
+    /// Whether what is open is the first paragraph of a callout.
+    fn in_marked(&self) -> bool {
+        self.stack.len().checked_sub(2).and_then(|i| self.stack.get(i)).is_some_and(|f| matches!(f.kind, Kind::Marked(_)))
     }
 
     fn close(&mut self, frame: Frame) {
@@ -185,7 +190,7 @@ impl Builder<'_> {
             }
             Kind::List(start) => self.block(Block::List { start, items: frame.items }),
             Kind::Item => self.top().items.push(frame.blocks),
-            Kind::Quote(_) => self.block(Block::Callout { signal: None, title: Vec::new(), blocks: frame.blocks }),
+            Kind::Quote | Kind::Marked(_) => self.block(Block::Callout { signal: None, title: Vec::new(), blocks: frame.blocks }),
             Kind::Callout { signal, title } => self.block(Block::Callout { signal, title, blocks: frame.blocks }),
             Kind::Strong => self.inline(Inline::Strong(frame.inlines)),
             Kind::Emphasis => self.inline(Inline::Emphasis(frame.inlines)),
@@ -213,7 +218,12 @@ impl Builder<'_> {
             return;
         }
         let blocks = self.places.at(scheme, name, &caption);
-        self.top().blocks.extend(blocks);
+        self.loose();
+        // Marks such as strong hold no blocks: what is placed within them belongs to the paragraph around.
+        let holds = |f: &Frame| !matches!(f.kind, Kind::Strong | Kind::Emphasis | Kind::Link(_) | Kind::Heading(_) | Kind::List(_));
+        if let Some(frame) = self.stack.iter_mut().rev().find(|f| holds(f)) {
+            frame.blocks.extend(blocks);
+        }
     }
 
     fn anchor(&mut self, text: &[Inline]) -> String {
@@ -249,11 +259,11 @@ pub(in crate::report) fn plain(inlines: &[Inline]) -> String {
         .collect()
 }
 
-/// The signal word of a quotation whose source begins with `[!WORD]`; `[!NOTE]` is a callout without one, told by its title.
-fn signal(source: &str) -> Option<Signal> {
+/// The signal word of a quotation whose source begins with `[!WORD]`; within `Some`, none for any other word.
+fn marked(source: &str) -> Option<Option<Signal>> {
     let rest = source.trim_start_matches(['>', ' ']).strip_prefix("[!")?;
-    let word = &rest[..rest.find(']')?];
-    Signal::ALL.into_iter().find(|s| s.word() == word)
+    let word = decoded(&rest[..rest.find(']')?]);
+    Some(Signal::ALL.into_iter().find(|s| s.word() == word))
 }
 
 fn depth(level: HeadingLevel) -> u8 {

@@ -2,7 +2,28 @@
 
 use crate::report::document::{Block, CaptionedImage, Inline, Table};
 use crate::report::drawing::Drawing;
+use crate::report::tables;
+use crate::results::Signal;
 use std::sync::Arc;
+
+/// Kinds of place, each with the names it knows; a kind without names stands alone.
+pub(in crate::report) fn known(scheme: &str) -> Option<Vec<&'static str>> {
+    match scheme {
+        "table" => Some(tables::known().collect()),
+        "figure" => Some(FIGURES.to_vec()),
+        "facts" => Some(FACTS.to_vec()),
+        "signal" => Some(Signal::ALL.map(Signal::word).to_vec()),
+        "photos" | "signoff" => Some(vec![""]),
+        _ => None,
+    }
+}
+
+/// All kinds of place.
+pub(in crate::report) const SCHEMES: [&str; 6] = ["table", "figure", "facts", "signal", "photos", "signoff"];
+/// All figures.
+pub(in crate::report) const FIGURES: [&str; 4] = ["neutral-position", "run-tree", "exposure", "leg-load"];
+/// All groups of facts.
+const FACTS: [&str; 3] = ["site", "service", "document"];
 
 /// Computed things by name.
 pub(in crate::report) struct Places {

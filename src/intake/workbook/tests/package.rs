@@ -70,3 +70,10 @@ pub fn ods(table: &str) -> Vec<u8> {
     let content = format!(r#"<office:spreadsheet><table:table table:name="Readings">{table}</table:table></office:spreadsheet>"#);
     zip(&[("mimetype", b"application/vnd.oasis.opendocument.spreadsheet"), ("content.xml", content.as_bytes())])
 }
+
+/// The names of a package's parts, as its directory lists them.
+pub fn names(package: &[u8]) -> Vec<String> {
+    let starts = (0..package.len()).filter(|at| package[*at..].starts_with(b"PK\x01\x02"));
+    let length = |at: usize| usize::from(package[at + 28]) + 256 * usize::from(package[at + 29]);
+    starts.map(|at| String::from_utf8(package[at + 46..at + 46 + length(at)].to_vec()).unwrap()).collect()
+}

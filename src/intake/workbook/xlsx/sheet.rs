@@ -3,11 +3,12 @@
 use super::super::archive::Archive;
 use super::super::bounds::{Budget, MOST_ENTRIES, add, at_most};
 use super::super::draft::Draft;
+use super::super::relations::Entry;
 use super::super::serial::{self, Kind};
 use super::super::texts::Texts;
 use super::super::xml::{Node, Tag, Xml};
+use super::is_true;
 use super::strings::{rich, unescape};
-use super::{Entry, is_true};
 use crate::intake::Refusal;
 use crate::intake::grid::{Area, Sheet, Value};
 use std::collections::BTreeMap;

@@ -26,10 +26,11 @@ pub fn read(files: &[(String, Vec<u8>)], budget: &mut Budget) -> Result<Output<W
     at_most(files.len(), MOST_SHEETS, "sheets")?;
     let mut files: Vec<&(String, Vec<u8>)> = files.iter().collect();
     files.sort();
+    let guess = encoding::guess(files.iter().map(|(_, bytes)| bytes.as_slice()));
     let mut output = Output { value: Workbook::default(), problems: Vec::new() };
     for (name, bytes) in files {
         let stem = Path::new(name).file_stem().map_or(name.as_str().into(), |stem| stem.to_string_lossy());
-        let text = encoding::decode(bytes).ok_or_else(|| Refusal::NotAWorkbook(format!("{name} is not text")))?;
+        let text = encoding::decode(bytes, guess).ok_or_else(|| Refusal::NotAWorkbook(format!("{name} is not text")))?;
         let sheet = sheet(&stem, &text.text, budget, &mut output.problems)?;
         if let Some(guess) = text.guess {
             let message = Sentence::new("workbook.encoding").with("encoding", guess);
