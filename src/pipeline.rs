@@ -142,7 +142,7 @@ pub fn document(checked: &Checked, settings: &Settings, options: &ReportOptions)
         exposure: &checked.exposure,
         rules: &basis,
     };
-    let measure = render::pdf::FontMeasure::default();
+    let measure = render::pdf::FontMeasure;
     report::build(
         &source,
         &report::Options {

@@ -45,6 +45,7 @@ const MAY_USE: &[(&str, &[&str])] = &[
 
 /// Library, as the code names it, and the only places that may: a module, or a file or folder within one.
 const LIBRARIES: &[(&str, &[&str])] = &[
+    ("calamine", &["intake/workbook"]),
     ("quick_xml", &["intake/workbook"]),
     ("csv", &["intake/workbook", "cli/batch"]),
     ("encoding_rs", &["intake/workbook"]),

@@ -22,14 +22,24 @@ use crate::wording::{Arg, Sentence};
 pub(super) struct Reader<'a> {
     pub words: &'a Words,
     pub problems: Vec<Problem>,
+    /// Problems beyond [`MOST_PROBLEMS`], counted but not kept.
+    pub more: usize,
+    last: Problem,
+    suggestions: usize,
 }
+
+/// Problems kept; an input with more has one cause behind them, and must not fill the memory.
+const MOST_PROBLEMS: usize = 20_000;
+/// Entries for which the nearest known word is looked up; it costs a comparison with each.
+const SUGGESTIONS: usize = 2_000;
 
 /// Longest text of a cell shown in a problem, in characters.
 const SHOWN: usize = 60;
 
 impl<'a> Reader<'a> {
     pub fn new(words: &'a Words) -> Self {
-        Self { words, problems: Vec::new() }
+        let last = Problem::in_workbook(Severity::Error, "", Sentence::new("intake.more-problems"));
+        Self { words, problems: Vec::new(), more: 0, last, suggestions: SUGGESTIONS }
     }
 
     /// A value that could not be used.
@@ -49,9 +59,24 @@ impl<'a> Reader<'a> {
     /// A problem at a cell whose text is known.
     pub fn at(&mut self, severity: Severity, cell: &CellRef, found: impl Into<String>, message: Sentence) -> &mut Problem {
         let found = bounded(&found.into());
-        self.problems.push(Problem::at(severity, cell, found, message));
-        let last = self.problems.len() - 1;
-        &mut self.problems[last]
+        self.push(Problem::at(severity, cell, found, message))
+    }
+
+    /// A problem of any kind, to which a hint can be given.
+    pub fn push(&mut self, problem: Problem) -> &mut Problem {
+        if self.problems.len() >= MOST_PROBLEMS {
+            self.more += 1;
+            self.last = problem;
+            return &mut self.last;
+        }
+        self.problems.push(problem);
+        self.problems.last_mut().unwrap_or(&mut self.last)
+    }
+
+    /// The hint that names the nearest known word, while it is worth looking for.
+    pub fn suggestion(&mut self, nearest: impl FnOnce(&'a Words) -> Option<&'a str>) -> Option<Sentence> {
+        self.suggestions = self.suggestions.checked_sub(1)?;
+        nearest(self.words).map(did_you_mean)
     }
 
     /// The text of a cell: trimmed, inner blanks single; a number or date as it is written. Error values are named.
@@ -103,8 +128,8 @@ impl<'a> Reader<'a> {
         let words = self.words;
         let key = words.choice(list, &text);
         if key.is_none() {
-            let known: Vec<Arg> = words.keys(list).into_iter().map(Arg::from).collect();
-            let hint = words.nearest_choice(list, &text).map(|near| did_you_mean(&near.replace('-', " ")));
+            let known: Vec<Arg> = words.written(list).into_iter().map(Arg::from).collect();
+            let hint = self.suggestion(|words| words.nearest_choice(list, &text));
             self.error(field, Sentence::new("intake.choice").with("known", known)).hint = hint;
         }
         key

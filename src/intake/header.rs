@@ -7,7 +7,7 @@ pub(super) mod heads;
 mod place;
 mod table;
 
-pub(super) use place::{What, place};
+pub(super) use place::{Placed, What, place};
 pub(super) use table::{Field, Row, Table};
 
 use super::grid::{Area, Sheet, Value};
@@ -99,7 +99,7 @@ fn headers(sheet: &Sheet, row: u32, below: Option<u32>, words: &Words) -> Vec<Fo
     let [alone, grouped] = [false, true].map(|grouped| split(sheet, words, &joined(sheet, row, below, words, grouped), (row, below)));
     // Of equals, the one that takes the header for fewer tables.
     let rank = |found: &[Found]| (score(found), std::cmp::Reverse(found.iter().map(|f| f.layouts.len()).sum::<usize>()));
-    let two = if rank(&grouped) > rank(&alone) { grouped } else { alone };
+    let two = if rank(&grouped) >= rank(&alone) { grouped } else { alone };
     let units_alone = texts(sheet, below).values().all(|text| unit_text(text));
     let lower = split(sheet, words, &texts(sheet, below), (below, below));
     let (a, b, c) = (score(&one), score(&two), score(&lower));
@@ -128,13 +128,18 @@ fn joined(sheet: &Sheet, upper: u32, lower: u32, words: &Words, grouped: bool) -
     let mut out = above.clone();
     for (&col, text) in &below {
         let own = above.get(&col).or_else(|| above.get(&area(col)?.left));
-        let group = || above.range(..col).next_back().map(|(_, head)| head).filter(|_| area(col).is_none());
-        let placed = |text: &str| Kind::ALL.iter().any(|&kind| place(words, kind, text).is_some());
-        let text = match (own, own.is_none().then(group).flatten()) {
+        let left = || above.range(..col).next_back().filter(|_| area(col).is_none());
+        let placed = |text: &str| Kind::ALL.iter().any(|&kind| place::staged(words, kind, text).is_some());
+        let text = match (own, own.is_none().then(left).flatten()) {
             (Some(head), _) if unit_text(text) => format!("{head} ({})", text.trim_matches(['(', ')', '[', ']'])),
             (Some(head), _) => format!("{head} {text}"),
-            (None, Some(head)) if (grouped || !placed(text)) && placed(&format!("{head} {text}")) => format!("{head} {text}"),
-            _ => text.clone(),
+            (None, Some((at, head))) => {
+                let whole = format!("{head} {text}");
+                // What stands under `Highest` is no plain reading, though its own name would be.
+                let heads_a_group = below.contains_key(at) && !placed(head);
+                if heads_a_group || ((grouped || !placed(text)) && placed(&whole)) { whole } else { text.clone() }
+            }
+            (None, None) => text.clone(),
         };
         out.insert(col, text);
     }

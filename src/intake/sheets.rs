@@ -25,9 +25,6 @@ use crate::wording::Sentence;
 use std::collections::HashMap;
 use std::sync::Arc;
 
-/// Problems listed one by one; a workbook with more has one cause behind them.
-const MOST_PROBLEMS: usize = 20_000;
-
 /// The tables of a workbook, by what they are.
 struct Tables<'a>(Vec<Table<'a>>);
 
@@ -55,7 +52,7 @@ pub(super) fn assemble(grid: Output<Workbook>, options: &Options) -> Result<Outp
     reader.problems = grid.problems;
     let visit = read(workbook, &tables, options, &mut reader);
     unread::say(workbook, &tables, &mut reader);
-    Ok(Output { value: visit, problems: ordered(reader.problems, workbook) })
+    Ok(Output { value: visit, problems: ordered(reader.problems, reader.more, workbook) })
 }
 
 fn read<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, options: &Options, reader: &mut Reader<'a>) -> Visit {
@@ -89,16 +86,14 @@ fn read<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, options: &Options, r
 }
 
 /// The problems in the order of the workbook: those of the whole first, then by sheet, row and column.
-fn ordered(mut problems: Vec<Problem>, workbook: &Workbook) -> Vec<Problem> {
+fn ordered(mut problems: Vec<Problem>, more: usize, workbook: &Workbook) -> Vec<Problem> {
     let order: HashMap<&Arc<str>, usize> = workbook.sheets.iter().enumerate().map(|(i, s)| (&s.name, i)).collect();
     let place = |p: &Problem| {
         let sheet = p.sheet.as_ref().and_then(|s| order.get(s).copied());
         (sheet, p.cell.as_ref().map(|c| (c.row, c.col)))
     };
     problems.sort_by_key(place);
-    if problems.len() > MOST_PROBLEMS {
-        let more = problems.len() - MOST_PROBLEMS;
-        problems.truncate(MOST_PROBLEMS);
+    if more > 0 {
         problems.push(Problem::in_workbook(Severity::Error, "", Sentence::new("intake.more-problems").with("n", more)));
     }
     problems

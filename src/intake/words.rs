@@ -1,126 +1,16 @@
 //! The trade's words (`synonyms.toml`): which text names which table, column, item or entry.
 
-use super::grid::{Cell, Sheet, Value};
+mod fixed;
+mod kinds;
+
+pub(super) use kinds::{Column, Item, Kind};
+
 use super::header::heads::HeadWord;
-use super::header::{self, Field, What};
+use super::header::{self, What};
 use crate::quantity::parse::Scale;
+use fixed::Fixed;
 use serde::Deserialize;
 use std::collections::{BTreeMap, HashMap, HashSet};
-
-/// The tables a workbook can hold.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord, Deserialize)]
-#[serde(rename_all = "kebab-case")]
-pub(super) enum Kind {
-    Visit,
-    Instruments,
-    Circuits,
-    Readings,
-    Tests,
-    Observations,
-    Photos,
-    Work,
-    Revisions,
-}
-
-impl Kind {
-    /// All tables, in the order of the field workbook.
-    pub const ALL: [Self; 9] = [
-        Self::Visit,
-        Self::Instruments,
-        Self::Circuits,
-        Self::Readings,
-        Self::Tests,
-        Self::Observations,
-        Self::Photos,
-        Self::Work,
-        Self::Revisions,
-    ];
-
-    /// As `synonyms.toml` and a mapping name it.
-    pub fn name(self) -> &'static str {
-        match self {
-            Self::Visit => "visit",
-            Self::Instruments => "instruments",
-            Self::Circuits => "circuits",
-            Self::Readings => "readings",
-            Self::Tests => "tests",
-            Self::Observations => "observations",
-            Self::Photos => "photos",
-            Self::Work => "work",
-            Self::Revisions => "revisions",
-        }
-    }
-}
-
-/// The named columns of all tables; quantities and loads are [`super::header::heads::Head`]s.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord, Deserialize)]
-#[serde(rename_all = "kebab-case")]
-pub(super) enum Column {
-    Item,
-    Entry,
-    Instrument,
-    Measures,
-    Serial,
-    CalibratedUntil,
-    AccuracyPercent,
-    AccuracyCounts,
-    Accuracy,
-    Resolution,
-    Circuit,
-    FedFrom,
-    Serves,
-    Legs,
-    Breaker,
-    Tie,
-    Wire,
-    NeutralWire,
-    Length,
-    Load,
-    LoadKind,
-    Location,
-    State,
-    Stage,
-    Time,
-    Date,
-    Quantity,
-    Value,
-    Unit,
-    Reckoned,
-    Test,
-    Observation,
-    SignalWord,
-    Advice,
-    Photo,
-    File,
-    Caption,
-    WorkDone,
-    Parts,
-    Issue,
-    Reason,
-    Remarks,
-}
-
-/// The items of the Visit sheet.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord, Deserialize)]
-#[serde(rename_all = "kebab-case")]
-pub(super) enum Item {
-    Job,
-    Client,
-    Address,
-    Date,
-    Purpose,
-    PreparedBy,
-    Licence,
-    Company,
-    System,
-    NominalLineNeutral,
-    NominalLineLine,
-    ServiceRating,
-    SuppliedBy,
-    Code,
-    Weather,
-    Remarks,
-}
 
 #[derive(Deserialize)]
 struct Section {
@@ -212,59 +102,6 @@ pub(super) struct Words {
     prose: HashSet<String>,
     /// Entries of a mapping.
     pub fixed: Fixed,
-}
-
-/// Entries of a mapping that hold where a workbook has no such item or column. They stand in a sheet of their own, named after
-/// the mapping's file, each in the row of its line, so that every value has a place.
-#[derive(Clone, Debug)]
-pub(super) struct Fixed {
-    pub sheet: Sheet,
-    items: BTreeMap<Item, u32>,
-    columns: BTreeMap<(Kind, Column), u32>,
-}
-
-impl Fixed {
-    fn none() -> Self {
-        let sheet = Sheet {
-            name: "".into(),
-            hidden: false,
-            hidden_rows: Vec::new(),
-            hidden_columns: Vec::new(),
-            merged: Vec::new(),
-            cells: Vec::new(),
-        };
-        Self { sheet, items: BTreeMap::new(), columns: BTreeMap::new() }
-    }
-
-    pub fn set_item(&mut self, item: Item, text: &str, line: usize) {
-        let row = self.put(text, line);
-        self.items.insert(item, row);
-    }
-
-    pub fn set_column(&mut self, kind: Kind, column: Column, text: &str, line: usize) {
-        let row = self.put(text, line);
-        self.columns.insert((kind, column), row);
-    }
-
-    fn put(&mut self, text: &str, line: usize) -> u32 {
-        let row = u32::try_from(line.saturating_sub(1)).unwrap_or(u32::MAX);
-        self.sheet.cells.push(Cell { row, col: 0, value: Value::Text(text.to_owned()) });
-        row
-    }
-
-    /// The items with a fixed entry.
-    pub fn items(&self) -> impl Iterator<Item = (Item, Field<'_>)> {
-        self.items.iter().filter_map(|(item, row)| Some((*item, self.at(*row)?)))
-    }
-
-    /// The fixed entry of a column.
-    pub fn column(&self, kind: Kind, column: Column) -> Option<Field<'_>> {
-        self.columns.get(&(kind, column)).and_then(|row| self.at(*row))
-    }
-
-    fn at(&self, row: u32) -> Option<Field<'_>> {
-        self.sheet.get(row, 0).map(|value| Field::new(&self.sheet, row, 0, value))
-    }
 }
 
 const BUILT_IN: &str = include_str!("synonyms.toml");
@@ -375,16 +212,16 @@ impl Words {
         self.choices.get(list)?.get(&normal(text)).map(String::as_str)
     }
 
-    /// The key of the list whose spelling is nearest to a text.
+    /// The entry of a list whose spelling is nearest to a text, as it is written.
     pub fn nearest_choice(&self, list: &str, text: &str) -> Option<&str> {
         let choices = self.choices.get(list)?;
         let near = nearest(&normal(text), choices.keys().map(String::as_str))?;
-        choices.get(near).map(String::as_str)
+        self.entries.get(list)?.get(choices.get(near)?)?.first().map(String::as_str)
     }
 
-    /// The keys of a list as they are written in a workbook.
-    pub fn keys(&self, list: &str) -> Vec<String> {
-        self.entries.get(list).into_iter().flat_map(|keys| keys.keys()).map(|key| key.replace('-', " ")).collect()
+    /// The entries of a list as they are written.
+    pub fn written(&self, list: &str) -> Vec<&str> {
+        self.entries.get(list).into_iter().flat_map(|keys| keys.values()).filter_map(|words| words.first()).map(String::as_str).collect()
     }
 }
 

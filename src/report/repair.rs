@@ -61,9 +61,13 @@ const SYMPTOMS: [&str; 9] = [
     "neutral-to-ground",
 ];
 
-/// Whether a rule's findings may be the work of a cause.
-pub(super) fn may_follow(rule: &str, cause: &Cause) -> bool {
-    matches!(cause.kind, CauseKind::Neutral | CauseKind::Hot(_) | CauseKind::Supply(_)) && SYMPTOMS.contains(&rule)
+/// Whether a finding may be the work of a cause.
+pub(super) fn may_follow(finding: &Finding, cause: &Cause) -> bool {
+    match &cause.kind {
+        CauseKind::None => false,
+        CauseKind::Neutral | CauseKind::Hot(_) | CauseKind::Supply(_) => SYMPTOMS.contains(&finding.rule),
+        CauseKind::Reading(cell) => finding.cells.contains(cell),
+    }
 }
 
 #[cfg(test)]

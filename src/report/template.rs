@@ -67,11 +67,18 @@ impl Write for Bounded {
 fn error(file: &str, e: &tera::Error, context: &Context) -> TemplateError {
     let (line, message) = match e.kind() {
         tera::ErrorKind::SyntaxError(r) | tera::ErrorKind::RenderingError(r) => (r.span().start_line, r.message().to_owned()),
-        _ => (1, root(e)),
+        _ => placed(&root(e), file),
     };
     let known = context.names();
     let near = names::quoted(&message).and_then(|name| names::nearest(name, known.iter().map(String::as_str)));
     TemplateError { file: file.to_owned(), line, message: names::hinted(&message, near) }
+}
+
+/// Line and message of an error that tells its place in words: `error: MESSAGE`, then `--> FILE:LINE:COLUMN`.
+fn placed(text: &str, file: &str) -> (usize, String) {
+    let message = text.lines().next().unwrap_or_default();
+    let place = text.split_once(&format!("--> {file}:")).and_then(|(_, rest)| rest.split(':').next()?.parse().ok());
+    (place.unwrap_or(1), message.strip_prefix("error: ").unwrap_or(message).to_owned())
 }
 
 /// The innermost message.

@@ -5,12 +5,14 @@ use crate::quantity::Unit;
 use crate::results::{Cause, CauseKind, SupplyDirection};
 use crate::wording::{Arg, Language, Sentence};
 
+/// So many places are told with what is there.
+pub(super) const FEW: usize = 4;
 /// Less than this is shown as no ohms at all.
 const LEAST_OHMS: f64 = 0.005;
 
 /// A cause in a few words.
 pub(super) fn cause(source: &Source, cause: &Cause, language: &Language) -> String {
-    let runs: Vec<Arg> = cause.runs.iter().filter_map(|&r| source.visit.runs.get(r)).map(|r| Arg::from(r.name.value.as_str())).collect();
+    let runs: Vec<Arg> = runs(source, &cause.runs).into_iter().map(Arg::from).collect();
     let sentence = match &cause.kind {
         CauseKind::None => Sentence::new("report.cause-none"),
         CauseKind::Neutral => Sentence::new("report.cause-neutral"),
@@ -20,6 +22,18 @@ pub(super) fn cause(source: &Source, cause: &Cause, language: &Language) -> Stri
         CauseKind::Reading(cell) => Sentence::new("report.cause-reading").with("cell", cell.to_string()),
     };
     language.say(&sentence.with("n", runs.len()).with("runs", runs))
+}
+
+/// Names of runs, and what they serve where they are few enough to be looked for.
+pub(super) fn runs(source: &Source, runs: &[usize]) -> Vec<String> {
+    let is_few = runs.len() <= FEW;
+    let known = runs.iter().filter_map(|&r| source.visit.runs.get(r));
+    known.map(|r| place(&r.name.value, r.serves.as_ref().map(|s| s.value.as_str()).filter(|_| is_few))).collect()
+}
+
+/// A place by its name and what is there: `5/7 (living room)`.
+pub(super) fn place(name: &str, serves: Option<&str>) -> String {
+    serves.map_or_else(|| name.to_owned(), |serves| format!("{name} ({serves})"))
 }
 
 /// An interval of ohms: `0.12 Ω to 4.50 Ω`, `up to 4.50 Ω`, `3.40 Ω or more`.
@@ -46,6 +60,14 @@ pub(super) fn probability(p: f64, language: &Language) -> String {
 /// Digits of ohms worth showing.
 pub(super) fn digits(ohms: f64) -> u8 {
     if ohms < 10.0 { 2 } else { 0 }
+}
+
+/// A text with a full stop where it ends in a word.
+pub(super) fn ended(mut text: String) -> String {
+    if text.ends_with(char::is_alphanumeric) {
+        text.push('.');
+    }
+    text
 }
 
 /// Names as a sentence lists them; beyond `most` only how many.

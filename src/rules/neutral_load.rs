@@ -64,9 +64,10 @@ fn on_one_leg<'a>(facts: &Facts<'a>, settings: &Settings) -> Vec<Option<&'a Read
             let read = |q| row.value(q);
             let legs = [a, b].map(|leg| read(Quantity::line_neutral(leg)));
             let ([Some(va), Some(vb)], Some(vab)) = (legs, read(Quantity::Voltage(*pair))) else { return false };
-            // Both are live: half of nominal at least.
+            // Both are live: half of nominal at least. And the three can be true at once: two sides of a triangle are apart by
+            // no more than the third; else one is misread.
             let live = 0.5 * visit.system.line_to_neutral.0;
-            va > live && vb > live && vab < share * (va + vb)
+            va > live && vb > live && vab < share * (va + vb) && (va - vb).abs() <= vab.max(0.1 * (va + vb))
         });
         if same {
             shown[run] = shown[run].or(Some(row));

@@ -4,8 +4,7 @@ use crate::outline;
 use midwire::intake::{Beside, BesideError, Content, Input};
 use midwire::pipeline::{self, Checked, ReportOptions, Settings};
 use midwire::report::BUILT_IN_TEMPLATES;
-use midwire::report::document::{Block, Document, Inline, PageSize};
-use std::collections::BTreeSet;
+use midwire::report::document::{Document, PageSize};
 use std::path::{Path, PathBuf};
 
 const SAMPLES: [&str; 9] = [
@@ -41,16 +40,35 @@ fn report(checked: &Checked, template: &str) -> Document {
     pipeline::document(checked, &Settings::default(), &options).unwrap()
 }
 
-/// What a person reads first: everything before the second heading of the second level.
-fn first_page(document: &Document) -> String {
-    let text = outline::document(document);
-    let body = text.split_once("\n# ").unwrap().1;
-    body.split("\n## ").take(2).collect::<Vec<_>>().join("\n## ")
+#[test]
+fn every_template_holds_together_over_every_sample() {
+    for sample in SAMPLES {
+        let checked = checked(sample);
+        for (template, _, _) in BUILT_IN_TEMPLATES {
+            let document = report(&checked, template);
+            crate::prose::holds_together(&document, &format!("{template} of {sample}"));
+            crate::prose::has_its_cautions(&document);
+        }
+    }
 }
 
 #[test]
-fn the_first_page_answers() {
-    for sample in SAMPLES {
-        println!("=== {sample}\n{}", first_page(&report(&checked(sample), "client")));
+fn what_a_repair_settled_asks_for_nothing() {
+    let checked = checked("service-call.xlsx");
+    let text = outline::document(&report(&checked, "client"));
+    assert!(text.contains("[NOTICE] Nothing unsafe was found"), "the fault was mended on the visit");
+    assert!(text.contains("<b>Mended on this visit.</b>"));
+    assert!(!text.contains("## What to do"));
+}
+
+#[test]
+fn the_first_page_says_what_who_and_when() {
+    let checked = checked("open-service-neutral.xlsx");
+    for template in ["client", "letter"] {
+        let text = outline::document(&report(&checked, template));
+        let (before, after) = text.split_once("## What to do").unwrap();
+        assert!(before.contains("Not safe"), "{before}");
+        let first = after.lines().find(|l| l.starts_with("- ")).unwrap();
+        assert!(first.starts_with("- (DANGER) <b>At once.</b> Call the utility now") && first.contains("By the utility"), "{first}");
     }
 }

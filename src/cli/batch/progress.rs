@@ -40,7 +40,7 @@ impl Progress {
             bar.inc(1);
         }
         let step = self.total.div_ceil(LINES).max(1);
-        if self.plain && self.count.get() % step == 0 {
+        if self.plain && self.count.get().is_multiple_of(step) {
             anstream::eprintln!("midwire: {} of {}", self.count.get(), self.total);
         }
     }

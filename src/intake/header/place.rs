@@ -3,6 +3,7 @@
 use super::heads::{Head, Probe, head};
 use crate::intake::words::{Column, Kind, Words};
 use crate::quantity::parse::{Scale, unit_word};
+use crate::visit::Stage;
 use std::collections::BTreeMap;
 
 /// The meaning of a column.
@@ -23,13 +24,16 @@ pub(crate) struct Placed {
     pub unit: Option<Scale>,
     /// Its header says that sizes are in square millimetres.
     pub square_millimetres: bool,
+    /// Its header says that it was read before or after the work (`As left L1-N`).
+    pub stage: Option<Stage>,
     /// The header's text.
     pub text: String,
 }
 
 impl Placed {
     fn new(col: u32, what: What, unit: Option<Scale>, text: &str) -> Self {
-        Self { col, what, unit, square_millimetres: without_size_unit(text).is_some_and(|(_, metric)| metric), text: text.to_owned() }
+        let square_millimetres = without_size_unit(text).is_some_and(|(_, metric)| metric);
+        Self { col, what, unit, square_millimetres, stage: None, text: text.to_owned() }
     }
 }
 
@@ -128,7 +132,7 @@ fn share(layouts: &mut [Layout]) {
 fn layout(words: &Words, kind: Kind, texts: &BTreeMap<u32, String>) -> Layout {
     let mut layout = Layout { kind, placed: Vec::new(), unplaced: Vec::new(), second: Vec::new(), elsewhere: Vec::new() };
     for (&col, text) in texts {
-        let Some((what, unit)) = place(words, kind, text) else {
+        let Some((what, unit, stage)) = staged(words, kind, text) else {
             layout.unplaced.push((col, text.clone()));
             continue;
         };
@@ -137,7 +141,7 @@ fn layout(words: &Words, kind: Kind, texts: &BTreeMap<u32, String>) -> Layout {
             What::Named(column) if !both(column, unit, &layout) => layout.placed.iter_mut().find(|p| p.what == what),
             _ => None,
         };
-        let placed = Placed::new(col, what, unit, text);
+        let placed = Placed { stage, ..Placed::new(col, what, unit, text) };
         match earlier {
             None => layout.placed.push(placed),
             Some(earlier) if rank(text) < rank(&earlier.text) => {
@@ -153,6 +157,28 @@ fn layout(words: &Words, kind: Kind, texts: &BTreeMap<u32, String>) -> Layout {
 /// A length may stand in feet and in metres beside each other, and a sheet may reckon as much as it likes.
 fn both(column: Column, unit: Option<Scale>, layout: &Layout) -> bool {
     column == Column::Reckoned || column == Column::Length && layout.placed.iter().all(|p| p.what != What::Named(column) || p.unit != unit)
+}
+
+/// As [`place`], also of a reading whose header begins or ends with its stage.
+pub(super) fn staged(words: &Words, kind: Kind, text: &str) -> Option<(What, Option<Scale>, Option<Stage>)> {
+    if let Some((what, unit)) = place(words, kind, text) {
+        return Some((what, unit, None));
+    }
+    if kind != Kind::Readings {
+        return None;
+    }
+    let blanks: Vec<usize> = text.match_indices(char::is_whitespace).map(|(at, _)| at).collect();
+    blanks.iter().find_map(|&at| {
+        let (head, tail) = (text.get(..at)?, text.get(at..)?);
+        let (stage, base) = match (words.choice("stage", head), words.choice("stage", tail)) {
+            (Some(stage), _) => (stage, tail),
+            (None, Some(stage)) => (stage, head),
+            (None, None) => return None,
+        };
+        let (what, unit) = place(words, kind, base.trim().trim_start_matches(['-', ':', ',']).trim())?;
+        let stage = if stage == "as-left" { Stage::AsLeft } else { Stage::AsFound };
+        matches!(what, What::Head(_)).then_some((what, unit, Some(stage)))
+    })
 }
 
 /// The meaning of one header text in a kind of table, with the unit it states or a mapping gives it.

@@ -46,7 +46,7 @@ pub(super) fn read<'a>(
         let sources = table.column(Column::FedFrom).is_some() || reader.words.fixed.column(Kind::Circuits, Column::FedFrom).is_some();
         if !sources && said.insert(&table.sheet.name) {
             let message = Sentence::new("intake.no-fed-from");
-            reader.problems.push(Problem::in_sheet(Severity::Warning, &table.sheet.name, "", message));
+            reader.push(Problem::in_sheet(Severity::Warning, &table.sheet.name, "", message));
         }
         say_headers(table, reader);
         for row in table.body() {

@@ -57,6 +57,7 @@ impl<'a> Known<'a> {
     }
 
     pub fn nearest_instrument(&self, name: &str) -> Option<&'a str> {
+        self.comparisons.set(self.comparisons.get().checked_sub(self.instrument_names.len())?);
         nearest_name(name, self.instrument_names.iter().copied())
     }
 

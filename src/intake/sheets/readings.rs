@@ -6,13 +6,13 @@ use crate::diag::{CellRef, Located, Severity};
 use crate::intake::cell::{Expected, Reader, did_you_mean, plain_text, written_time};
 use crate::intake::grid::Value;
 use crate::intake::header::heads::{Head, Probe, head, line_line};
-use crate::intake::header::{Field, Row, Table};
+use crate::intake::header::{Field, Placed, Row, Table};
 use crate::intake::words::{Column, Kind};
 use crate::quantity::Measured;
 use crate::quantity::parse::{Scale, not_measured, unit_word};
 use crate::visit::{Date, Leg, Quantity, Reading, ReadingRow, Stage, name_key};
 use crate::wording::Sentence;
-use std::collections::{HashMap, HashSet};
+use std::collections::{BTreeSet, HashMap, HashSet};
 
 /// Reads the tables of readings.
 pub(super) fn read<'a>(
@@ -67,21 +67,26 @@ impl Readings<'_> {
                 let message = Sentence::new("intake.neutral-implied").with("quantity", quantity.to_string());
                 reader.at(Severity::Warning, &cell, placed.text.as_str(), message);
             }
-            if !seen.insert(probe) {
+            if !seen.insert((probe, placed.stage)) {
                 reader.at(Severity::Warning, &cell, placed.text.as_str(), Sentence::new("intake.quantity-twice"));
             }
         }
     }
 
+    /// A row of a column a quantity; readings before and after the work side by side are a set each.
     fn wide(&mut self, row: &Row<'_>, reader: &mut Reader<'_>) {
-        let cells: Vec<(Probe, Field<'_>)> = row.placed().filter_map(|(p, f)| p.probe().map(|(probe, _)| (probe, f))).collect();
-        let telling = cells.iter().any(|(_, f)| !silent(*f));
-        let Some(mut set) = self.head(row, telling, reader) else { return };
-        for (probe, field) in cells {
-            set.readings.extend(self.reading(probe, field, None, &set, reader));
-        }
-        if !set.readings.is_empty() {
-            self.rows.push(set);
+        let cells: Vec<(&Placed, Probe, Field<'_>)> = row.placed().filter_map(|(p, f)| p.probe().map(|(probe, _)| (p, probe, f))).collect();
+        let telling = cells.iter().any(|(_, _, f)| !silent(*f));
+        let Some(head) = self.head(row, telling, reader) else { return };
+        let stages: BTreeSet<Option<Stage>> = cells.iter().map(|(placed, ..)| placed.stage).collect();
+        for stage in stages {
+            let mut set = ReadingRow { stage: stage.unwrap_or(head.stage), ..head.clone() };
+            for (_, probe, field) in cells.iter().filter(|(placed, ..)| placed.stage == stage) {
+                set.readings.extend(self.reading(*probe, *field, None, &set, reader));
+            }
+            if !set.readings.is_empty() {
+                self.rows.push(set);
+            }
         }
     }
 

@@ -1,10 +1,86 @@
 //! The system of the service: by its name, or by its two nominal voltages.
 
-use crate::quantity::Volts;
+use super::visit_sheet::Entries;
+use crate::diag::{Located, Problem, Severity};
+use crate::intake::cell::{Expected, Reader, plain_text};
+use crate::intake::words::Item;
+use crate::quantity::parse::not_measured;
+use crate::quantity::{Unit, Volts};
 use crate::visit::{Arrangement, System};
+use crate::wording::{Arg, Sentence};
+use std::sync::Arc;
+
+/// The system: as named, with nominal voltages of its own where they fit; by the nominal voltages alone; else assumed, and said.
+pub(super) fn read(entries: &Entries<'_>, three_legs: bool, reader: &mut Reader<'_>) -> System {
+    let mut nominal = |item: Item| {
+        let field = *entries.get(&item)?;
+        reader.number(field, &Expected::new(Unit::Volt, 50.0, 1000.0)).filter(|v| v.value > 0.0)
+    };
+    let nominal = (nominal(Item::NominalLineNeutral), nominal(Item::NominalLineLine));
+    let entry = entries.get(&Item::System).filter(|f| !not_measured(&plain_text(f.value)));
+    match entry.map(|field| (*field, named(&plain_text(field.value)))) {
+        Some((_, Some(system))) => with_nominal(system, nominal, reader),
+        Some((field, None)) => {
+            let taken = by_nominal(&nominal).unwrap_or_else(System::split_phase_120_240);
+            if !reader.broken(field) {
+                let known: Vec<_> = System::NAMED.iter().map(|s| Arg::from(s.0)).collect();
+                reader.error(field, Sentence::new("intake.unknown-system").with("known", known).with("taken", taken.name.as_str()));
+            }
+            taken
+        }
+        None => by_nominal(&nominal).unwrap_or_else(|| {
+            if let (Some(ln), Some(ll)) = &nominal {
+                let message = Sentence::new("intake.nominal-pair").with("other", ln.value.to_string());
+                reader.at(Severity::Error, &ll.cell, ll.value.to_string(), message);
+            }
+            let sheet = entries.values().next().map(|field| field.cell().sheet);
+            assumed(nominal.0.or(nominal.1), sheet, three_legs, reader)
+        }),
+    }
+}
+
+type Nominal = (Option<Located<f64>>, Option<Located<f64>>);
+
+fn by_nominal(nominal: &Nominal) -> Option<System> {
+    let (Some(ln), Some(ll)) = nominal else { return None };
+    System::by_voltages(Volts(ln.value), Volts(ll.value))
+}
+
+/// A named system with the nominal voltages stated beside it; the voltage that is not stated follows the other one.
+fn with_nominal(system: System, nominal: Nominal, reader: &mut Reader<'_>) -> System {
+    let (usual_ln, usual_ll) = (system.line_to_neutral.0, system.line_to_line.0);
+    let follow = |stated: f64, usual: f64, other: f64| if stated == usual { other } else { (stated * other / usual).round() };
+    let (ln, ll) = match (&nominal.0, &nominal.1) {
+        (None, None) => return system,
+        (Some(ln), None) => (ln.value, follow(ln.value, usual_ln, usual_ll)),
+        (None, Some(ll)) => (follow(ll.value, usual_ll, usual_ln), ll.value),
+        (Some(ln), Some(ll)) => (ln.value, ll.value),
+    };
+    let fitting = of_arrangement(&system, Volts(ln), Volts(ll));
+    if fitting.is_none()
+        && let Some(wrong) = nominal.1.or(nominal.0)
+    {
+        let message = Sentence::new("intake.nominal-against-system").with("system", system.name.as_str());
+        reader.at(Severity::Error, &wrong.cell, wrong.value.to_string(), message);
+    }
+    fitting.unwrap_or(system)
+}
+
+/// The system that is assumed where the workbook is silent, said at the one voltage it states or at its Visit sheet.
+fn assumed(stated: Option<Located<f64>>, sheet: Option<Arc<str>>, three_legs: bool, reader: &mut Reader<'_>) -> System {
+    let message = Sentence::new("intake.system-assumed");
+    let mut problem = match (stated, sheet) {
+        (Some(volts), _) => Problem::at(Severity::Warning, &volts.cell, volts.value.to_string(), message),
+        (None, Some(sheet)) => Problem::in_sheet(Severity::Warning, &sheet, "", message),
+        (None, None) => Problem::in_workbook(Severity::Warning, "", message),
+    };
+    problem.hint = three_legs.then(|| Sentence::new("intake.system-assumed-three-legs"));
+    reader.push(problem);
+    System::split_phase_120_240()
+}
 
 /// The system a text names; `None` where it names none, or one that is not known.
-pub(super) fn named(text: &str) -> Option<System> {
+fn named(text: &str) -> Option<System> {
     let lower = text.to_lowercase();
     let says = |words: &[&str]| words.iter().any(|w| lower.contains(w));
     let numbers = voltages(&lower);
@@ -65,7 +141,7 @@ fn letter_beside_digits(text: &str, letter: char) -> bool {
 }
 
 /// A system with other nominal voltages than its name says, where they are of its arrangement.
-pub(super) fn with_nominal(system: &System, line_to_neutral: Volts, line_to_line: Volts) -> Option<System> {
+fn of_arrangement(system: &System, line_to_neutral: Volts, line_to_line: Volts) -> Option<System> {
     if (line_to_neutral, line_to_line) == (system.line_to_neutral, system.line_to_line) {
         return Some(system.clone());
     }
@@ -131,8 +207,8 @@ mod tests {
     #[test]
     fn nominal_voltages_must_be_of_the_arrangement() {
         let split = System::split_phase_120_240();
-        assert_eq!(with_nominal(&split, Volts(115.0), Volts(230.0)).map(|s| s.name).as_deref(), Some("115/230"));
-        assert_eq!(with_nominal(&split, Volts(120.0), Volts(240.0)), Some(split.clone()));
-        assert_eq!(with_nominal(&split, Volts(120.0), Volts(208.0)), None);
+        assert_eq!(of_arrangement(&split, Volts(115.0), Volts(230.0)).map(|s| s.name).as_deref(), Some("115/230"));
+        assert_eq!(of_arrangement(&split, Volts(120.0), Volts(240.0)), Some(split.clone()));
+        assert_eq!(of_arrangement(&split, Volts(120.0), Volts(208.0)), None);
     }
 }

@@ -2,7 +2,7 @@
 
 use super::Tables;
 use crate::diag::{Problem, Severity, column_letters};
-use crate::intake::cell::{Reader, did_you_mean, plain_text};
+use crate::intake::cell::{Reader, plain_text};
 use crate::intake::grid::{Sheet, Workbook};
 use crate::intake::header::Table;
 use crate::intake::words::{Kind, Words};
@@ -25,7 +25,7 @@ pub(super) fn say<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, reader: &m
         let form = reader.problems.iter().any(|p| p.sheet.as_ref() == Some(&sheet.name));
         let left_out = reader.words.forced(&sheet.name) == Some(None) || reader.words.is_prose(&sheet.name);
         if !read && !form && !left_out && !sheet.cells.is_empty() && !is_form(sheet, reader.words) {
-            reader.problems.push(Problem::in_sheet(Severity::Warning, &sheet.name, "", Sentence::new("intake.no-table")));
+            reader.push(Problem::in_sheet(Severity::Warning, &sheet.name, "", Sentence::new("intake.no-table")));
         }
     }
 }
@@ -38,7 +38,7 @@ fn is_form(sheet: &Sheet, words: &Words) -> bool {
 
 fn unplaced(table: &Table<'_>, reader: &mut Reader<'_>) {
     for (col, text) in &table.unplaced {
-        let hint = reader.words.columns(table.kind).nearest(text).map(did_you_mean);
+        let hint = reader.suggestion(|words| words.columns(table.kind).nearest(text));
         reader.at(Severity::Warning, &table.header_cell(*col), text.as_str(), Sentence::new("intake.unplaced-column")).hint = hint;
     }
     for (col, text) in &table.second {
@@ -92,7 +92,7 @@ fn hidden(sheet: &Sheet, reader: &mut Reader<'_>) {
         (false, 0, n) => Sentence::new("intake.hidden-columns").with("n", n).with("columns", list(columns)),
         (false, _, _) => Sentence::new("intake.hidden-both").with("rows", list(rows)).with("columns", list(columns)),
     };
-    reader.problems.push(Problem::in_sheet(Severity::Warning, &sheet.name, "", sentence));
+    reader.push(Problem::in_sheet(Severity::Warning, &sheet.name, "", sentence));
 }
 
 /// The end of the sentence that refuses an input without readings: what comes nearest to a header of readings.

@@ -1,17 +1,23 @@
 //! The Visit sheet: items and entries, under a header or as a form without one.
 
+mod lines;
+
 use super::{Tables, system};
-use crate::diag::{Located, Problem, Severity};
-use crate::intake::cell::{Expected, Reader, did_you_mean, plain_text};
-use crate::intake::grid::{Sheet, Value, Workbook};
-use crate::intake::header::Field;
-use crate::intake::words::{Column, Item, Kind, Words};
-use crate::quantity::parse::{Dimension, not_measured, written};
-use crate::quantity::{Unit, Volts};
-use crate::visit::{Leg, Site, System};
+use crate::diag::Located;
+use crate::intake::cell::{Reader, plain_text};
+use crate::intake::grid::{Value, Workbook};
+use crate::intake::header::heads::Probe;
+use crate::intake::header::{Field, Placed};
+use crate::intake::words::{Item, Kind, Words};
+use crate::quantity::Unit;
+use crate::quantity::parse::{Dimension, written};
+use crate::visit::{Between, Leg, Quantity, Site, System};
 use crate::wording::Sentence;
-use std::collections::{BTreeMap, BTreeSet};
-use std::sync::Arc;
+use lines::{FORM_ITEMS, Line, distinct, ends_as_label, headed, labels};
+use std::collections::BTreeMap;
+
+/// The entries by item.
+pub(super) type Entries<'a> = BTreeMap<Item, Field<'a>>;
 
 /// What the Visit sheet yields.
 pub(super) struct VisitSheet {
@@ -19,21 +25,9 @@ pub(super) struct VisitSheet {
     pub system: System,
 }
 
-/// Rows in which a form without a header is looked for.
-const FORM_ROWS: u32 = 60;
-/// Items that make a form.
-const FORM_ITEMS: usize = 3;
-
-/// An item with its entry.
-struct Line<'a> {
-    item: Option<Item>,
-    label: Field<'a>,
-    entry: Option<Field<'a>>,
-}
-
 pub(super) fn read<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, reader: &mut Reader<'a>) -> VisitSheet {
-    let mut sets: Vec<Vec<Line<'a>>> = tables.of(Kind::Visit).map(|t| lines_of(t, reader.words)).collect();
-    let headed = sets.len();
+    let mut sets: Vec<Vec<Line<'a>>> = tables.of(Kind::Visit).map(|t| headed(t, reader.words)).collect();
+    let under_headers = sets.len();
     let (forms, strays): (Vec<_>, Vec<_>) =
         workbook.sheets.iter().map(|sheet| labels(sheet, tables, reader.words)).partition(|lines| distinct(lines) >= FORM_ITEMS);
     sets.extend(forms);
@@ -46,29 +40,20 @@ pub(super) fn read<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, reader: &
     let mut sets = sets.into_iter().enumerate();
     let mut entries = sets.next().map(|(_, lines)| entries(lines, reader)).unwrap_or_default();
     for (number, second) in sets {
-        if number < headed || !agrees(&second, &entries, reader.words) {
+        if number < under_headers || !agrees(&second, &entries, reader.words) {
             say_second(&second, reader);
         }
     }
     for (item, fixed) in reader.words.fixed.items() {
         entries.entry(item).or_insert(fixed);
     }
-    let three_legs = tables.of(Kind::Readings).any(|t| t.placed.iter().any(|p| names_third_leg(p.probe().map(|(probe, _)| probe))));
-    let system = system_of(&entries, three_legs, reader);
+    let three_legs = tables.of(Kind::Readings).any(|table| table.placed.iter().any(names_third_leg));
+    let system = system::read(&entries, three_legs, reader);
     VisitSheet { site: site(&entries, reader), system }
 }
 
-fn distinct(lines: &[Line<'_>]) -> usize {
-    lines.iter().filter_map(|l| l.item).collect::<BTreeSet<_>>().len()
-}
-
-/// The label of a form alone: `Date:`.
-fn ends_as_label(label: Field<'_>) -> bool {
-    matches!(label.value, Value::Text(text) if text.trim_end().ends_with(':'))
-}
-
 /// A form that repeats what the first set says, as on the head of every sheet.
-fn agrees(lines: &[Line<'_>], entries: &BTreeMap<Item, Field<'_>>, words: &Words) -> bool {
+fn agrees(lines: &[Line<'_>], entries: &Entries<'_>, words: &Words) -> bool {
     let same = |a: Field<'_>, b: Field<'_>| {
         // A date is the same however it is written; what is wrong with it was said where it was read.
         let mut quiet = Reader::new(words);
@@ -79,62 +64,9 @@ fn agrees(lines: &[Line<'_>], entries: &BTreeMap<Item, Field<'_>>, words: &Words
     told.into_iter().all(|(item, entry)| entries.get(&item).is_some_and(|first| same(*first, entry)))
 }
 
-fn names_third_leg(probe: Option<crate::intake::header::heads::Probe>) -> bool {
-    use crate::intake::header::heads::Probe;
-    use crate::visit::{Between, Quantity};
-    matches!(
-        probe,
-        Some(Probe::Exactly(
-            Quantity::Voltage(Between::LineNeutral(Leg::L3) | Between::LineLine(Leg::L3, _) | Between::LineLine(_, Leg::L3))
-                | Quantity::LineCurrent(Leg::L3)
-                | Quantity::LineGround(Leg::L3)
-        ))
-    )
-}
-
-fn lines_of<'a>(table: &'a crate::intake::header::Table<'a>, words: &Words) -> Vec<Line<'a>> {
-    let line = |row: crate::intake::header::Row<'a>| {
-        let label = row.field(Column::Item)?;
-        Some(Line { item: words.items.get(&plain_text(label.value)), label, entry: row.field(Column::Entry) })
-    };
-    table.body().filter_map(line).collect()
-}
-
-/// Labels with their entries to the right, anywhere outside a sheet's tables; enough of them make a form.
-fn labels<'a>(sheet: &'a Sheet, tables: &Tables<'a>, words: &Words) -> Vec<Line<'a>> {
-    let own: Vec<_> = tables.0.iter().filter(|t| std::ptr::eq(t.sheet, sheet)).collect();
-    let in_table =
-        |row: u32, col: u32| own.iter().any(|t| (t.header.0..t.rows.1).contains(&row) && (t.columns.0..=t.columns.1).contains(&col));
-    let item = |value: &Value| match value {
-        Value::Text(text) => words.items.get(text.trim().trim_end_matches(':')),
-        _ => None,
-    };
-    let mut lines = Vec::new();
-    for (row, cells) in sheet.rows().take_while(|(row, _)| *row < FORM_ROWS) {
-        // Items side by side have their entries below them.
-        if cells.len() >= FORM_ITEMS && cells.iter().all(|c| item(&c.value).is_some() && !in_table(row, c.col)) {
-            lines.extend(cells.iter().map(|c| Line {
-                item: item(&c.value),
-                label: Field::new(sheet, row, c.col, &c.value),
-                entry: sheet.get(row + 1, c.col).map(|value| Field::new(sheet, row + 1, c.col, value)),
-            }));
-            continue;
-        }
-        let mut cells = cells.iter().filter(|c| !in_table(row, c.col)).peekable();
-        while let Some(label) = cells.next() {
-            let Some(found) = item(&label.value) else { continue };
-            // The text to the right is the entry, though it may read like an item ("Service").
-            let entry = cells.next_if(|c| c.col <= label.col + 4 && (item(&c.value).is_none() || c.col == label.col + 1));
-            let field = |c: &'a crate::intake::grid::Cell| Field::new(sheet, row, c.col, &c.value);
-            lines.push(Line { item: Some(found), label: field(label), entry: entry.map(field) });
-        }
-    }
-    lines
-}
-
 /// The entry of each item; what stands twice with different entries is said, and the first one holds.
-fn entries<'a>(lines: Vec<Line<'a>>, reader: &mut Reader<'a>) -> BTreeMap<Item, Field<'a>> {
-    let mut entries: BTreeMap<Item, Field<'a>> = BTreeMap::new();
+fn entries<'a>(lines: Vec<Line<'a>>, reader: &mut Reader<'a>) -> Entries<'a> {
+    let mut entries = Entries::new();
     for Line { mut item, label, entry } in lines {
         if item == Some(Item::System) && entry.is_some_and(|e| is_current(e.value)) {
             item = Some(Item::ServiceRating);
@@ -142,7 +74,7 @@ fn entries<'a>(lines: Vec<Line<'a>>, reader: &mut Reader<'a>) -> BTreeMap<Item, 
         let (Some(item), Some(entry)) = (item, entry) else {
             if item.is_none() && entry.is_some() {
                 let text = plain_text(label.value);
-                let hint = reader.words.items.nearest(&text).map(did_you_mean);
+                let hint = reader.suggestion(|words| words.items.nearest(&text));
                 reader.warning(label, Sentence::new("intake.unknown-item")).hint = hint;
             }
             continue;
@@ -176,7 +108,7 @@ fn say_second<'a>(lines: &[Line<'a>], reader: &mut Reader<'a>) {
     };
 }
 
-fn site<'a>(entries: &BTreeMap<Item, Field<'a>>, reader: &mut Reader<'a>) -> Site {
+fn site<'a>(entries: &Entries<'a>, reader: &mut Reader<'a>) -> Site {
     let mut text = |item: Item| entries.get(&item).and_then(|f| reader.entry(*f));
     let mut site = Site {
         job: text(Item::Job),
@@ -220,71 +152,16 @@ fn amperes(text: &Located<String>) -> Option<Located<f64>> {
     (amperes > 0.0).then(|| Located::new(amperes, text.cell.clone()))
 }
 
-/// The system: as named, with nominal voltages of its own where they fit; by the nominal voltages alone; else assumed, and said.
-fn system_of<'a>(entries: &BTreeMap<Item, Field<'a>>, three_legs: bool, reader: &mut Reader<'a>) -> System {
-    let mut nominal = |item: Item| {
-        let field = *entries.get(&item)?;
-        reader.number(field, &Expected::new(Unit::Volt, 50.0, 1000.0)).filter(|v| v.value > 0.0)
+/// A column of readings of L3.
+fn names_third_leg(placed: &Placed) -> bool {
+    let quantity = match placed.probe() {
+        Some((Probe::Exactly(quantity), _)) => quantity,
+        _ => return false,
     };
-    let nominal = (nominal(Item::NominalLineNeutral), nominal(Item::NominalLineLine));
-    let entry = entries.get(&Item::System).filter(|f| !not_measured(&plain_text(f.value)));
-    match entry.map(|field| (*field, system::named(&plain_text(field.value)))) {
-        Some((_, Some(named))) => with_nominal(named, nominal, reader),
-        Some((field, None)) => {
-            let taken = by_nominal(&nominal).unwrap_or_else(System::split_phase_120_240);
-            if !reader.broken(field) {
-                let known: Vec<_> = System::NAMED.iter().map(|s| crate::wording::Arg::from(s.0)).collect();
-                reader.error(field, Sentence::new("intake.unknown-system").with("known", known).with("taken", taken.name.as_str()));
-            }
-            taken
-        }
-        None => by_nominal(&nominal).unwrap_or_else(|| {
-            if let (Some(ln), Some(ll)) = &nominal {
-                let message = Sentence::new("intake.nominal-pair").with("other", ln.value.to_string());
-                reader.at(Severity::Error, &ll.cell, ll.value.to_string(), message);
-            }
-            let sheet = entries.values().next().map(|field| field.cell().sheet);
-            assumed(nominal.0.or(nominal.1), sheet, three_legs, reader)
-        }),
-    }
-}
-
-type Nominal = (Option<Located<f64>>, Option<Located<f64>>);
-
-fn by_nominal(nominal: &Nominal) -> Option<System> {
-    let (Some(ln), Some(ll)) = nominal else { return None };
-    System::by_voltages(Volts(ln.value), Volts(ll.value))
-}
-
-/// A named system with the nominal voltages stated beside it; the voltage that is not stated follows the other one.
-fn with_nominal(system: System, nominal: Nominal, reader: &mut Reader<'_>) -> System {
-    let (usual_ln, usual_ll) = (system.line_to_neutral.0, system.line_to_line.0);
-    let follow = |stated: f64, usual: f64, other: f64| if stated == usual { other } else { (stated * other / usual).round() };
-    let (ln, ll) = match (&nominal.0, &nominal.1) {
-        (None, None) => return system,
-        (Some(ln), None) => (ln.value, follow(ln.value, usual_ln, usual_ll)),
-        (None, Some(ll)) => (follow(ll.value, usual_ll, usual_ln), ll.value),
-        (Some(ln), Some(ll)) => (ln.value, ll.value),
-    };
-    let fitting = system::with_nominal(&system, Volts(ln), Volts(ll));
-    if fitting.is_none()
-        && let Some(wrong) = nominal.1.or(nominal.0)
-    {
-        let message = Sentence::new("intake.nominal-against-system").with("system", system.name.as_str());
-        reader.at(Severity::Error, &wrong.cell, wrong.value.to_string(), message);
-    }
-    fitting.unwrap_or(system)
-}
-
-/// The system that is assumed where the workbook is silent, said at the one voltage it states or at its Visit sheet.
-fn assumed(stated: Option<Located<f64>>, sheet: Option<Arc<str>>, three_legs: bool, reader: &mut Reader<'_>) -> System {
-    let message = Sentence::new("intake.system-assumed");
-    let mut problem = match (stated, sheet) {
-        (Some(volts), _) => Problem::at(Severity::Warning, &volts.cell, volts.value.to_string(), message),
-        (None, Some(sheet)) => Problem::in_sheet(Severity::Warning, &sheet, "", message),
-        (None, None) => Problem::in_workbook(Severity::Warning, "", message),
-    };
-    problem.hint = three_legs.then(|| Sentence::new("intake.system-assumed-three-legs"));
-    reader.problems.push(problem);
-    System::split_phase_120_240()
+    matches!(
+        quantity,
+        Quantity::Voltage(Between::LineNeutral(Leg::L3) | Between::LineLine(Leg::L3, _) | Between::LineLine(_, Leg::L3))
+            | Quantity::LineCurrent(Leg::L3)
+            | Quantity::LineGround(Leg::L3)
+    )
 }

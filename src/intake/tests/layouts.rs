@@ -76,6 +76,26 @@ fn states_stages_and_merged_locations() {
 }
 
 #[test]
+fn before_and_after_may_stand_side_by_side() {
+    let expected = "SVC: L1-N 120.1, L2-N 119.9\nSVC (as left): L1-N 120.2, L2-N 120\nSP1: L1-N 118";
+    check(
+        "in the header",
+        "Location|As found L1-N|As found L2-N|As left L1-N|As left L2-N\nSVC|120.1|119.9|120.2|120\nSP1|118|",
+        expected,
+        "",
+    );
+    check(
+        "behind the quantity",
+        "Location|L1-N (before)|L2-N before|L1-N after|L2-N after\nSVC|120.1|119.9|120.2|120\nSP1|118|",
+        expected,
+        "",
+    );
+    let rows = "Location|As found||As left|\n|L1-N|L2-N|L1-N|L2-N\nSVC|120.1|119.9|120.2|120\nSP1|118|";
+    check("over columns", rows, expected, "");
+    check_book("merged", Book::new().sheet("Visit", VISIT).sheet("R", rows).merged(&["B1:C1", "D1:E1", "A1:A2"]), expected, "");
+}
+
+#[test]
 fn repeated_rows_and_columns_are_kept() {
     check("rows", "Location|L1-N\nSVC|120.1\nSVC|120.1", "SVC: L1-N 120.1\nSVC: L1-N 120.1", "");
     check("columns", "Location|L1-N|VAN\nSVC|120.1|120.2", "SVC: L1-N 120.1, L1-N 120.2", "warning R!C1 quantity-twice");

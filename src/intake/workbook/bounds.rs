@@ -29,6 +29,8 @@ pub const MOST_CELLS: usize = 2_000_000;
 pub const MOST_TEXT: usize = 64 << 20;
 /// Most bytes of the table of shared texts.
 pub const MOST_SHARED: usize = 48 << 20;
+/// Most bytes of what is kept of the binary parts of a package to be read as cells.
+pub const MOST_KEPT: usize = 64 << 20;
 /// Most merged areas, on all sheets.
 pub const MOST_MERGED: usize = 20_000;
 /// Most relations of a part, and most styles that hide a sheet.

@@ -30,11 +30,20 @@ impl Draft {
             Value::Text(t) | Value::Error(t) | Value::NoResult(t) => t.len(),
             Value::Number(_) | Value::DateTime(_) | Value::Logical(_) => 0,
         };
+        self.holds(row, col)?;
+        budget.cell(text)?;
+        self.sheet.cells.push(Cell { row, col, value });
+        Ok(())
+    }
+
+    /// Refuses a position that is on no sheet.
+    ///
+    /// # Errors
+    /// It is on none.
+    pub fn holds(&self, row: u32, col: u32) -> Result<(), Refusal> {
         if row >= ROWS || col >= COLUMNS {
             return Err(Refusal::Damaged(format!("sheet {} has a cell outside every sheet ({})", self.sheet.name, address(row, col))));
         }
-        budget.cell(text)?;
-        self.sheet.cells.push(Cell { row, col, value });
         Ok(())
     }
 

@@ -30,6 +30,15 @@ impl Kind {
         }
     }
 
+    /// A built-in format of this kind.
+    pub fn example(self) -> u16 {
+        match self {
+            Self::Plain => 0,
+            Self::Moment => 22,
+            Self::Elapsed => 46,
+        }
+    }
+
     /// Of a format code: `yyyy\-mm\-dd`, `[h]:mm`, `0.0" V"`. The first section decides.
     pub fn of_code(code: &str) -> Self {
         let mut chars = code.chars();

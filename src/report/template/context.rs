@@ -81,7 +81,7 @@ impl Context {
         let counts = counts(source, &standing, shown.len());
         let (answer, worst) = answer(&standing, counts["readings"] + counts["passed"]);
         let groups = groups::groups(source, &shown, repair.as_ref(), language);
-        let (actions, more_actions) = actions::actions(&groups, causes::found(source));
+        let (actions, more_actions) = actions::actions(&groups);
         let (findings, more_findings) = groups::told(groups);
         let errors = source.problems.iter().filter(|p| p.severity == Severity::Error).count();
         Self {

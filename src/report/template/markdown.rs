@@ -97,7 +97,8 @@ impl Builder<'_> {
     fn title(&mut self) {
         let mut title = std::mem::take(&mut self.top().inlines);
         if let Some(Inline::Text(first)) = title.first_mut() {
-            *first = first.split_once(']').map_or("", |(_, rest)| rest).trim_start().to_owned();
+            let rest = first.split_once(']').map_or("", |(_, rest)| rest);
+            *first = rest.strip_prefix(' ').unwrap_or(rest).to_owned();
         }
         title.retain(|i| *i != Inline::Text(String::new()));
         let at = self.stack.len().saturating_sub(2);

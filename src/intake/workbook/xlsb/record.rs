@@ -29,7 +29,11 @@ pub const RICH_LABEL: u32 = 62;
 pub const BEGIN_CELLS: u32 = 145;
 pub const END_CELLS: u32 = 146;
 pub const BOOK_PROPERTIES: u32 = 153;
+pub const DIMENSION: u32 = 148;
+pub const END_SHEETS: u32 = 144;
+pub const CALCULATION: u32 = 157;
 pub const SHEET: u32 = 156;
+pub const BEGIN_TEXTS: u32 = 159;
 pub const MERGED: u32 = 176;
 pub const BEGIN_CELL_FORMATS: u32 = 617;
 pub const END_CELL_FORMATS: u32 = 618;
@@ -88,7 +92,7 @@ impl Records<'_> {
 
 /// A cell's record.
 pub struct CellRecord<'b> {
-    /// What it is, of the long forms.
+    /// What it is: the long form of a value, or that of the result of a formula.
     pub kind: u32,
     /// Its column; none where it is the one after the last.
     pub col: Option<u32>,
@@ -110,9 +114,15 @@ impl<'b> Record<'b> {
     }
 }
 
-/// Text after a count of four bytes, and the length of both; the count of no text at all is all ones.
-pub fn wide(data: Data) -> Result<(String, usize), Short> {
+/// Text after a count of four bytes, as it stands, and the length of both; the count of no text at all is all ones.
+pub fn units(data: Data<'_>) -> Result<(&[u8], usize), Short> {
     let count = Some(data.u32(0)?).filter(|count| *count != u32::MAX).unwrap_or(0) as usize;
     let text = data.part(4, count.saturating_mul(2))?;
-    Ok((UTF_16LE.decode_without_bom_handling(text).0.into_owned(), 4 + text.len()))
+    Ok((text, 4 + text.len()))
+}
+
+/// The same, decoded.
+pub fn wide(data: Data) -> Result<(String, usize), Short> {
+    let (text, length) = units(data)?;
+    Ok((UTF_16LE.decode_without_bom_handling(text).0.into_owned(), length))
 }

@@ -1,8 +1,7 @@
 //! What is to be done, by whom and by when.
 
 use super::groups::Group;
-use crate::report::repair::may_follow;
-use crate::results::{Cause, Signal};
+use crate::results::Signal;
 use serde::Serialize;
 use std::collections::HashSet;
 
@@ -25,7 +24,7 @@ pub(super) struct Action {
 
 /// Each advice once, worst first, what may follow from the cause found behind the rest; and how many there are beyond those told.
 /// What is mended or only worth knowing asks for nothing.
-pub(super) fn actions(groups: &[Group], cause: Option<&Cause>) -> (Vec<Action>, usize) {
+pub(super) fn actions(groups: &[Group]) -> (Vec<Action>, usize) {
     let mut actions: Vec<Action> = Vec::new();
     let mut known: HashSet<&str> = HashSet::new();
     for group in groups.iter().filter(|g| !g.mended && g.signal != Signal::Notice.word()) {
@@ -37,7 +36,7 @@ pub(super) fn actions(groups: &[Group], cause: Option<&Cause>) -> (Vec<Action>, 
                 when: group.when.clone(),
                 title: group.title.clone(),
                 places: group.places.clone(),
-                follows: cause.is_some_and(|c| may_follow(&group.rule, c)),
+                follows: group.follows,
             });
         }
     }

@@ -47,7 +47,7 @@ pub(super) fn causes(source: &Source, d: &Diagnosis, language: &Language) -> Opt
         RepairOutcome::NotRepaired => "report.repair-not",
         RepairOutcome::NotShown => "report.repair-not-shown",
     });
-    let runs: Vec<String> = lead.runs.iter().filter_map(name).collect();
+    let runs = words::runs(source, &lead.runs);
     Some(Causes {
         kind: match lead.kind {
             CauseKind::None => "none",
