@@ -22,6 +22,7 @@ mod repair;
 mod scan;
 mod settings;
 mod site;
+mod switched;
 
 pub use settings::DiagnosisSettings;
 

@@ -44,8 +44,8 @@ pub(super) struct Reduced {
     pub attached: Vec<Option<usize>>,
     /// Set that a span belongs to: spans with the same measured locations at or below them, named by the lowest of them.
     pub class: Vec<usize>,
-    /// How many loads there are that belong to no single state.
-    pub common: usize,
+    /// Spans whose ohms rest on a length or a wire that the list does not state.
+    pub guessed: Vec<bool>,
 }
 
 /// Cuts the network of a visit down to what readings at the measured runs can see; `None` where nothing is left.
@@ -61,11 +61,12 @@ pub(super) fn reduce(visit: &Visit, measured: &[bool], settings: &DiagnosisSetti
         within: vec![None; visit.runs.len()],
         attached: kept.attached.clone(),
         class: Vec::new(),
-        common: 0,
+        guessed: Vec::new(),
     };
     reduced.add_spans(visit, &built.network.spans, &kept, measured, &lumps);
     reduced.add_loads(&lumps, &built.network);
     reduced.name_classes(measured);
+    reduced.mark_guesses(&built.assumptions);
     (!reduced.network.spans.is_empty()).then_some(reduced)
 }
 
@@ -274,7 +275,6 @@ impl Reduced {
                 add(median, Some(spread));
             }
         }
-        self.common = self.loads.len();
     }
 
     /// Adds a load that is not in the list.
@@ -296,6 +296,16 @@ impl Reduced {
     /// Two legs or more share the neutral of a span.
     pub(super) fn is_shared(&self, span: usize) -> bool {
         self.network.spans[span].ohms[..SLOTS - 1].iter().filter(|o| o.is_some()).count() > 1
+    }
+
+    fn mark_guesses(&mut self, assumptions: &[Assumption]) {
+        self.guessed = vec![false; self.network.spans.len()];
+        for a in assumptions {
+            let (Assumption::Wire(run) | Assumption::Length(run)) = a else { continue };
+            if let Some(span) = self.within[*run] {
+                self.guessed[span] = true;
+            }
+        }
     }
 
     fn name_classes(&mut self, measured: &[bool]) {

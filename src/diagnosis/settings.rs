@@ -28,6 +28,9 @@ pub(super) struct Trust {
 pub(super) const TRUST: [Trust; 2] =
     [Trust { prior: 0.6, ohms: 0.12, watts: 0.10, extra: None }, Trust { prior: 0.4, ohms: 0.45, watts: 0.40, extra: Some((4.0, 2.0)) }];
 
+/// Spread of the logarithm of a run's ohms where its length or wire is not stated: a length of 4 to 60 m is ±2 such spreads.
+pub(super) const GUESSED: f64 = 0.7;
+
 /// Watts of a load of which the list says nothing: median, and spread of the logarithm. A lamp to a heater, 20 to 1500 W, is
 /// about ±1.5 such spreads.
 pub(super) const UNLISTED: (f64, f64) = (120.0, 1.4);
@@ -37,6 +40,9 @@ pub(super) const UNLISTED_LINE_LINE: (f64, f64) = (3000.0, 0.6);
 
 /// Watts of what is switched on in a further state: from a lamp to two heaters.
 pub(super) const SWITCHED: (f64, f64) = (300.0, 1.5);
+
+/// Watts switched on at a place, where the state states them (`1500 W heater on`): spread of the logarithm; it may be on either leg.
+pub(super) const STATED: f64 = 0.5;
 
 /// Exponent of the current of a load whose kind is not stated, between these: constant power −1, filament 0.55, resistive 1.
 pub(super) const EXPONENT_RANGE: (f64, f64) = (-0.3, 1.05);

@@ -4,6 +4,7 @@ use super::observation::{Observations, observe, usable_rows};
 use super::parameter::{Parameter, parameters};
 use super::reduce::{Reduced, reduce};
 use super::settings::{self, DiagnosisSettings, Trust};
+use super::switched::Switched;
 use crate::network::{Law, SLOTS};
 use crate::quantity::math;
 use crate::visit::{Between, Conductor, Leg, Stage, Visit};
@@ -37,7 +38,7 @@ impl Site {
         if observations.list.len() < 2 {
             return None;
         }
-        add_switched(&mut reduced, &observations);
+        add_switched(visit, &mut reduced, &observations);
         if let Some(extra) = trust.extra {
             add_extra(&mut reduced, extra);
         }
@@ -66,12 +67,17 @@ impl Site {
     }
 }
 
-/// In every state but the first something is switched: a load on either leg at the panel, or at the location the state names.
-fn add_switched(reduced: &mut Reduced, observations: &Observations) {
+/// In every state but the first something is switched. Where the state names a place of the list, it is there; else at the panel.
+/// Where it names a leg it is on that leg, else on any.
+fn add_switched(visit: &Visit, reduced: &mut Reduced, observations: &Observations) {
     let Some(panel) = reduced.network.spans.iter().position(|s| s.fed_from.is_none()) else { return };
-    for state in 1..observations.states.len() {
-        for leg in 0..SLOTS - 1 {
-            reduced.add_unlisted(panel, leg, Law::Power { exponent: 1.0 }, settings::SWITCHED, Some(state));
+    for (state, text) in observations.states.iter().enumerate().skip(1) {
+        let switched = Switched::read(visit, text);
+        let place = switched.run.and_then(|run| reduced.attached[run]).and_then(|run| reduced.within[run]).unwrap_or(panel);
+        let legs = switched.leg.map_or(0..SLOTS - 1, |leg| leg.index()..leg.index() + 1);
+        let prior = switched.watts.filter(|_| switched.leg.is_some()).map_or(settings::SWITCHED, |w| (w, settings::STATED));
+        for leg in legs {
+            reduced.add_unlisted(place, leg, Law::Power { exponent: 1.0 }, prior, Some(state));
         }
     }
 }
