@@ -277,13 +277,14 @@ impl Reduced {
         }
     }
 
-    /// Adds a load that is not in the list.
-    pub(super) fn add_unlisted(&mut self, at: usize, leg: usize, law: Law, (median, spread): (f64, f64), state: Option<usize>) {
+    /// Adds a resistive load that is not in the list; `is_extra`: nothing points to it.
+    pub(super) fn add_unlisted(&mut self, (at, leg): (usize, usize), prior: (f64, f64), state: Option<usize>, is_extra: bool) {
+        let ((median, spread), law) = (prior, Law::Power { exponent: 1.0 });
         let between = (leg, SLOTS - 1);
         let rated_volts = rated_volts(&self.network, between);
         if rated_volts > 0.0 && [leg, SLOTS - 1].iter().all(|s| self.network.spans[at].ohms[*s].is_some()) {
             self.network.loads.push(Load { at, between, rated_volts, watts: median, law, power_factor: 1.0 });
-            self.loads.push(LumpedLoad { unlisted: Some(spread), kind_unknown: false, state, is_extra: state.is_none() });
+            self.loads.push(LumpedLoad { unlisted: Some(spread), kind_unknown: false, state, is_extra });
         }
     }
 

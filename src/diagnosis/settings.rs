@@ -41,6 +41,11 @@ pub(super) const UNLISTED_LINE_LINE: (f64, f64) = (3000.0, 0.6);
 /// Watts of what is switched on in a further state: from a lamp to two heaters.
 pub(super) const SWITCHED: (f64, f64) = (300.0, 1.5);
 
+/// Likewise where it may be anywhere: at the panel, and at any other place, where it is most likely not.
+pub(super) const SWITCHED_WIDE: (f64, f64) = (30.0, 2.0);
+/// At any other place.
+pub(super) const ANYWHERE: (f64, f64) = (4.0, 2.0);
+
 /// Watts switched on at a place, where the state states them (`1500 W heater on`): spread of the logarithm; it may be on either leg.
 pub(super) const STATED: f64 = 0.5;
 
@@ -104,5 +109,5 @@ pub(super) const MOST_READINGS: usize = 150;
 /// unmeasured on one place is one.
 pub(super) const MOST_RUNS: usize = 400;
 
-/// Arithmetic operations spent on one level of trust, at most: some seconds. An ordinary visit takes a fiftieth.
-pub(super) const MOST_WORK: f64 = 2e9;
+/// Arithmetic operations spent on one level of trust, at most: about a second. An ordinary visit takes a twentieth.
+pub(super) const MOST_WORK: f64 = 8e8;
