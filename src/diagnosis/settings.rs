@@ -110,4 +110,4 @@ pub(super) const MOST_READINGS: usize = 150;
 pub(super) const MOST_RUNS: usize = 400;
 
 /// Arithmetic operations spent on one level of trust, at most: about a second. An ordinary visit takes a twentieth.
-pub(super) const MOST_WORK: f64 = 8e8;
+pub(super) const MOST_WORK: f64 = 2.5e9;
