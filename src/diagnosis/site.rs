@@ -5,8 +5,8 @@ use super::parameter::{Parameter, parameters};
 use super::reduce::{Reduced, reduce};
 use super::settings::{self, DiagnosisSettings, Trust};
 use super::switched::Switched;
-use crate::network::SLOTS;
 use crate::diag::CellRef;
+use crate::network::SLOTS;
 use crate::quantity::math;
 use crate::visit::{Between, Conductor, Leg, Stage, Visit};
 
