@@ -4,6 +4,8 @@
 mod html;
 #[path = "render/marked.rs"]
 mod marked;
+#[path = "render/pdf.rs"]
+mod pdf;
 #[path = "render/specimen.rs"]
 mod specimen;
 #[path = "render/xlsx.rs"]

@@ -50,7 +50,7 @@ pub fn problem(p: &Problem, file: &str, language: &Language) -> String {
         (None, Some(sheet)) => format!("{file}: {sheet}"),
         (None, None) => file.to_owned(),
     };
-    let found = if p.found.is_empty() { String::new() } else { format!(" found `{}`;", p.found) };
+    let found = if p.found.is_empty() { String::new() } else { format!(" found `{}`.", p.found) };
     let mut text = format!("{}: {}:{found} {}", p.severity.name(), place, language.say(&p.message));
     if let Some(hint) = &p.hint {
         let _ = write!(text, " {}", language.say(hint));

@@ -17,7 +17,7 @@ pub(super) fn finish(mut pdf: lopdf::Document, document: &Document, flow: &Flow,
     let page_ids: Vec<ObjectId> = pdf.page_iter().collect();
     let nodes: Vec<ObjectId> = flow.structure.nodes.iter().map(|_| pdf.new_object_id()).collect();
     let root = pdf.new_object_id();
-    let links = links(&mut pdf, pages, &page_ids, &nodes);
+    let links = links(&mut pdf, pages, &page_ids);
     structure(&mut pdf, flow, pages, &page_ids, (root, &nodes, &links));
     let outline = outline(&mut pdf, pages, &page_ids);
     let profile = pdf.add_object(Stream::new(dictionary! { "N" => 3 }, typst_assets::icc::S_RGB_V4.to_vec()));
@@ -67,7 +67,7 @@ fn text(value: &str) -> Object {
 }
 
 /// Link annotations, page by page.
-fn links(pdf: &mut lopdf::Document, pages: &Pages, page_ids: &[ObjectId], nodes: &[ObjectId]) -> Vec<Vec<ObjectId>> {
+fn links(pdf: &mut lopdf::Document, pages: &Pages, page_ids: &[ObjectId]) -> Vec<Vec<ObjectId>> {
     let mut all = Vec::new();
     let mut key = i64::try_from(page_ids.len()).unwrap_or(i64::MAX);
     for (page, page_id) in pages.pages.iter().zip(page_ids) {
@@ -99,7 +99,6 @@ fn links(pdf: &mut lopdf::Document, pages: &Pages, page_ids: &[ObjectId], nodes:
         }
         all.push(ids);
     }
-    let _ = nodes;
     all
 }
 
@@ -191,20 +190,23 @@ fn element(node: &Node, parent: ObjectId, page_ids: &[ObjectId], nodes: &[Object
     element
 }
 
+/// An entry of the outline and the heading it leads to.
+type Item<'a> = (ObjectId, &'a Placed);
+
 /// The outline: headings of level 2, those of level 3 below them.
 fn outline(pdf: &mut lopdf::Document, pages: &Pages, page_ids: &[ObjectId]) -> Option<ObjectId> {
-    let mut items: Vec<(ObjectId, &Placed, Vec<(ObjectId, &Placed)>)> = Vec::new();
+    let mut items: Vec<(Item, Vec<Item>)> = Vec::new();
     for placed in pages.placed.iter().filter(|p| p.target.level >= TOP_LEVEL) {
         match items.last_mut() {
-            Some((_, _, below)) if placed.target.level > TOP_LEVEL => below.push((pdf.new_object_id(), placed)),
-            _ => items.push((pdf.new_object_id(), placed, Vec::new())),
+            Some((_, below)) if placed.target.level > TOP_LEVEL => below.push((pdf.new_object_id(), placed)),
+            _ => items.push(((pdf.new_object_id(), placed), Vec::new())),
         }
     }
-    let (first, last) = (items.first()?.0, items.last()?.0);
+    let (first, last) = (items.first()?.0.0, items.last()?.0.0);
     let root = pdf.new_object_id();
-    let top: Vec<(ObjectId, &Placed)> = items.iter().map(|(id, placed, _)| (*id, *placed)).collect();
+    let top: Vec<Item> = items.iter().map(|(item, _)| *item).collect();
     chain(pdf, &top, root, pages, page_ids);
-    for (id, _, below) in &items {
+    for ((id, _), below) in &items {
         chain(pdf, below, *id, pages, page_ids);
         if let (Some((a, _)), Some((z, _)), Ok(item)) = (below.first(), below.last(), pdf.get_dictionary_mut(*id)) {
             item.set("First", *a);
@@ -218,7 +220,7 @@ fn outline(pdf: &mut lopdf::Document, pages: &Pages, page_ids: &[ObjectId]) -> O
 }
 
 /// Items of one level, each knowing its neighbours.
-fn chain(pdf: &mut lopdf::Document, items: &[(ObjectId, &Placed)], parent: ObjectId, pages: &Pages, page_ids: &[ObjectId]) {
+fn chain(pdf: &mut lopdf::Document, items: &[Item], parent: ObjectId, pages: &Pages, page_ids: &[ObjectId]) {
     for (i, (id, placed)) in items.iter().enumerate() {
         let mut item =
             dictionary! { "Title" => text(&placed.target.text), "Parent" => parent, "Dest" => destination(placed, pages, page_ids) };

@@ -172,14 +172,38 @@ fn line(text: &str, colour: [u8; 3], bold: bool, x: f32, y: f32, room: f32, to: 
     line.runs.into_iter().map(|run| Paint::Text { x: left + run.x, y, run: Arc::new(run), colour }).collect()
 }
 
-/// Gives the structure its content: page and number of each mark and link.
+/// Gives the structure its content: page and number of each mark and link; then puts the kids of each node in reading order.
 fn number(pages: &Pages, flow: &mut Flow) {
+    let nodes = &mut flow.structure.nodes;
+    let mut first: Vec<Option<(usize, usize)>> = vec![None; nodes.len()];
     for (p, page) in pages.pages.iter().enumerate() {
         for (n, node) in page.marks.iter().filter_map(|m| m.node).enumerate() {
-            flow.structure.nodes[node].kids.push(Kid::Content(p, n));
+            nodes[node].kids.push(Kid::Content(p, n));
+            first[node] = first[node].or(Some((p, n)));
         }
         for (n, area) in page.areas.iter().enumerate() {
-            flow.structure.nodes[area.node].kids.push(Kid::Link(p, n));
+            nodes[area.node].kids.push(Kid::Link(p, n));
         }
+    }
+    // Nodes stand behind their parents, so that going backwards each knows its first content before its parent asks.
+    for n in (0..nodes.len()).rev() {
+        let of = |kid: &Kid| match kid {
+            Kid::Node(k) => first[*k],
+            Kid::Content(p, m) => Some((*p, *m)),
+            Kid::Link(..) => None,
+        };
+        let mut at = None;
+        let mut keyed: Vec<_> = nodes[n]
+            .kids
+            .iter()
+            .map(|kid| {
+                // What has no content of its own stays behind what stood before it.
+                at = of(kid).or(at);
+                (at, *kid)
+            })
+            .collect();
+        keyed.sort_by_key(|(place, _)| *place);
+        first[n] = keyed.iter().find_map(|(place, _)| *place);
+        nodes[n].kids = keyed.into_iter().map(|(_, kid)| kid).collect();
     }
 }
