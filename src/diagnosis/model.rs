@@ -248,7 +248,7 @@ impl<'a> Model<'a> {
     /// Computes the derivatives at the last residuals.
     pub fn derivatives(&mut self, task: &Task, z: &[f64]) -> Option<()> {
         let (m, n) = (self.observations.list.len() as f64, self.width as f64);
-        self.work += m * (n + (self.network.spans.len() * SPAN_WORK / 4) as f64) + m * m * (n + m / 3.0) / 2.0;
+        self.work += m * (n + (self.network.spans.len() * SPAN_WORK / 10) as f64) + m * m * (n + m / 3.0) / 2.0;
         self.jacobian.clear();
         self.jacobian.resize(self.observations.list.len() * self.width, 0.0);
         debug_assert_eq!(z.len(), self.width);
@@ -345,11 +345,11 @@ pub(super) fn exponent(x: f64) -> (f64, f64) {
 }
 
 /// Operations to solve for a span and for a load, about.
-const SPAN_WORK: usize = 400;
-const LOAD_WORK: usize = 200;
+const SPAN_WORK: usize = 1500;
+const LOAD_WORK: usize = 900;
 
 /// Standard deviations by which a reading falls short before its other sign is tried.
 const DOUBT: f64 = 3.0;
 
 /// Tolerances well below any meter's width.
-const SOLVE: SolveSettings = SolveSettings { tolerance: 3e-3, iterations: 40 };
+const SOLVE: SolveSettings = SolveSettings { tolerance: 3e-3, iterations: 25 };

@@ -25,6 +25,8 @@ const MOST_SPANS: usize = 6000;
 /// Readings proposed, at most: to tell causes apart, and in all.
 const MOST_TELLING: usize = 3;
 const MOST: usize = 8;
+/// By how much more a reading must say for a load to be carried there.
+const WORTH_A_LOAD: f64 = 1.1;
 /// Bits below which a reading is not worth the walk.
 const LEAST_BITS: f64 = 0.1;
 /// Standard deviation of a reading's prediction in volts: a meter's width and a supply that moves.
@@ -78,17 +80,23 @@ fn telling(visit: &Visit, network: &Network, suspects: &[Suspect]) -> Vec<NextRe
     if suspects.len() < 2 {
         return Vec::new();
     }
-    let mut places: Vec<usize> = suspects.iter().filter_map(|s| s.run).collect();
-    places.dedup();
+    let mut places: Vec<usize> = Vec::new();
+    for run in suspects.iter().filter_map(|s| s.run) {
+        if !places.contains(&run) {
+            places.push(run);
+        }
+    }
     // On lists of thousands of runs each trial takes its time.
     places.truncate((MOST_SPANS / network.spans.len().max(1)).min(MOST_PLACES));
     let mut all = Vec::new();
     for &run in &places {
         let Some(legs) = visit.runs[run].legs.as_ref().map(|l| l.value) else { continue };
+        let mut best = None;
         let loads = std::iter::once(None).chain(legs.iter().take(2).filter(|_| legs.neutral).map(Some));
         for load in loads {
-            all.extend(best_quantity(network, suspects, run, load, legs.neutral));
+            best = better(best, best_quantity(network, suspects, run, load, legs.neutral));
         }
+        all.extend(best);
     }
     all.sort_by(|a, b| b.worth.total_cmp(&a.worth));
     all.truncate(MOST_TELLING);
@@ -97,8 +105,11 @@ fn telling(visit: &Visit, network: &Network, suspects: &[Suspect]) -> Vec<NextRe
 
 /// The quantity at a place, in one load state, that tells most.
 fn best_quantity(network: &Network, suspects: &[Suspect], run: usize, load: Option<Leg>, neutral: bool) -> Option<NextReading> {
-    let mut quantities: Vec<Quantity> = if neutral { Leg::ALL.map(Quantity::line_neutral).to_vec() } else { Vec::new() };
-    quantities.push(Quantity::L1_L2);
+    let mut quantities = vec![Quantity::L1_L2];
+    if neutral {
+        quantities.extend(Leg::ALL.map(Quantity::line_neutral));
+        quantities.push(Quantity::NeutralGround);
+    }
     let predicted: Vec<Vec<f64>> = suspects.iter().map(|s| predict(network, s, run, load, &quantities)).collect::<Option<_>>()?;
     let one = |q: usize| {
         let values: Vec<f64> = predicted.iter().map(|p| p[q]).collect();
@@ -112,6 +123,14 @@ fn best_quantity(network: &Network, suspects: &[Suspect], run: usize, load: Opti
         })
     };
     (0..quantities.len()).filter_map(one).max_by(|a, b| a.worth.total_cmp(&b.worth))
+}
+
+/// The one worth more; without a load switched on where that is nearly as good.
+fn better(a: Option<NextReading>, b: Option<NextReading>) -> Option<NextReading> {
+    match (a, b) {
+        (Some(a), Some(b)) => Some(if b.worth > WORTH_A_LOAD * a.worth { b } else { a }),
+        (a, b) => a.or(b),
+    }
 }
 
 /// Values of quantities at a place under a cause; not a number for quantities that are not there.
@@ -140,7 +159,7 @@ fn width(a: f64, b: f64) -> f64 {
 
 /// Expected gain in bits: Σ pᵢ·log₂(1/Σ pⱼ·exp(−Cᵢⱼ)) with C the Bhattacharyya distance of two normal values.
 fn bits(suspects: &[Suspect], values: &[f64]) -> f64 {
-    if values.iter().any(|v| v.is_nan()) {
+    if values.iter().any(|v| !v.is_finite()) {
         return 0.0;
     }
     let total: f64 = suspects.iter().map(|s| s.probability).sum();

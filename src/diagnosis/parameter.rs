@@ -45,7 +45,9 @@ pub(super) fn parameters(reduced: &Reduced, observations: &Observations, trust: 
     if reduced.network.spans.iter().any(|s| s.electrode.is_some()) {
         add(Target::Electrode, 0.0, settings::ELECTRODE.1);
     }
-    (0..reduced.network.spans.len()).for_each(|s| add(Target::Span(s), 0.0, trust.ohms));
+    for (s, is_guess) in reduced.guessed.iter().enumerate() {
+        add(Target::Span(s), 0.0, if *is_guess { settings::GUESSED } else { trust.ohms });
+    }
     for (k, load) in reduced.loads.iter().enumerate() {
         add(Target::Watts(k), 0.0, load.unlisted.unwrap_or(trust.watts));
         if load.kind_unknown {

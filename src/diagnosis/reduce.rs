@@ -44,8 +44,8 @@ pub(super) struct Reduced {
     pub attached: Vec<Option<usize>>,
     /// Set that a span belongs to: spans with the same measured locations at or below them, named by the lowest of them.
     pub class: Vec<usize>,
-    /// How many loads there are that belong to no single state.
-    pub common: usize,
+    /// Spans whose ohms rest on a length or a wire that the list does not state.
+    pub guessed: Vec<bool>,
 }
 
 /// Cuts the network of a visit down to what readings at the measured runs can see; `None` where nothing is left.
@@ -61,11 +61,12 @@ pub(super) fn reduce(visit: &Visit, measured: &[bool], settings: &DiagnosisSetti
         within: vec![None; visit.runs.len()],
         attached: kept.attached.clone(),
         class: Vec::new(),
-        common: 0,
+        guessed: Vec::new(),
     };
     reduced.add_spans(visit, &built.network.spans, &kept, measured, &lumps);
     reduced.add_loads(&lumps, &built.network);
     reduced.name_classes(measured);
+    reduced.mark_guesses(&built.assumptions);
     (!reduced.network.spans.is_empty()).then_some(reduced)
 }
 
@@ -274,16 +275,16 @@ impl Reduced {
                 add(median, Some(spread));
             }
         }
-        self.common = self.loads.len();
     }
 
-    /// Adds a load that is not in the list.
-    pub(super) fn add_unlisted(&mut self, at: usize, leg: usize, law: Law, (median, spread): (f64, f64), state: Option<usize>) {
+    /// Adds a resistive load that is not in the list; `is_extra`: nothing points to it.
+    pub(super) fn add_unlisted(&mut self, (at, leg): (usize, usize), prior: (f64, f64), state: Option<usize>, is_extra: bool) {
+        let ((median, spread), law) = (prior, Law::Power { exponent: 1.0 });
         let between = (leg, SLOTS - 1);
         let rated_volts = rated_volts(&self.network, between);
         if rated_volts > 0.0 && [leg, SLOTS - 1].iter().all(|s| self.network.spans[at].ohms[*s].is_some()) {
             self.network.loads.push(Load { at, between, rated_volts, watts: median, law, power_factor: 1.0 });
-            self.loads.push(LumpedLoad { unlisted: Some(spread), kind_unknown: false, state, is_extra: state.is_none() });
+            self.loads.push(LumpedLoad { unlisted: Some(spread), kind_unknown: false, state, is_extra });
         }
     }
 
@@ -296,6 +297,16 @@ impl Reduced {
     /// Two legs or more share the neutral of a span.
     pub(super) fn is_shared(&self, span: usize) -> bool {
         self.network.spans[span].ohms[..SLOTS - 1].iter().filter(|o| o.is_some()).count() > 1
+    }
+
+    fn mark_guesses(&mut self, assumptions: &[Assumption]) {
+        self.guessed = vec![false; self.network.spans.len()];
+        for a in assumptions {
+            let (Assumption::Wire(run) | Assumption::Length(run)) = a else { continue };
+            if let Some(span) = self.within[*run] {
+                self.guessed[span] = true;
+            }
+        }
     }
 
     fn name_classes(&mut self, measured: &[bool]) {

@@ -28,6 +28,9 @@ pub(super) struct Trust {
 pub(super) const TRUST: [Trust; 2] =
     [Trust { prior: 0.6, ohms: 0.12, watts: 0.10, extra: None }, Trust { prior: 0.4, ohms: 0.45, watts: 0.40, extra: Some((4.0, 2.0)) }];
 
+/// Spread of the logarithm of a run's ohms where its length or wire is not stated: a length of 4 to 60 m is ±2 such spreads.
+pub(super) const GUESSED: f64 = 0.7;
+
 /// Watts of a load of which the list says nothing: median, and spread of the logarithm. A lamp to a heater, 20 to 1500 W, is
 /// about ±1.5 such spreads.
 pub(super) const UNLISTED: (f64, f64) = (120.0, 1.4);
@@ -37,6 +40,14 @@ pub(super) const UNLISTED_LINE_LINE: (f64, f64) = (3000.0, 0.6);
 
 /// Watts of what is switched on in a further state: from a lamp to two heaters.
 pub(super) const SWITCHED: (f64, f64) = (300.0, 1.5);
+
+/// Likewise where it may be anywhere: at the panel, and at any other place, where it is most likely not.
+pub(super) const SWITCHED_WIDE: (f64, f64) = (30.0, 2.0);
+/// At any other place.
+pub(super) const ANYWHERE: (f64, f64) = (4.0, 2.0);
+
+/// Watts switched on at a place, where the state states them (`1500 W heater on`): spread of the logarithm; it may be on either leg.
+pub(super) const STATED: f64 = 0.5;
 
 /// Exponent of the current of a load whose kind is not stated, between these: constant power −1, filament 0.55, resistive 1.
 pub(super) const EXPONENT_RANGE: (f64, f64) = (-0.3, 1.05);
@@ -98,5 +109,5 @@ pub(super) const MOST_READINGS: usize = 150;
 /// unmeasured on one place is one.
 pub(super) const MOST_RUNS: usize = 400;
 
-/// Arithmetic operations spent on one level of trust, at most: some seconds. An ordinary visit takes a fiftieth.
-pub(super) const MOST_WORK: f64 = 2e9;
+/// Arithmetic operations spent on one level of trust, at most: about a second. An ordinary visit takes a twentieth.
+pub(super) const MOST_WORK: f64 = 2.5e9;

@@ -4,9 +4,22 @@ use super::observation::{Observations, observe, usable_rows};
 use super::parameter::{Parameter, parameters};
 use super::reduce::{Reduced, reduce};
 use super::settings::{self, DiagnosisSettings, Trust};
-use crate::network::{Law, SLOTS};
+use super::switched::Switched;
+use crate::diag::CellRef;
+use crate::network::SLOTS;
 use crate::quantity::math;
 use crate::visit::{Between, Conductor, Leg, Stage, Visit};
+
+/// What is looked at, and how widely.
+#[derive(Clone, Debug)]
+pub(super) struct View {
+    /// The stage whose readings are fitted.
+    pub stage: Stage,
+    /// What is switched on in a further state may be anywhere.
+    pub is_wide: bool,
+    /// Readings left out, because nothing explains the others with them.
+    pub without: Vec<CellRef>,
+}
 
 /// A site at one stage and one level of trust.
 #[derive(Clone, Debug)]
@@ -26,18 +39,19 @@ pub(super) struct Site {
 
 impl Site {
     /// The site, or `None` where fewer than two readings can be used or the list makes no network.
-    pub fn new(visit: &Visit, stage: Stage, settings: &DiagnosisSettings, trust: &Trust) -> Option<Self> {
-        let rows = usable_rows(visit, stage);
+    pub fn new(visit: &Visit, view: &View, settings: &DiagnosisSettings, trust: &Trust) -> Option<Self> {
+        let rows = usable_rows(visit, view.stage);
         let mut measured = vec![false; visit.runs.len()];
         for run in rows.iter().filter_map(|r| r.run) {
             measured[run] = true;
         }
         let mut reduced = reduce(visit, &measured, settings)?;
-        let observations = observe(visit, &rows, &reduced);
+        let mut observations = observe(visit, &rows, &reduced);
+        observations.list.retain(|o| !view.without.contains(&o.cell));
         if observations.list.len() < 2 {
             return None;
         }
-        add_switched(&mut reduced, &observations);
+        add_switched(visit, &mut reduced, &observations, view.is_wide);
         if let Some(extra) = trust.extra {
             add_extra(&mut reduced, extra);
         }
@@ -66,12 +80,25 @@ impl Site {
     }
 }
 
-/// In every state but the first something is switched: a load on either leg at the panel, or at the location the state names.
-fn add_switched(reduced: &mut Reduced, observations: &Observations) {
+/// In every state but the first something is switched. Where the state names a place of the list, it is there; else at the panel.
+/// Where it names a leg it is on that leg, else on any.
+///
+/// In a wide view it may, where no place is named, also be anywhere else.
+fn add_switched(visit: &Visit, reduced: &mut Reduced, observations: &Observations, is_wide: bool) {
     let Some(panel) = reduced.network.spans.iter().position(|s| s.fed_from.is_none()) else { return };
-    for state in 1..observations.states.len() {
-        for leg in 0..SLOTS - 1 {
-            reduced.add_unlisted(panel, leg, Law::Power { exponent: 1.0 }, settings::SWITCHED, Some(state));
+    for (state, text) in observations.states.iter().enumerate().skip(1) {
+        let switched = Switched::read(visit, text);
+        let place = switched.run.and_then(|run| reduced.attached[run]).and_then(|run| reduced.within[run]).unwrap_or(panel);
+        let legs = switched.leg.map_or(0..SLOTS - 1, |leg| leg.index()..leg.index() + 1);
+        let unstated = if is_wide { settings::SWITCHED_WIDE } else { settings::SWITCHED };
+        let prior = switched.watts.filter(|_| switched.leg.is_some()).map_or(unstated, |w| (w, settings::STATED));
+        for leg in legs {
+            reduced.add_unlisted((place, leg), prior, Some(state), false);
+        }
+        if is_wide && switched.run.is_none() {
+            for span in reduced.with(Conductor::Neutral).into_iter().filter(|s| *s != panel) {
+                (0..SLOTS - 1).for_each(|leg| reduced.add_unlisted((span, leg), settings::ANYWHERE, Some(state), true));
+            }
         }
     }
 }
@@ -80,7 +107,7 @@ fn add_switched(reduced: &mut Reduced, observations: &Observations) {
 fn add_extra(reduced: &mut Reduced, extra: (f64, f64)) {
     for span in reduced.with(Conductor::Neutral) {
         for leg in 0..SLOTS - 1 {
-            reduced.add_unlisted(span, leg, Law::Power { exponent: 1.0 }, extra, None);
+            reduced.add_unlisted((span, leg), extra, None, true);
         }
     }
 }
