@@ -1,6 +1,7 @@
 //! From the tables of a workbook to a visit, one file a sheet.
 
 mod circuits;
+mod draft;
 mod instruments;
 mod known;
 mod legs;
@@ -13,6 +14,8 @@ mod tests_sheet;
 mod unread;
 mod visit_sheet;
 mod work;
+
+pub(super) use draft::draft;
 
 use super::cell::Reader;
 use super::grid::Workbook;
