@@ -92,6 +92,9 @@ pub enum Refusal {
     /// No table of readings.
     #[error("there is no table of readings; a sheet with the columns Location and L1-N (or Location, Quantity, Value) was expected{0}")]
     NoReadings(String),
+    /// A field workbook as it came, with nothing in it.
+    #[error("the workbook is not filled in yet: it has no readings, no circuits and no tests; enter what was read on the sheet Readings")]
+    NotFilledIn,
 }
 
 /// Reads an input.

@@ -1,8 +1,7 @@
 //! The marked copy of a workbook: its data again, what could not be used coloured and commented.
 
 use super::{ACCENT, Checked};
-use crate::diag::Problem;
-use crate::diag::Severity;
+use crate::diag::{Problem, Severity};
 use crate::intake::{self, Input, Refusal, Sheet, Value};
 use crate::render::xlsx::{self, Marked, MarkedProblem, MarkedSheet, MarkedValue, MarkedWords, XlsxError};
 use crate::report::document::{Meta, PageSize};
@@ -76,7 +75,7 @@ fn meta(checked: &Checked, language: &Language) -> Meta {
         header_left: language.text("marked.title"),
         header_right: checked.file.clone(),
         footer_left: producer.to_owned(),
-        page_words: language.text("report.page-words"),
+        page_words: language.text("report.page-words").replace("<page>", "{page}").replace("<pages>", "{pages}"),
         page: PageSize::Letter,
         accent: ACCENT,
         logo: None,
