@@ -8,12 +8,14 @@ mod batch;
 mod blank;
 mod check;
 mod files;
+mod map;
 mod name;
 mod report;
 mod rules;
 mod templates;
 mod terminal;
 
+use crate::intake::Mapping;
 use crate::pipeline::Settings;
 use clap::Parser;
 use std::path::Path;
@@ -35,6 +37,7 @@ pub fn main() -> ExitCode {
         args::Command::Report(a) => report::run(a),
         args::Command::Batch(a) => batch::run(a),
         args::Command::Blank(a) => blank::run(a),
+        args::Command::Map(a) => map::run(a),
         args::Command::Rules(a) => rules::run(a),
         args::Command::Templates(a) => templates::run(a),
     };
@@ -49,16 +52,22 @@ pub fn main() -> ExitCode {
     }
 }
 
-/// Settings with the user's rule book laid over the built-in one.
-fn settings(rules: Option<&Path>) -> anyhow::Result<Settings> {
+/// Settings with the user's rule book and layout laid over the built-in ones.
+fn settings(rules: Option<&Path>, map: Option<&Path>) -> anyhow::Result<Settings> {
     let mut settings = Settings::default();
     if let Some(path) = rules {
-        let text = files::text(path)?;
-        let name = path.display().to_string();
+        let (text, name) = (files::text(path)?, path.display().to_string());
         settings.rulebook = settings.rulebook.overlay(&text, &name).map_err(|problems| {
             let lines: Vec<String> = problems.iter().map(|p| p.say(&settings.language)).collect();
             anyhow::anyhow!("the rule book can't be used\n{}", lines.join("\n"))
         })?;
+    }
+    if let Some(path) = map {
+        let (text, name) = (files::text(path)?, path.display().to_string());
+        settings.mapping = Some(Mapping::from_toml(&text, &name).map_err(|problems| {
+            let lines: Vec<String> = problems.iter().map(|p| p.say(&settings.language)).collect();
+            anyhow::anyhow!("the mapping can't be used\n{}", lines.join("\n"))
+        })?);
     }
     Ok(settings)
 }

@@ -14,10 +14,12 @@ mod workbook;
 #[cfg(test)]
 mod tests;
 
+pub use grid::{Cell, Sheet, Value};
 pub use mapping::{Mapping, MappingProblem};
 
 use crate::diag::Output;
 use crate::visit::Visit;
+use crate::wording::Language;
 
 /// An input: its name as given, and what it holds.
 #[derive(Clone, Copy, Debug)]
@@ -90,6 +92,9 @@ pub enum Refusal {
     /// No table of readings.
     #[error("there is no table of readings; a sheet with the columns Location and L1-N (or Location, Quantity, Value) was expected{0}")]
     NoReadings(String),
+    /// A field workbook as it came, with nothing in it.
+    #[error("the workbook is not filled in yet: it has no readings, no circuits and no tests; enter what was read on the sheet Readings")]
+    NotFilledIn,
 }
 
 /// Reads an input.
@@ -99,4 +104,22 @@ pub enum Refusal {
 pub fn read(input: &Input, options: &Options) -> Result<Output<Visit>, Refusal> {
     let grid = workbook::read(&input.content)?;
     sheets::assemble(grid, options)
+}
+
+/// The sheets of an input as they stand, before any of it is understood.
+///
+/// # Errors
+/// It could not be read at all.
+pub fn sheets(input: &Input) -> Result<Vec<Sheet>, Refusal> {
+    Ok(workbook::read(&input.content)?.value.sheets)
+}
+
+/// A first mapping for an input, as TOML: what is recognised with the words in force, and lines for what is not. As it is, it
+/// changes nothing; it is for inputs without a table of readings, too.
+///
+/// # Errors
+/// It could not be read at all.
+pub fn first_mapping(input: &Input, language: &Language) -> Result<String, Refusal> {
+    let grid = workbook::read(&input.content)?;
+    Ok(sheets::draft(&grid.value, words::Words::built_in(), input.name, language))
 }

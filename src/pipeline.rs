@@ -1,13 +1,15 @@
 //! The whole flow, phase after phase: the only module that names all of them.
 
 mod json;
+mod marked;
 
 pub use json::{document as json_document, refusal as json_refusal};
+pub use marked::{MarkedError, marked};
 
 use crate::balance::{self, BalanceSettings};
 use crate::diag::Problem;
 use crate::diagnosis::{self, DiagnosisSettings};
-use crate::intake::{self, Beside, Content, Input, Refusal};
+use crate::intake::{self, Beside, Content, Input, Mapping, Refusal};
 use crate::network::{self, NetworkSettings};
 use crate::render;
 use crate::report::document::{Document, PageSize};
@@ -21,6 +23,8 @@ use sha2::{Digest, Sha256};
 
 /// What stays the same over all workbooks of a call.
 pub struct Settings {
+    /// The user's own layout, where there is one.
+    pub mapping: Option<Mapping>,
     /// The rules in force.
     pub rulebook: Rulebook,
     /// How the legs' balance is judged.
@@ -36,6 +40,7 @@ pub struct Settings {
 impl Default for Settings {
     fn default() -> Self {
         Self {
+            mapping: None,
             rulebook: Rulebook::built_in(),
             balance: BalanceSettings::default(),
             network: NetworkSettings::default(),
@@ -99,7 +104,7 @@ pub fn sha256(content: &Content) -> String {
 /// The input could not be used at all.
 pub fn check(input: &Input, beside: &dyn Beside, settings: &Settings) -> Result<Checked, Refusal> {
     let sha256 = sha256(&input.content);
-    let read = intake::read(input, &intake::Options { beside, mapping: None })?;
+    let read = intake::read(input, &intake::Options { beside, mapping: settings.mapping.as_ref() })?;
     let visit = read.value;
     let balance = balance::balance(&visit, &settings.balance);
     let diagnosis = diagnosis::diagnose(&visit, &settings.diagnosis);
@@ -186,6 +191,14 @@ pub fn render(
         files.push(("html", render::html::write(&document).into_bytes()));
     }
     Ok(files)
+}
+
+/// A first mapping for a workbook, as TOML.
+///
+/// # Errors
+/// The input could not be read at all.
+pub fn first_mapping(input: &Input, language: &Language) -> Result<String, Refusal> {
+    intake::first_mapping(input, language)
 }
 
 /// An empty field workbook for a system.

@@ -201,8 +201,92 @@ fn templates_are_listed_and_written_out_and_a_changed_one_is_used() {
 }
 
 #[test]
+fn a_marked_copy_is_written_once_never_over_the_workbook_and_for_one_alone() {
+    let folder = tempfile::tempdir().unwrap();
+    let workbook = folder.path().join("bad.xlsx");
+    fs::copy(sample("bad-cells.xlsx"), &workbook).unwrap();
+    let before = fs::read(&workbook).unwrap();
+    let target = folder.path().join("marked.xlsx");
+    let mark = |target: &Path, more: &[&str]| midwire(&[&["check", &text(&workbook), "--marked", &text(target)], more].concat());
+
+    let first = mark(&target, &["--json"]);
+    assert_eq!(first.status.code(), Some(1), "{}", said(&first));
+    let document: serde_json::Value = serde_json::from_slice(&first.stdout).expect("standard output is the document alone");
+    let marked = fs::read(&target).unwrap();
+    let sheets = midwire::intake::sheets(&midwire::intake::Input { name: "", content: midwire::intake::Content::File(&marked) }).unwrap();
+    let original = midwire::intake::sheets(&midwire::intake::Input { name: "", content: midwire::intake::Content::File(&before) }).unwrap();
+    assert_eq!(sheets.len(), original.len() + 1, "the list, then the sheets");
+    let cells = document["cells"].as_array().unwrap();
+    assert!(!cells.is_empty());
+    for cell in cells {
+        let listed = |what: &str| sheets[0].cells.iter().any(|c| c.value == midwire::intake::Value::Text(what.to_owned()));
+        for key in ["sheet", "cell"] {
+            assert!(cell[key].as_str().is_none_or(|what| what.is_empty() || listed(what)), "{cell}");
+        }
+    }
+    for (copy, sheet) in sheets.iter().skip(1).zip(&original) {
+        assert_eq!(copy.name, sheet.name);
+        assert_eq!(
+            copy.cells.iter().map(|c| (c.row, c.col)).collect::<Vec<_>>(),
+            sheet.cells.iter().map(|c| (c.row, c.col)).collect::<Vec<_>>()
+        );
+    }
+
+    for (again, expected) in [
+        (mark(&target, &[]), "--force"),
+        (mark(&workbook, &["--force"]), "never written to"),
+        (mark(&folder.path().join("marked.ods"), &[]), ".xlsx"),
+        (midwire(&["check", &text(&workbook), &text(&workbook), "--marked", &text(&folder.path().join("two.xlsx"))]), "one workbook"),
+    ] {
+        assert_eq!(again.status.code(), Some(2));
+        assert!(said(&again).contains(expected), "{}", said(&again));
+        assert!(printed(&again).is_empty());
+    }
+    assert_eq!(mark(&target, &["--force"]).status.code(), Some(1));
+    assert_eq!(fs::read(&target).unwrap(), marked, "same input, same bytes");
+    assert_eq!(fs::read(&workbook).unwrap(), before);
+    assert_eq!(names(folder.path()), ["bad.xlsx", "marked.xlsx"]);
+}
+
+#[test]
+fn a_first_mapping_changes_nothing_and_completed_it_places_the_columns() {
+    let folder = tempfile::tempdir().unwrap();
+    let sheets = folder.path().join("sheets");
+    fs::create_dir(&sheets).unwrap();
+    fs::write(sheets.join("Blatt.csv"), "Messpunkt,U eins,VBN,Handschuh\nMain,120.1,119.4,00\n").unwrap();
+    let mapping = folder.path().join("ours.toml");
+    let refused = midwire(&["check", &text(&sheets)]);
+    assert_eq!(refused.status.code(), Some(2), "{}", printed(&refused));
+
+    let written = midwire(&["map", &text(&sheets), "-o", &text(&mapping)]);
+    assert_eq!(written.status.code(), Some(0), "{}", said(&written));
+    let first = fs::read_to_string(&mapping).unwrap();
+    assert_eq!(printed(&midwire(&["map", &text(&sheets)])), first);
+    assert!(said(&midwire(&["check", &text(&sheets), "--map", &text(&mapping)])).contains("no table of readings"));
+
+    let completed = first
+        .replace("# readings = \"Blatt\"", "readings = \"Blatt\"")
+        .replace("# \"?\" = \"Messpunkt\"", "Location = \"Messpunkt\"")
+        .replace("# \"?\" = \"U eins\"", "L1-N = \"U eins\"");
+    assert_ne!(completed, first, "{first}");
+    fs::write(&mapping, completed).unwrap();
+    let read = midwire(&["check", "--json", &text(&sheets), "--map", &text(&mapping)]);
+    let document: serde_json::Value = serde_json::from_slice(&read.stdout).unwrap();
+    let reading =
+        |quantity: &str| document["readings"].as_array().unwrap().iter().find(|r| r["quantity"] == quantity).map(|r| r["value"].clone());
+    assert_eq!(reading("L1-N"), Some(120.1.into()), "{document:#}");
+    assert_eq!(reading("L2-N"), Some(119.4.into()));
+    let unplaced = document["cells"].as_array().unwrap().iter().find(|c| c["found"] == "Handschuh").expect("a column without a place");
+    assert!(unplaced["message"].as_str().unwrap().contains("COLUMN = \"Handschuh\""), "{unplaced}");
+    let report = midwire(&["report", &text(&sheets), "--map", &text(&mapping), "-o", &text(&folder.path().join("out"))]);
+    assert_eq!(report.status.code(), Some(0), "{}", said(&report));
+    let batch = midwire(&["batch", &text(folder.path()), "--map", "no-such.toml", "-o", &text(&folder.path().join("out"))]);
+    assert!(said(&batch).contains("no-such.toml"), "{}", said(&batch));
+}
+
+#[test]
 fn every_command_has_help_with_examples() {
-    for command in ["check", "report", "batch", "blank", "rules", "templates"] {
+    for command in ["check", "report", "batch", "blank", "map", "rules", "templates"] {
         let help = printed(&midwire(&[command, "--help"]));
         assert!(help.contains("Examples:"), "{command}: {help}");
     }

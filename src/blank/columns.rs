@@ -18,6 +18,14 @@ pub struct Column {
     pub width: f64,
     /// What may be entered.
     pub entry: Entry,
+    /// The message shown where one of its cells is chosen: what follows `blank.hint-`.
+    pub hint: Option<&'static str>,
+}
+
+impl Column {
+    fn hint(self, key: &'static str) -> Self {
+        Self { hint: Some(key), ..self }
+    }
 }
 
 /// What may be entered in a cell.
@@ -37,7 +45,7 @@ pub enum Entry {
 }
 
 fn column(heading: impl Into<String>, width: f64, entry: Entry) -> Column {
-    Column { heading: heading.into(), width, entry }
+    Column { heading: heading.into(), width, entry, hint: None }
 }
 
 /// All tables for a system, in the order they are filled in.
@@ -48,13 +56,13 @@ pub fn tables(system: &System) -> Vec<Table> {
         Table {
             name: "Instruments",
             columns: vec![
-                column("Instrument", 26.0, Entry::Text),
+                column("Instrument", 26.0, Entry::Text).hint("instrument"),
                 column("Measures", 13.0, Entry::Choice(vec!["volts", "amps", "ohms", "temperature"])),
                 column("Serial", 16.0, Entry::Text),
-                column("Calibrated until", 16.0, Entry::Date),
-                column("Accuracy % of reading", 13.0, Entry::Number(0.0, 20.0)),
-                column("Accuracy counts", 13.0, Entry::Number(0.0, 100.0)),
-                column("Resolution", 12.0, Entry::Number(0.0, 10.0)),
+                column("Calibrated until", 16.0, Entry::Date).hint("calibrated-until"),
+                column("Accuracy % of reading", 13.0, Entry::Number(0.0, 20.0)).hint("accuracy"),
+                column("Accuracy counts", 13.0, Entry::Number(0.0, 100.0)).hint("counts"),
+                column("Resolution", 12.0, Entry::Number(0.0, 10.0)).hint("resolution"),
             ],
         },
         Table { name: "Circuits", columns: circuits(system) },
@@ -63,8 +71,8 @@ pub fn tables(system: &System) -> Vec<Table> {
             name: "Tests",
             columns: vec![
                 column("Location", 18.0, Entry::Location),
-                column("Test", 34.0, Entry::Choice(TESTS.to_vec())),
-                column("Value", 11.0, Entry::Text),
+                column("Test", 34.0, Entry::Choice(TESTS.to_vec())).hint("test"),
+                column("Value", 11.0, Entry::Text).hint("value"),
                 column("Unit", 9.0, Entry::Choice(vec!["MΩ", "Ω", "ms", "mA", "N·m", "lb·in", "°C", "°F"])),
                 column("Stage", 11.0, stage()),
                 column("Remarks", 40.0, Entry::Text),
@@ -75,15 +83,15 @@ pub fn tables(system: &System) -> Vec<Table> {
             columns: vec![
                 column("Location", 18.0, Entry::Location),
                 column("Observation", 50.0, Entry::Text),
-                column("Signal word", 13.0, Entry::Choice(vec!["DANGER", "WARNING", "CAUTION", "NOTICE"])),
+                column("Signal word", 13.0, Entry::Choice(vec!["DANGER", "WARNING", "CAUTION", "NOTICE"])).hint("signal-word"),
                 column("Advice", 40.0, Entry::Text),
-                column("Photo", 22.0, Entry::Text),
+                column("Photo", 22.0, Entry::Text).hint("file"),
             ],
         },
         Table {
             name: "Photos",
             columns: vec![
-                column("File", 26.0, Entry::Text),
+                column("File", 26.0, Entry::Text).hint("file"),
                 column("Location", 18.0, Entry::Location),
                 column("Caption", 50.0, Entry::Text),
             ],
@@ -125,15 +133,15 @@ fn pairs(legs: &[Leg]) -> Vec<Between> {
 fn circuits(system: &System) -> Vec<Column> {
     let legs = system.legs();
     let mut columns = vec![
-        column("Circuit", 16.0, Entry::Text),
-        column("Fed from", 14.0, Entry::Text),
+        column("Circuit", 16.0, Entry::Text).hint("circuit"),
+        column("Fed from", 14.0, Entry::Text).hint("fed-from"),
         column("Serves", 28.0, Entry::Text),
-        column("Legs", 12.0, Entry::Choice(leg_choices(legs.len()))),
+        column("Legs", 12.0, Entry::Choice(leg_choices(legs.len()))).hint("legs"),
         column("Breaker A", 10.0, Entry::Number(1.0, 6000.0)),
-        column("Tie", 8.0, Entry::Choice(vec!["yes", "no"])),
-        column("Wire", 11.0, Entry::Text),
-        column("Neutral wire", 11.0, Entry::Text),
-        column("Length ft", 10.0, Entry::Number(0.0, 50_000.0)),
+        column("Tie", 8.0, Entry::Choice(vec!["yes", "no"])).hint("tie"),
+        column("Wire", 11.0, Entry::Text).hint("wire"),
+        column("Neutral wire", 11.0, Entry::Text).hint("neutral-wire"),
+        column("Length ft", 10.0, Entry::Number(0.0, 50_000.0)).hint("length"),
     ];
     columns.extend(legs.iter().map(|leg| column(format!("Load W {leg}"), 11.0, Entry::Number(0.0, 1e6))));
     columns.extend(pairs(legs).into_iter().map(|pair| column(format!("Load W {pair}"), 12.0, Entry::Number(0.0, 1e6))));
@@ -152,21 +160,21 @@ fn leg_choices(legs: usize) -> Vec<&'static str> {
 
 fn readings(system: &System) -> Vec<Column> {
     let legs = system.legs();
-    let volts = |heading: String| column(heading, 9.0, Entry::Number(0.0, 1000.0));
-    let amperes = |heading: String| column(heading, 9.0, Entry::Number(0.0, 6000.0));
+    let volts = |heading: String| column(heading, 7.5, Entry::Number(0.0, 1000.0));
+    let amperes = |heading: String| column(heading, 7.5, Entry::Number(0.0, 6000.0));
     let mut columns = vec![
-        column("Location", 18.0, Entry::Location),
-        column("State", 24.0, Entry::Text),
-        column("Stage", 11.0, Entry::Choice(vec!["as found", "as left"])),
-        column("Time", 9.0, Entry::Text),
-        column("Instrument", 20.0, Entry::Text),
+        column("Location", 15.0, Entry::Location),
+        column("State", 22.0, Entry::Text).hint("state"),
+        column("Stage", 11.0, Entry::Choice(vec!["as found", "as left"])).hint("stage"),
+        column("Time", 8.0, Entry::Text).hint("time"),
+        column("Instrument", 15.0, Entry::Text).hint("read-with"),
     ];
     columns.extend(legs.iter().map(|leg| volts(format!("{leg}-N"))));
     columns.extend(pairs(legs).into_iter().map(|pair| volts(pair.to_string())));
     columns.push(volts("N-G".into()));
     columns.extend(legs.iter().map(|leg| volts(format!("{leg}-G"))));
     columns.extend(legs.iter().map(|leg| amperes(format!("I {leg}"))));
-    columns.extend([amperes("I N".into()), amperes("I G".into()), column("Remarks", 30.0, Entry::Text)]);
+    columns.extend([amperes("I N".into()), amperes("I G".into()), column("Remarks", 24.0, Entry::Text)]);
     columns.extend(live(system));
     columns
 }

@@ -21,7 +21,7 @@ pub struct Arguments {
 pub enum Command {
     /// Read and check workbooks; print cell problems and findings
     #[command(
-        after_help = "Examples:\n  midwire check visit.xlsx\n  midwire check --json visit.xlsx > visit.json\n  midwire check --rules our-limits.toml *.xlsx\n\nExit status: 0 nothing above NOTICE, 1 CAUTION or worse, 2 input that could not be used."
+        after_help = "Examples:\n  midwire check visit.xlsx\n  midwire check --json visit.xlsx > visit.json\n  midwire check visit.xlsx --marked visit-marked.xlsx\n  midwire check --rules our-limits.toml *.xlsx\n\nExit status: 0 nothing above NOTICE, 1 CAUTION or worse, 2 input that could not be used."
     )]
     Check(Check),
     /// Check workbooks, then write a PDF and an XLSX of each
@@ -37,6 +37,11 @@ pub enum Command {
     /// Write an empty field workbook to fill in
     #[command(after_help = "Examples:\n  midwire blank\n  midwire blank --system 208Y/120 -o shop.xlsx\n\nExit status: 0 written, 2 not.")]
     Blank(Blank),
+    /// Write a first mapping of a layout of your own: what was recognised, what was not
+    #[command(
+        after_help = "Examples:\n  midwire map our-sheet.xlsx\n  midwire map our-sheet.xlsx -o our-layout.toml\n  midwire check our-sheet.xlsx --map our-layout.toml\n\nExit status: 0 written, 2 not."
+    )]
+    Map(Map),
     /// Print the rule book in force: each rule, its limits, their basis
     #[command(after_help = "Examples:\n  midwire rules\n  midwire rules leg-sum voltage-drop\n  midwire rules --rules our-limits.toml")]
     Rules(Rules),
@@ -60,6 +65,15 @@ pub struct Check {
     /// A rule book of yours (TOML) to lay over the built-in one
     #[arg(long, value_name = "FILE")]
     pub rules: Option<PathBuf>,
+    /// A mapping of your own layout (TOML); `midwire map` writes a first one
+    #[arg(long, value_name = "FILE")]
+    pub map: Option<PathBuf>,
+    /// Write a copy of the workbook (xlsx) with the problem cells coloured and commented; of one workbook only
+    #[arg(long, value_name = "FILE")]
+    pub marked: Option<PathBuf>,
+    /// Replace the marked copy if it exists
+    #[arg(long, requires = "marked")]
+    pub force: bool,
 }
 
 /// `midwire report`.
@@ -125,6 +139,9 @@ pub struct Look {
     /// A rule book of yours (TOML) to lay over the built-in one
     #[arg(long, value_name = "FILE")]
     pub rules: Option<PathBuf>,
+    /// A mapping of your own layout (TOML); `midwire map` writes a first one
+    #[arg(long, value_name = "FILE")]
+    pub map: Option<PathBuf>,
 }
 
 /// Paper sizes.
@@ -148,6 +165,19 @@ pub struct Blank {
     /// Rows to fill in on each sheet
     #[arg(long, default_value_t = 100, value_parser = clap::value_parser!(u32).range(1..=10_000))]
     pub rows: u32,
+    /// Replace the file if it exists
+    #[arg(long)]
+    pub force: bool,
+}
+
+/// `midwire map`.
+#[derive(Args)]
+pub struct Map {
+    /// A workbook (xlsx, xls, xlsb, ods), or a folder of csv files, one a sheet
+    pub workbook: PathBuf,
+    /// File to write [default: print it]
+    #[arg(short, long, value_name = "FILE")]
+    pub output: Option<PathBuf>,
     /// Replace the file if it exists
     #[arg(long)]
     pub force: bool,

@@ -26,7 +26,7 @@ const PORTION: usize = 8;
 /// Does all that is missing or changed; the register is written at the end, also when something failed.
 pub fn run(args: &args::Batch) -> anyhow::Result<u8> {
     std::fs::create_dir_all(&args.output).with_context(|| format!("{} can't be made", args.output.display()))?;
-    let settings = settings(args.look.rules.as_deref())?;
+    let settings = settings(args.look.rules.as_deref(), args.look.map.as_deref())?;
     let look = report::look(&args.look)?;
     let job = work::Job { settings: &settings, options: look.options(), html: args.look.html, fingerprint: fingerprint(args, &look)? };
     let found = walk::workbooks(&args.folder, &args.output, args.only.as_deref(), args.since.as_deref())?;
@@ -52,9 +52,10 @@ pub fn run(args: &args::Batch) -> anyhow::Result<u8> {
 /// SHA-256 over everything but the workbook that decides the output.
 fn fingerprint(args: &args::Batch, look: &report::Look) -> anyhow::Result<String> {
     let rules = args.look.rules.as_deref().map(files::text).transpose()?.unwrap_or_default();
+    let map = args.look.map.as_deref().map(files::text).transpose()?.unwrap_or_default();
     let template = look.template().map_or("", |(_, text)| text);
     let page = format!("{:?} {:?} html {}", look.page(), args.look.date, args.look.html);
-    let parts = [("program", env!("CARGO_PKG_VERSION")), ("rules", &rules), ("template", template), ("page", &page)];
+    let parts = [("program", env!("CARGO_PKG_VERSION")), ("rules", &rules), ("map", &map), ("template", template), ("page", &page)];
     let parts: Vec<(String, Vec<u8>)> = parts.iter().map(|(k, v)| ((*k).to_owned(), v.as_bytes().to_vec())).collect();
     Ok(crate::pipeline::sha256(&crate::intake::Content::Folder(&parts)))
 }

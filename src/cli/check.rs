@@ -1,22 +1,27 @@
 //! `midwire check`.
 
+use super::files::Loaded;
 use super::{DONE, FAILED, FOUND, args, files, settings, terminal};
 use crate::intake::Input;
 use crate::pipeline::{self, Checked, Settings};
 use crate::results::{Signal, Verdict};
+use anyhow::bail;
 use std::io::Write;
 use std::path::Path;
 
 /// Reads, checks and prints.
 pub fn run(args: &args::Check) -> anyhow::Result<u8> {
-    let settings = settings(args.rules.as_deref())?;
+    let settings = settings(args.rules.as_deref(), args.map.as_deref())?;
+    if let Some(target) = &args.marked {
+        may_mark(args, target)?;
+    }
     let mut status = DONE;
     let mut documents = Vec::new();
     let mut out = std::io::BufWriter::new(anstream::stdout());
     for path in &args.workbooks {
         let name = path.display().to_string();
-        match one(path, &name, &settings) {
-            Ok(checked) => {
+        match loaded(path).and_then(|loaded| of(&loaded, path, &name, &settings).map(|checked| (loaded, checked))) {
+            Ok((loaded, checked)) => {
                 if checked.worst().is_some_and(|s| s > Signal::Notice) {
                     status = status.max(FOUND);
                 }
@@ -24,6 +29,12 @@ pub fn run(args: &args::Check) -> anyhow::Result<u8> {
                     documents.push(pipeline::json_document(&checked, &settings.language, args.all));
                 } else {
                     print(&mut out, &checked, &settings, args.all)?;
+                }
+                if let Some(target) = &args.marked
+                    && let Err(error) = mark(&loaded, &checked, &settings, target, args.force)
+                {
+                    status = FAILED;
+                    anstream::eprintln!("midwire: {}: {}", terminal::line(&name), terminal::line(&format!("{error:#}")));
                 }
             }
             Err((error, sha256)) => {
@@ -45,10 +56,43 @@ pub fn run(args: &args::Check) -> anyhow::Result<u8> {
 
 /// One workbook; the error with the input's hash, empty where it could not be read at all.
 pub fn one(path: &Path, name: &str, settings: &Settings) -> Result<Checked, (String, String)> {
-    let loaded = files::load(path).map_err(|e| (format!("{e:#}"), String::new()))?;
+    of(&loaded(path)?, path, name, settings)
+}
+
+fn loaded(path: &Path) -> Result<Loaded, (String, String)> {
+    files::load(path).map_err(|e| (format!("{e:#}"), String::new()))
+}
+
+fn of(loaded: &Loaded, path: &Path, name: &str, settings: &Settings) -> Result<Checked, (String, String)> {
     let input = Input { name, content: loaded.content() };
     let sha256 = || pipeline::sha256(&loaded.content());
     pipeline::check(&input, &files::Siblings::of(path), settings).map_err(|e| (e.to_string(), sha256()))
+}
+
+/// What would stand in the way of a marked copy is said before anything is read.
+fn may_mark(args: &args::Check, target: &Path) -> anyhow::Result<()> {
+    let [workbook] = args.workbooks.as_slice() else {
+        bail!("--marked writes the copy of one workbook; {} were given", args.workbooks.len());
+    };
+    if !target.extension().is_some_and(|e| e.eq_ignore_ascii_case("xlsx")) {
+        bail!("the marked copy is an xlsx workbook; {} does not end in .xlsx", target.display());
+    }
+    let same = target.canonicalize().is_ok_and(|t| workbook.canonicalize().is_ok_and(|w| w == t));
+    if same {
+        bail!("{} is the workbook itself and is never written to; name another file", target.display());
+    }
+    if !args.force && target.symlink_metadata().is_ok() {
+        bail!("{} exists; --force replaces it", target.display());
+    }
+    Ok(())
+}
+
+fn mark(loaded: &Loaded, checked: &Checked, settings: &Settings, target: &Path, force: bool) -> anyhow::Result<()> {
+    let input = Input { name: &checked.file, content: loaded.content() };
+    let bytes = pipeline::marked(&input, checked, &settings.language)?;
+    files::write(target, &bytes, force)?;
+    anstream::eprintln!("midwire: the marked copy is {}", terminal::line(&target.display().to_string()));
+    Ok(())
 }
 
 fn print(out: &mut impl Write, checked: &Checked, settings: &Settings, all: bool) -> std::io::Result<()> {

@@ -54,7 +54,7 @@ impl Look {
 
 /// Checks each workbook and writes its reports; one that fails does not stop the others.
 pub fn run(args: &args::Report) -> anyhow::Result<u8> {
-    let settings = settings(args.look.rules.as_deref())?;
+    let settings = settings(args.look.rules.as_deref(), args.look.map.as_deref())?;
     let look = look(&args.look)?;
     let options = look.options();
     if let Some(folder) = &args.output {

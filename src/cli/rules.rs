@@ -6,7 +6,7 @@ use std::io::Write;
 
 /// Prints the rule book in force.
 pub fn run(args: &args::Rules) -> anyhow::Result<u8> {
-    let settings = settings(args.rules.as_deref())?;
+    let settings = settings(args.rules.as_deref(), None)?;
     let known: Vec<&str> = settings.rulebook.rules().iter().map(|r| r.spec.id).collect();
     for name in &args.names {
         if !known.contains(&name.as_str()) {

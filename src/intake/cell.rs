@@ -75,8 +75,13 @@ impl<'a> Reader<'a> {
 
     /// The hint that names the nearest known word, while it is worth looking for.
     pub fn suggestion(&mut self, nearest: impl FnOnce(&'a Words) -> Option<&'a str>) -> Option<Sentence> {
+        self.nearest(nearest).map(did_you_mean)
+    }
+
+    /// The nearest known word, while it is worth looking for.
+    pub fn nearest(&mut self, nearest: impl FnOnce(&'a Words) -> Option<&'a str>) -> Option<&'a str> {
         self.suggestions = self.suggestions.checked_sub(1)?;
-        nearest(self.words).map(did_you_mean)
+        nearest(self.words)
     }
 
     /// The text of a cell: trimmed, inner blanks single; a number or date as it is written. Error values are named.

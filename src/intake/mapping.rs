@@ -26,6 +26,7 @@ use super::header::What;
 use super::words::{Kind, Words};
 use crate::quantity::parse::unit_word;
 use crate::wording::{Arg, Language, Sentence};
+use std::fmt::Write as _;
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
@@ -284,4 +285,28 @@ fn kind(name: &str) -> Option<Kind> {
 
 fn sections() -> Vec<&'static str> {
     Kind::ALL.iter().map(|k| k.name()).chain(["sheets", "fixed", "units"]).collect()
+}
+
+/// A key of a table: bare where it may be.
+pub(super) fn key(name: &str) -> String {
+    let bare = !name.is_empty() && name.chars().all(|c| c.is_ascii_alphanumeric() || c == '-' || c == '_');
+    if bare { name.to_owned() } else { quoted(name) }
+}
+
+/// A TOML basic string on one line, with nothing in it that can't be seen.
+pub(super) fn quoted(text: &str) -> String {
+    let mut out = String::from("\"");
+    for c in text.chars() {
+        let unseen = c.is_control()
+            || matches!(c, '\u{61c}' | '\u{200b}'..='\u{200f}' | '\u{2028}'..='\u{202e}' | '\u{2060}'..='\u{206f}' | '\u{feff}');
+        match c {
+            '"' | '\\' => out.extend(['\\', c]),
+            _ if unseen => {
+                let _ = write!(out, "\\u{:04X}", u32::from(c));
+            }
+            _ => out.push(c),
+        }
+    }
+    out.push('"');
+    out
 }

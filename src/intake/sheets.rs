@@ -1,6 +1,7 @@
 //! From the tables of a workbook to a visit, one file a sheet.
 
 mod circuits;
+mod draft;
 mod instruments;
 mod known;
 mod legs;
@@ -13,6 +14,8 @@ mod tests_sheet;
 mod unread;
 mod visit_sheet;
 mod work;
+
+pub(super) use draft::draft;
 
 use super::cell::Reader;
 use super::grid::Workbook;
@@ -37,7 +40,7 @@ impl<'a> Tables<'a> {
 /// Reads a workbook's grid.
 ///
 /// # Errors
-/// It has no table of readings.
+/// It has no table of readings, or nothing is entered.
 pub(super) fn assemble(grid: Output<Workbook>, options: &Options) -> Result<Output<Visit>, Refusal> {
     let workbook = &grid.value;
     let words = match options.mapping {
@@ -52,6 +55,10 @@ pub(super) fn assemble(grid: Output<Workbook>, options: &Options) -> Result<Outp
     reader.problems = grid.problems;
     let visit = read(workbook, &tables, options, &mut reader);
     unread::say(workbook, &tables, &mut reader);
+    let empty = visit.rows.is_empty() && visit.runs.is_empty() && visit.tests.is_empty() && visit.observations.is_empty();
+    if empty && reader.problems.iter().all(|p| p.severity == Severity::Warning) {
+        return Err(Refusal::NotFilledIn);
+    }
     Ok(Output { value: visit, problems: ordered(reader.problems, reader.more, workbook) })
 }
 

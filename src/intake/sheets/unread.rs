@@ -2,9 +2,10 @@
 
 use super::Tables;
 use crate::diag::{Problem, Severity, column_letters};
-use crate::intake::cell::{Reader, plain_text};
+use crate::intake::cell::{Reader, bounded, plain_text};
 use crate::intake::grid::{Sheet, Workbook};
 use crate::intake::header::Table;
+use crate::intake::mapping::{key, quoted};
 use crate::intake::words::{Kind, Words};
 use crate::wording::{Arg, Sentence};
 use std::collections::{BTreeSet, HashSet};
@@ -31,15 +32,15 @@ pub(super) fn say<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, reader: &m
 }
 
 /// A sheet whose items make it a form of the Visit sheet was read though it has no header.
-fn is_form(sheet: &Sheet, words: &Words) -> bool {
+pub(super) fn is_form(sheet: &Sheet, words: &Words) -> bool {
     let items: BTreeSet<_> = sheet.cells.iter().take(400).filter_map(|c| words.items.get(&plain_text(&c.value))).collect();
     items.len() >= 3
 }
 
 fn unplaced(table: &Table<'_>, reader: &mut Reader<'_>) {
     for (col, text) in &table.unplaced {
-        let hint = reader.suggestion(|words| words.columns(table.kind).nearest(text));
-        reader.at(Severity::Warning, &table.header_cell(*col), text.as_str(), Sentence::new("intake.unplaced-column")).hint = hint;
+        let hint = line_to_add(table, text, reader);
+        reader.at(Severity::Warning, &table.header_cell(*col), text.as_str(), Sentence::new("intake.unplaced-column")).hint = Some(hint);
     }
     for (col, text) in &table.second {
         reader.at(Severity::Warning, &table.header_cell(*col), text.as_str(), Sentence::new("intake.second-column"));
@@ -55,6 +56,16 @@ fn unplaced(table: &Table<'_>, reader: &mut Reader<'_>) {
             }
         }
     }
+}
+
+/// The line of a mapping that would place a column, with the name it likely has.
+fn line_to_add(table: &Table<'_>, heading: &str, reader: &mut Reader<'_>) -> Sentence {
+    let likely = reader.nearest(|words| words.columns(table.kind).nearest(heading));
+    let sentence = likely.map_or_else(
+        || Sentence::new("intake.unplaced-hint"),
+        |likely| Sentence::new("intake.unplaced-hint-likely").with("likely", likely).with("key", key(likely)),
+    );
+    sentence.with("heading", quoted(&bounded(heading))).with("table", table.kind.name())
 }
 
 /// Cells beside a table, in its rows but in no table's columns: said once a column.
@@ -105,7 +116,7 @@ pub(super) fn nearest_to_readings(workbook: &Workbook, words: &Words) -> String 
             let known = texts.iter().filter(|t| columns.get(t).is_some() || columns.nearest(t).is_some()).count();
             if known > best.as_ref().map_or(0, |b| b.0) {
                 let head = texts.iter().take(12).map(String::as_str).collect::<Vec<_>>().join(" | ");
-                best = Some((known, format!("; nearest is {}, row {}: {}", sheet.name, row + 1, crate::intake::cell::bounded(&head))));
+                best = Some((known, format!("; nearest is {}, row {}: {}", sheet.name, row + 1, bounded(&head))));
             }
         }
     }

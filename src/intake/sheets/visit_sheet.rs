@@ -52,6 +52,12 @@ pub(super) fn read<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, reader: &
     VisitSheet { site: site(&entries, reader), system }
 }
 
+/// Items that have an entry, but are none that is known.
+pub(super) fn unknown_items<'a>(tables: &'a Tables<'a>, words: &'a Words) -> Vec<String> {
+    let lines = tables.of(Kind::Visit).flat_map(|table| headed(table, words));
+    lines.filter(|line| line.item.is_none() && line.entry.is_some()).map(|line| plain_text(line.label.value)).collect()
+}
+
 /// A form that repeats what the first set says, as on the head of every sheet.
 fn agrees(lines: &[Line<'_>], entries: &Entries<'_>, words: &Words) -> bool {
     let same = |a: Field<'_>, b: Field<'_>| {
