@@ -19,8 +19,8 @@ pub(super) use draft::draft;
 
 use super::cell::Reader;
 use super::grid::Workbook;
-use super::header::{self, Table};
-use super::words::{Kind, Words};
+use super::header::{self, Row, Table, What};
+use super::words::{Column, Kind, Words};
 use super::{Options, Refusal};
 use crate::diag::{Output, Problem, Severity};
 use crate::visit::{Tree, Visit};
@@ -55,8 +55,7 @@ pub(super) fn assemble(grid: Output<Workbook>, options: &Options) -> Result<Outp
     reader.problems = grid.problems;
     let visit = read(workbook, &tables, options, &mut reader);
     unread::say(workbook, &tables, &mut reader);
-    let empty = visit.rows.is_empty() && visit.runs.is_empty() && visit.tests.is_empty() && visit.observations.is_empty();
-    if empty && reader.problems.iter().all(|p| p.severity == Severity::Warning) {
+    if !tables.0.iter().any(entered) && reader.problems.iter().all(|p| p.severity == Severity::Warning) {
         return Err(Refusal::NotFilledIn);
     }
     Ok(Output { value: visit, problems: ordered(reader.problems, reader.more, workbook) })
@@ -90,6 +89,12 @@ fn read<'a>(workbook: &'a Workbook, tables: &'a Tables<'a>, options: &Options, r
         work: work::read(tables, reader),
         revisions: revisions::read(tables, reader),
     }
+}
+
+/// Something stands in a table that can be judged; cells that reckon stand in an empty workbook, too.
+fn entered(table: &Table<'_>) -> bool {
+    let by_hand = |row: Row<'_>| row.placed().any(|(placed, _)| placed.what != What::Named(Column::Reckoned));
+    matches!(table.kind, Kind::Circuits | Kind::Readings | Kind::Tests | Kind::Observations) && table.body().any(by_hand)
 }
 
 /// The problems in the order of the workbook: those of the whole first, then by sheet, row and column.

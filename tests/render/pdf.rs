@@ -152,8 +152,18 @@ fn elements_stand_in_reading_order() {
     assert_eq!(tags.join(" "), expected);
     let (_, paragraph) = elements(&pdf).into_iter().find(|(_, e)| tag(e) == "P").unwrap();
     let kids = paragraph.get(b"K").unwrap().as_array().unwrap();
-    assert_eq!(kids.iter().map(|k| k.as_reference().is_ok()).collect::<Vec<_>>(), [false, true, false], "the link stands between its neighbours");
-    let annotations: Vec<Dictionary> = pdf.objects.values().filter_map(|o| o.as_dict().ok()).filter(|d| d.get(b"Subtype").and_then(Object::as_name).is_ok_and(|n| n == b"Link")).cloned().collect();
+    assert_eq!(
+        kids.iter().map(|k| k.as_reference().is_ok()).collect::<Vec<_>>(),
+        [false, true, false],
+        "the link stands between its neighbours"
+    );
+    let annotations: Vec<Dictionary> = pdf
+        .objects
+        .values()
+        .filter_map(|o| o.as_dict().ok())
+        .filter(|d| d.get(b"Subtype").and_then(Object::as_name).is_ok_and(|n| n == b"Link"))
+        .cloned()
+        .collect();
     assert_eq!(annotations.len(), 1);
     assert!(annotations[0].get(b"Dest").is_ok() && annotations[0].get(b"StructParent").is_ok());
 }
@@ -235,7 +245,8 @@ fn headings_stay_with_what_follows() {
 fn documents_made_to_break_it_are_set_all_the_same() {
     let long = "x".repeat(1000);
     let figure = |width: f64, height: f64| {
-        let label = Shape::Text { at: (1e9, f64::NAN), text: "off".into(), size: 1e6, bold: true, anchor: Anchor::End, colour: Colour::Ink };
+        let label =
+            Shape::Text { at: (1e9, f64::NAN), text: "off".into(), size: 1e6, bold: true, anchor: Anchor::End, colour: Colour::Ink };
         Block::Figure { caption: text("c"), drawing: Arc::new(Drawing { width, height, alt: "a".into(), shapes: vec![label] }) }
     };
     let mut nested = vec![paragraph("deep")];
@@ -249,25 +260,41 @@ fn documents_made_to_break_it_are_set_all_the_same() {
     let wide: Vec<Column> = (0..200).map(|i| column(&format!("c{i}"), "Heading", None, ColumnKind::Text)).collect();
     let cells = (0..200).map(|i| words(&format!("cell {i}"))).collect();
     let tall = table("tall", "", vec![column("a", "A", None, ColumnKind::Text)], vec![row(vec![words(&"many words ".repeat(4000))])]);
-    let odd = table("odd", "", vec![column("a", "A", None, ColumnKind::Number), column("b", "B", None, ColumnKind::Name)], vec![
-        row(vec![Cell::Number(Number { uncertainty: Some(f64::INFINITY), ..Number::new(f64::NAN, 200) })]),
-        row(vec![]),
-        row(vec![words("a"), words("b"), words("c")]),
-    ]);
+    let odd = table(
+        "odd",
+        "",
+        vec![column("a", "A", None, ColumnKind::Number), column("b", "B", None, ColumnKind::Name)],
+        vec![
+            row(vec![Cell::Number(Number { uncertainty: Some(f64::INFINITY), ..Number::new(f64::NAN, 200) })]),
+            row(vec![]),
+            row(vec![words("a"), words("b"), words("c")]),
+        ],
+    );
     let photo = |bytes: &[u8]| CaptionedImage { image: Image { bytes: Arc::from(bytes), alt: "p".into() }, caption: long.clone() };
     let cases: Vec<Vec<Block>> = vec![
         vec![],
         vec![Block::PageBreak, Block::PageBreak, Block::PageBreak],
         vec![paragraph(""), paragraph(&long), heading(1, &long), heading(9, ""), Block::Paragraph(vec![Inline::Break; 500])],
         vec![paragraph("\u{0}\u{1b}[31m\u{202e}\u{200b}\u{feff}\n\r\t\u{10ffff}")],
-        vec![Block::Table(Arc::new(table("none", "", vec![], vec![]))), Block::Table(Arc::new(table("empty", "Empty", vec![column("a", "A", None, ColumnKind::Text)], vec![])))],
+        vec![
+            Block::Table(Arc::new(table("none", "", vec![], vec![]))),
+            Block::Table(Arc::new(table("empty", "Empty", vec![column("a", "A", None, ColumnKind::Text)], vec![]))),
+        ],
         vec![Block::Table(Arc::new(table("wide", "Wide", wide, vec![row(cells)])))],
         vec![Block::Table(Arc::new(tall)), Block::Table(Arc::new(odd))],
         nested,
         boxed,
         vec![figure(0.0, 0.0), figure(-5.0, 10.0), figure(f64::NAN, 10.0), figure(f64::INFINITY, 1.0), figure(1e-9, 1e9), figure(1e9, 5.0)],
-        vec![Block::Photos(vec![photo(b""), photo(b"\xff\xd8\xff\xc0"), photo(b"\x89PNG\r\n\x1a\n"), photo(&specimen::png())]), Block::Photos(vec![])],
-        vec![Block::Facts(vec![]), Block::Facts(vec![(long.clone(), text(&long))]), Block::SignOff(vec![]), Block::SignOff(vec![(long.clone(), Some(long.clone()))])],
+        vec![
+            Block::Photos(vec![photo(b""), photo(b"\xff\xd8\xff\xc0"), photo(b"\x89PNG\r\n\x1a\n"), photo(&specimen::png())]),
+            Block::Photos(vec![]),
+        ],
+        vec![
+            Block::Facts(vec![]),
+            Block::Facts(vec![(long.clone(), text(&long))]),
+            Block::SignOff(vec![]),
+            Block::SignOff(vec![(long.clone(), Some(long.clone()))]),
+        ],
     ];
     for (i, blocks) in cases.into_iter().enumerate() {
         let bytes = pdf::write(&with(blocks)).unwrap_or_else(|e| panic!("case {i}: {e}"));

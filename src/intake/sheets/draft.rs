@@ -143,3 +143,37 @@ fn headings(sheet: &Sheet) -> Vec<String> {
     }
     best
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::intake::{Content, Input, Mapping, first_mapping};
+    use crate::wording::Language;
+
+    fn drafted(csv: &str) -> String {
+        let files = [("Blatt 3.csv".to_owned(), csv.as_bytes().to_vec())];
+        first_mapping(&Input { name: "own", content: Content::Folder(&files) }, &Language::english()).unwrap()
+    }
+
+    #[test]
+    fn headings_are_listed_as_known_near_or_without_a_place() {
+        let text = drafted("Test point,VAN,Staet,Glove class\nMain,120.1,x,00\n");
+        for line in ["# Location = \"Test point\"", "# L1-N = \"VAN\"", "# State = \"Staet\"", "# \"?\" = \"Glove class\""] {
+            assert!(text.lines().any(|l| l == line), "{line}\n{text}");
+        }
+    }
+
+    #[test]
+    fn whatever_stands_in_a_heading_the_draft_says_nothing_yet() {
+        for heading in ["\"x\n[fixed.visit]\nSystem = \"\"230\"\n#\"", "a\u{202e}b\"\"\"", "'''", "\\u0041\u{1b}[31m"] {
+            let text = drafted(&format!("Location,L1-N,{heading}\nMain,120.1,x\n"));
+            let spoken = text.lines().filter(|l| !l.is_empty() && !l.starts_with('#') && !l.starts_with('['));
+            assert_eq!(spoken.collect::<Vec<_>>(), Vec::<&str>::new(), "{text}");
+            assert!(text.lines().filter(|l| l.starts_with('[')).all(|l| ["[sheets]", "[readings]"].contains(&l)), "{text}");
+            assert!(text.chars().all(|c| c == '\n' || !c.is_control()), "{text}");
+            Mapping::from_toml(&text, "own.toml").unwrap();
+            // With every `#` before a line of its own taken away it is still TOML.
+            let lines = text.lines().map(|l| l.strip_prefix("# ").filter(|l| l.contains(" = \"") && !l.contains('`')).unwrap_or(l));
+            toml::from_str::<toml::Table>(&lines.collect::<Vec<_>>().join("\n")).unwrap();
+        }
+    }
+}

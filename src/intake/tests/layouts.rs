@@ -1,6 +1,7 @@
 //! Tables as people lay them out.
 
 use super::book::{Book, VISIT, problems, readings};
+use crate::intake::Refusal;
 
 /// Reads a sheet of readings, and compares what was read and what was said.
 fn check(what: &str, rows: &str, expected: &str, said: &str) {
@@ -236,5 +237,8 @@ fn an_input_without_readings_is_refused_with_what_comes_nearest() {
     let text = refusal.map(|_| ()).unwrap_err().to_string();
     assert!(text.contains("R, row 1: Place | State | L1N voltage now | Notes"), "{text}");
     assert!(Book::new().read().is_err());
-    assert!(Book::new().sheet("R", "Location|L1-N").read().is_ok(), "a table without rows is a table");
+    let empty = Book::new().sheet("R", "Location|L1-N").read().map(|_| ()).unwrap_err();
+    assert_eq!(empty, Refusal::NotFilledIn, "a table without rows is a table, but says nothing");
+    assert!(Book::new().sheet("R", "Location|L1-N\nSVC|n/a").read().is_ok(), "what could not be measured was entered all the same");
+    assert!(Book::new().sheet("R", "Location|L1-N").sheet("C", "Circuit|Fed from|Breaker|Wire\n5||20|12 Cu").read().is_ok());
 }
