@@ -187,6 +187,7 @@ impl House {
             visit: &self.visit,
             problems: &[],
             findings: &findings,
+            passed_unlisted: 0,
             balance: balance.as_ref(),
             diagnosis: self.diagnosis.as_ref(),
             exposure: &self.exposure,
