@@ -148,7 +148,7 @@ fn elements_stand_in_reading_order() {
     ];
     let pdf = read(&pdf::write(&with(blocks)).unwrap());
     let tags: Vec<String> = elements(&pdf).iter().map(|(_, e)| tag(e)).collect();
-    let expected = "Document H1 P Link L LI Lbl LBody P LI Lbl LBody P H2 Table Caption THead TR TH TH TH TBody TR TD TD TD TR TD TD TD";
+    let expected = "Document Figure H1 P Link L LI Lbl LBody P LI Lbl LBody P H2 Table Caption THead TR TH TH TH TBody TR TD TD TD TR TD TD TD";
     assert_eq!(tags.join(" "), expected);
     let (_, paragraph) = elements(&pdf).into_iter().find(|(_, e)| tag(e) == "P").unwrap();
     let kids = paragraph.get(b"K").unwrap().as_array().unwrap();
@@ -219,6 +219,45 @@ fn text_of_many_scripts_comes_back_as_it_was() {
     let text = pages(&pdf).join(" ");
     for sample in samples {
         assert!(text.contains(sample), "{sample}: {text}");
+    }
+}
+
+#[test]
+fn long_labels_and_captions_keep_all_their_words() {
+    let long = |word: &str| format!("{} end-of-{word}", "many words ".repeat(150));
+    let facts = Block::Facts(vec![("Job".into(), text("1")), (long("label"), text(&long("value")))]);
+    let sign = Block::SignOff(vec![(long("role"), Some(long("name")))]);
+    let photo = |word: &str| CaptionedImage { image: Image { bytes: specimen::png(), alt: "p".into() }, caption: long(word) };
+    let photos = Block::Photos(vec![photo("left"), photo("right")]);
+    let text = pages(&read(&pdf::write(&with(vec![facts, sign, photos])).unwrap())).join(" ");
+    for word in ["label", "value", "role", "name", "left", "right"] {
+        assert!(text.contains(&format!("end-of-{word}")), "{word}: {text}");
+    }
+}
+
+#[test]
+fn every_column_of_a_very_wide_table_stands_on_the_page() {
+    let columns: Vec<Column> = (0..120).map(|i| column(&format!("c{i}"), &format!("H{i}"), None, ColumnKind::Text)).collect();
+    let cells = (0..120).map(|i| words(&format!("v{i}"))).collect();
+    let pdf = read(&pdf::write(&with(vec![Block::Table(Arc::new(table("wide", "Wide", columns, vec![row(cells)])))])).unwrap());
+    for id in pdf.page_iter() {
+        let content = lopdf::content::Content::decode(&pdf.get_page_content(id)).unwrap();
+        for operation in content.operations.iter().filter(|o| o.operator == "Tm") {
+            let x = operation.operands[4].as_float().unwrap();
+            assert!((54.0..558.0).contains(&x), "{x}");
+        }
+    }
+}
+
+#[test]
+fn no_operand_is_other_than_a_number() {
+    let shape = |x: f64| Shape::Line { points: vec![(x, 1.0), (2.0, x)], width: x, colour: Colour::Ink, dash: None, round: false };
+    let drawing = Drawing { width: 100.0, height: 50.0, alt: "a".into(), shapes: vec![shape(f64::NAN), shape(f64::INFINITY), shape(1.0)] };
+    let figure = Block::Figure { caption: vec![], drawing: Arc::new(drawing) };
+    let pdf = read(&pdf::write(&with(vec![figure])).unwrap());
+    for id in pdf.page_iter() {
+        let content = String::from_utf8_lossy(&pdf.get_page_content(id)).into_owned();
+        assert!(!content.contains("NaN") && !content.contains("inf"), "{content}");
     }
 }
 

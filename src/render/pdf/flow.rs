@@ -6,6 +6,7 @@ mod figure;
 mod photo;
 mod table;
 
+use super::super::text::visible;
 use super::shape::{self, Line, Span};
 use super::strip::{Area, Mark, Paint, Rgb, Strip, Target};
 use super::structure::{Attribute, Structure};
@@ -61,7 +62,11 @@ impl<'a> Flow<'a> {
     /// Lays a document out for a width in points.
     pub fn new(document: &'a Document, width: f32) -> Self {
         let mut flow = Self { document, strips: Vec::new(), structure: Structure::new(), headers: Vec::new(), pictures: Vec::new() };
-        flow.blocks(&document.blocks, Place { x: 0.0, width, node: Structure::ROOT, depth: 0 });
+        let place = Place { x: 0.0, width, node: Structure::ROOT, depth: 0 };
+        if let Some(logo) = &document.meta.logo {
+            flow.logo(logo, place);
+        }
+        flow.blocks(&document.blocks, place);
         flow
     }
 
@@ -175,7 +180,7 @@ impl<'a> Flow<'a> {
             if self.strips.len() == first {
                 self.strips.push(Strip { height: BODY * LEADING, ..Strip::default() });
             }
-            let text = start.map_or_else(|| "•".to_owned(), |n| format!("{}.", n + i as u64));
+            let text = start.map_or_else(|| "•".to_owned(), |n| format!("{}.", n.saturating_add(i as u64)));
             self.label(first, &text, place.x, label);
         }
     }
@@ -202,7 +207,7 @@ impl<'a> Flow<'a> {
     fn collect(&self, inlines: &[Inline], style: &Span, spans: &mut Vec<Span>) {
         for inline in inlines {
             match inline {
-                Inline::Text(text) => spans.push(Span { text: text.clone(), ..style.clone() }),
+                Inline::Text(text) => spans.push(Span { text: visible(text).into_owned(), ..style.clone() }),
                 Inline::Break => spans.push(Span { text: "\n".into(), ..style.clone() }),
                 Inline::Strong(inner) => self.collect(inner, &Span { bold: true, ..style.clone() }, spans),
                 Inline::Emphasis(inner) => self.collect(inner, &Span { italic: true, ..style.clone() }, spans),

@@ -110,7 +110,10 @@ impl Filler<'_> {
         self.pages.pages.push(Page::default());
         self.y = TOP;
         self.fresh = true;
-        for header in table.and_then(|t| self.headers.get(t)).into_iter().flatten() {
+        let header = table.and_then(|t| self.headers.get(t)).map_or(&[][..], Vec::as_slice);
+        // A header that would fill the page is not worth repeating.
+        let fits = header.iter().map(|s| s.height).sum::<f32>() < (self.foot() - TOP) / 2.0;
+        for header in header.iter().filter(|_| fits) {
             let mut again = header.clone();
             again.gap = 0.0;
             again.areas.clear();

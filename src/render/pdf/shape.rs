@@ -86,13 +86,13 @@ pub(super) struct Line {
 
 /// Text that has been shaped, not yet broken.
 pub(super) struct Shaped {
-    layout: parley::Layout<u16>,
+    layout: parley::Layout<u32>,
     text: String,
 }
 
 struct Shaper {
     fonts: FontContext,
-    layout: LayoutContext<u16>,
+    layout: LayoutContext<u32>,
     blobs: [u64; 4],
 }
 
@@ -124,7 +124,7 @@ impl Shaper {
         builder.push_default(StyleProperty::LineHeight(LineHeight::FontSizeRelative(1.4)));
         builder.push_default(StyleProperty::OverflowWrap(OverflowWrap::BreakWord));
         let mut at = 0;
-        for (number, span) in (0u16..).zip(spans) {
+        for (number, span) in (0u32..).zip(spans) {
             let range = at..at + span.text.len();
             at = range.end;
             builder.push(StyleProperty::Brush(number), range.clone());
@@ -184,14 +184,14 @@ impl Shaped {
         self.layout.lines().map(|line| self.line(&line, &ids)).collect()
     }
 
-    fn line(&self, line: &parley::Line<'_, u16>, ids: &[u64; 4]) -> Line {
+    fn line(&self, line: &parley::Line<'_, u32>, ids: &[u64; 4]) -> Line {
         let mut out = Line { runs: Vec::new(), width: line.metrics().advance - line.metrics().hanging_advance };
         let mut x = 0.0;
         for run in line.runs() {
             let id = run.font().data.id();
             let face = ids.iter().position(|i| *i == id).unwrap_or(0);
             for cluster in run.visual_clusters() {
-                let span = usize::from(cluster.style().brush);
+                let span = cluster.style().brush as usize;
                 let text = self.text.get(cluster.text_range()).unwrap_or_default();
                 let fits = out.runs.last().is_some_and(|r| r.face == face && r.span == span);
                 if !fits {
@@ -209,7 +209,7 @@ impl Shaped {
 }
 
 /// Adds a cluster's glyphs; a cluster without glyphs (the rest of a ligature, a line end) gives its text to the glyph before it.
-fn add(run: &mut Run, cluster: &parley::Cluster<'_, u16>, text: &str) {
+fn add(run: &mut Run, cluster: &parley::Cluster<'_, u32>, text: &str) {
     let before = run.glyphs.len();
     for glyph in cluster.glyphs() {
         let id = u16::try_from(glyph.id).unwrap_or(0);

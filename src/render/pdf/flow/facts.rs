@@ -12,6 +12,8 @@ const LABEL: f32 = 78.0;
 const GUTTER: f32 = 18.0;
 /// Values this much wider than a column take a row of their own.
 const NARROWEST: f32 = 300.0;
+/// Size of what stands on and below a line to sign on.
+const SIGN_SIZE: f32 = BODY - 0.5;
 /// Height of a line to sign on.
 const SIGN: f32 = 30.0;
 
@@ -45,10 +47,11 @@ impl Flow<'_> {
         let body = self.structure.add(item, "LBody");
         let quiet = [Span::new(label, self.colour(Colour::Quiet))];
         let top = 2.5;
-        if let Some(line) = shape::shape(&quiet, BODY).lines(LABEL * 2.0).into_iter().next() {
-            self.set(strip, line, &quiet, (x, top + baseline(BODY)), label_node);
+        let labels = shape::shape(&quiet, BODY).lines(LABEL - 6.0);
+        let count = lines.len().max(labels.len()).max(1) as f32;
+        for (i, line) in labels.into_iter().enumerate() {
+            self.set(strip, line, &quiet, (x, top + baseline(BODY) + i as f32 * BODY * LEADING), label_node);
         }
-        let count = lines.len().max(1) as f32;
         for (i, line) in lines.into_iter().enumerate() {
             self.set(strip, line, spans, (x + LABEL, top + baseline(BODY) + i as f32 * BODY * LEADING), body);
         }
@@ -59,26 +62,41 @@ impl Flow<'_> {
         strip.marks.push(Mark { node: None, paints: vec![rule] });
     }
 
-    /// Lines with their labels below, two abreast.
+    /// Lines with their labels below, two abreast; what is known stands on the line.
     pub(super) fn sign_off(&mut self, lines: &[(String, Option<String>)], place: Place) {
         let list = self.structure.add(place.node, "L");
         let half = (place.width - GUTTER) / 2.0;
         let rows = lines.chunks(2).count();
         for (r, pair) in lines.chunks(2).enumerate() {
-            let mut strip = Strip { height: SIGN + BODY * LEADING, gap: 4.0, keep: r + 1 < rows, ..Strip::default() };
-            for (i, (label, known)) in pair.iter().enumerate() {
+            let mut strip = Strip { gap: 4.0, keep: r + 1 < rows, ..Strip::default() };
+            let quiet: Vec<Span> = pair.iter().map(|(label, _)| Span::new(label, self.colour(Colour::Quiet))).collect();
+            let known: Vec<Span> = pair.iter().map(|(_, known)| Span::new(known.as_deref().unwrap_or_default(), self.ink())).collect();
+            let broken = |span: &Span| shape::shape(std::slice::from_ref(span), SIGN_SIZE).lines(half);
+            let values: Vec<Vec<Line>> = known.iter().map(broken).collect();
+            let pitch = SIGN_SIZE * LEADING;
+            // The line to sign on stands below the longest of what is known.
+            let sign = SIGN.max(values.iter().map(Vec::len).max().unwrap_or(0) as f32 * pitch + 8.0);
+            for (i, value) in values.into_iter().enumerate() {
                 let x = place.x + i as f32 * (half + GUTTER);
                 let item = self.structure.add(list, "LI");
                 let (label_node, body) = (self.structure.add(item, "Lbl"), self.structure.add(item, "LBody"));
-                let quiet = [Span::new(label, self.colour(Colour::Quiet))];
-                let value = [Span::new(known.as_deref().unwrap_or_default(), self.ink())];
-                for (spans, y, node) in [(&quiet, SIGN + baseline(BODY) - 1.0, label_node), (&value, SIGN - 5.0, body)] {
-                    if let Some(line) = shape::shape(spans, BODY - 0.5).lines(half).into_iter().next() {
-                        self.set(&mut strip, line, spans, (x, y), node);
-                    }
+                let first = sign - 5.0 - (value.len().max(1) - 1) as f32 * pitch;
+                for (n, line) in value.into_iter().enumerate() {
+                    self.set(&mut strip, line, std::slice::from_ref(&known[i]), (x, first + n as f32 * pitch), body);
+                }
+                let labels = broken(&quiet[i]);
+                strip.height = strip.height.max(sign + labels.len().max(1) as f32 * pitch);
+                for (n, line) in labels.into_iter().enumerate() {
+                    self.set(
+                        &mut strip,
+                        line,
+                        std::slice::from_ref(&quiet[i]),
+                        (x, sign + baseline(BODY) - 1.0 + n as f32 * pitch),
+                        label_node,
+                    );
                 }
                 let rule =
-                    Paint::Line { points: vec![(x, SIGN), (x + half, SIGN)], width: 0.6, colour: self.ink(), dash: None, round: false };
+                    Paint::Line { points: vec![(x, sign), (x + half, sign)], width: 0.6, colour: self.ink(), dash: None, round: false };
                 strip.marks.push(Mark { node: None, paints: vec![rule] });
             }
             self.strips.push(strip);

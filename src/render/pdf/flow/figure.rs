@@ -10,6 +10,8 @@ use std::sync::Arc;
 
 /// Tallest figure in points; a taller one is scaled down.
 const TALLEST: f32 = 600.0;
+/// Farthest a shape may reach, in points: what is beyond is no drawing.
+const FARTHEST: f64 = 1e5;
 /// Size of captions.
 const CAPTION: f32 = 8.5;
 
@@ -24,7 +26,7 @@ impl Flow<'_> {
         let node = self.structure.add(place.node, "Figure");
         self.structure.nodes[node].alt = Some(drawing.alt.clone());
         self.structure.nodes[node].attribute = Attribute::Box((place.x, 0.0, width * scale, height * scale));
-        let paints = drawing.shapes.iter().flat_map(|s| self.paints(s, scale, place.x)).collect();
+        let paints = drawing.shapes.iter().filter(|s| is_finite(s)).flat_map(|s| self.paints(s, scale, place.x)).collect();
         let marks = vec![Mark { node: Some(node), paints }];
         self.strips.push(Strip { height: height * scale, gap: 8.0, keep: !caption.is_empty(), marks, ..Strip::default() });
         self.caption(caption, Place { node, ..place });
@@ -78,5 +80,19 @@ impl Flow<'_> {
                 line.runs.into_iter().map(|run| Paint::Text { x: x + run.x, y, run: Arc::new(run), colour: span.colour }).collect()
             }
         }
+    }
+}
+
+/// All its numbers are near; a shape that is nowhere is left out.
+fn is_finite(shape: &Shape) -> bool {
+    let near = |v: f64| v.abs() < FARTHEST;
+    let all = |points: &[(f64, f64)]| points.iter().all(|(x, y)| near(*x) && near(*y));
+    let thin = |stroke: &Option<(f64, Colour)>| stroke.is_none_or(|(w, _)| near(w));
+    match shape {
+        Shape::Line { points, width, dash, .. } => all(points) && near(*width) && dash.is_none_or(|(d, g)| near(d) && near(g)),
+        Shape::Rect { x, y, width, height, radius, .. } => [x, y, width, height, radius].into_iter().all(|v| near(*v)),
+        Shape::Polygon { points, stroke, .. } => all(points) && thin(stroke),
+        Shape::Circle { centre, radius, stroke, .. } => all(&[*centre]) && near(*radius) && thin(stroke),
+        Shape::Text { at, size, .. } => all(&[*at]) && near(*size),
     }
 }

@@ -1,10 +1,10 @@
 //! Photos: JPEG passed through as it is, PNG decoded, two abreast with their captions.
 
-use super::super::shape::{self, Span};
+use super::super::shape::{self, Line, Span};
 use super::super::strip::{Mark, Paint, Strip, rectangle};
 use super::super::structure::Attribute;
 use super::{Flow, Place, baseline};
-use crate::report::document::CaptionedImage;
+use crate::report::document::{CaptionedImage, Image};
 use crate::report::drawing::Colour;
 use std::sync::Arc;
 
@@ -14,6 +14,8 @@ const GUTTER: f32 = 14.0;
 const TALLEST: f32 = 230.0;
 /// Size of captions.
 const CAPTION: f32 = 8.5;
+/// Height of a logo.
+const LOGO: f32 = 38.0;
 /// Most pixels of a photo.
 const MOST_PIXELS: u64 = 60_000_000;
 
@@ -94,6 +96,24 @@ fn orientation(bytes: &[u8]) -> u8 {
 }
 
 impl Flow<'_> {
+    /// The company's logo above everything else.
+    pub(super) fn logo(&mut self, logo: &Image, place: Place) {
+        let Some(picture) = Picture::of(&logo.bytes) else { return };
+        let height = LOGO.min(place.width / picture.aspect().max(0.01));
+        let width = height * picture.aspect();
+        let node = self.structure.add(place.node, "Figure");
+        self.structure.nodes[node].alt = Some(logo.alt.clone());
+        self.structure.nodes[node].attribute = Attribute::Box((place.x, 0.0, width, height));
+        self.pictures.push(picture);
+        let paint = Paint::Image { x: place.x, y: 0.0, width, height, image: self.pictures.len() - 1 };
+        self.strips.push(Strip {
+            height: height + 8.0,
+            keep: true,
+            marks: vec![Mark { node: Some(node), paints: vec![paint] }],
+            ..Strip::default()
+        });
+    }
+
     /// Photos in rows of two.
     pub(super) fn photos(&mut self, photos: &[CaptionedImage], place: Place) {
         let half = (place.width - GUTTER) / 2.0;
@@ -102,12 +122,34 @@ impl Flow<'_> {
             let fitted: Vec<(f32, f32)> = pictures.iter().map(|p| p.as_ref().map_or((half, 40.0), |p| fit(p.aspect(), half))).collect();
             let height = fitted.iter().map(|f| f.1).fold(0.0, f32::max);
             let mut strip = Strip { height, gap: 9.0, ..Strip::default() };
+            let mut captions = Vec::new();
             for (i, (photo, picture)) in row.iter().zip(pictures).enumerate() {
                 let x = place.x + i as f32 * (half + GUTTER);
-                self.photo(&mut strip, photo, picture, (x, height, half, fitted[i]), place.node);
+                let node = self.photo(&mut strip, photo, picture, (x, height, fitted[i]), place.node);
+                let caption = self.structure.add(node, "Caption");
+                let spans = [Span::new(&photo.caption, self.colour(Colour::Quiet))];
+                captions.push((x, shape::shape(&spans, CAPTION).lines(half), spans, caption));
             }
             self.strips.push(strip);
+            self.captions(captions);
         }
+    }
+
+    /// Captions side by side, a strip a line, so that a long one goes on over the page.
+    fn captions(&mut self, captions: Vec<(f32, Vec<Line>, [Span; 1], usize)>) {
+        let count = captions.iter().map(|c| c.1.len()).max().unwrap_or(0);
+        if count > 0
+            && let Some(above) = self.strips.last_mut()
+        {
+            above.keep = true;
+        }
+        let mut strips: Vec<Strip> = (0..count).map(|_| Strip { height: CAPTION * 1.35, ..Strip::default() }).collect();
+        for (x, lines, spans, node) in captions {
+            for (strip, line) in strips.iter_mut().zip(lines) {
+                self.set(strip, line, &spans, (x, 2.0 + baseline(CAPTION)), node);
+            }
+        }
+        self.strips.extend(strips);
     }
 
     fn photo(
@@ -115,9 +157,9 @@ impl Flow<'_> {
         strip: &mut Strip,
         photo: &CaptionedImage,
         picture: Option<Picture>,
-        (x, base, room, (w, h)): (f32, f32, f32, (f32, f32)),
+        (x, base, (w, h)): (f32, f32, (f32, f32)),
         parent: usize,
-    ) {
+    ) -> usize {
         let node = self.structure.add(parent, "Figure");
         self.structure.nodes[node].alt = Some(photo.image.alt.clone());
         self.structure.nodes[node].attribute = Attribute::Box((x, base - h, w, h));
@@ -132,14 +174,7 @@ impl Flow<'_> {
             }
         };
         strip.marks.push(Mark { node: Some(node), paints: vec![paint] });
-        let caption = self.structure.add(node, "Caption");
-        let spans = [Span::new(&photo.caption, self.colour(Colour::Quiet))];
-        let mut y = base + 3.0;
-        for line in shape::shape(&spans, CAPTION).lines(room) {
-            self.set(strip, line, &spans, (x, y + baseline(CAPTION)), caption);
-            y += CAPTION * 1.35;
-        }
-        strip.height = strip.height.max(y);
+        node
     }
 }
 

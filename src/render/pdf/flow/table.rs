@@ -10,7 +10,7 @@ use super::{Flow, LEADING, Place, baseline};
 use crate::report::document::{Inline, Row, Table};
 use crate::report::drawing::Colour;
 use cell::{Content, Entry};
-use columns::{BASE, Columns, PADDING};
+use columns::{BASE, Columns};
 
 /// Above and below the text of a row.
 const AIR: f32 = 2.6;
@@ -133,7 +133,7 @@ impl Flow<'_> {
     fn place(&self, entry: Entry, grid: &Grid, column: usize, width: f32) -> (Vec<Line>, Vec<Span>, f32) {
         let k = grid.columns.scale;
         // A hair more than the widths say, so that rounding breaks no line.
-        let room = (width - PADDING + 0.05).max(1.0) / k;
+        let room = (width - grid.columns.padding + 0.05).max(1.0) / k;
         match entry.content {
             Content::Empty => (Vec::new(), Vec::new(), 0.0),
             Content::Text(shaped) => (shaped.lines(room).into_iter().map(|l| scaled(l, k)).collect(), entry.spans, 0.0),
@@ -144,7 +144,7 @@ impl Flow<'_> {
             }
             Content::Number { shaped, whole } => {
                 let right = grid.columns.behind.get(column).copied().unwrap_or(0.0) * k;
-                let shift = (width - PADDING - right - whole * k).max(0.0);
+                let shift = (width - grid.columns.padding - right - whole * k).max(0.0);
                 (shaped.lines(f32::MAX).into_iter().map(|l| scaled(l, k)).collect(), entry.spans, shift)
             }
         }

@@ -1,5 +1,6 @@
 //! What stands in a cell, shaped at the base size.
 
+use super::super::super::super::text::visible;
 use super::super::super::shape::{self, Shaped, Span};
 use super::super::Flow;
 use super::columns::BASE;
@@ -70,7 +71,7 @@ impl Flow<'_> {
         let ink = self.ink();
         match cell {
             Cell::Empty => Entry { spans: Vec::new(), content: Content::Empty, widths: (0.0, 0.0) },
-            Cell::Text(text) => Entry::text(vec![Span { bold: group, ..Span::new(text, ink) }], false),
+            Cell::Text(text) => Entry::text(vec![Span { bold: group, ..Span::new(&visible(text), ink) }], false),
             Cell::Rich(inlines) => Entry::text(self.spans(inlines, ink), false),
             Cell::Signal(signal) => Entry::text(self.signal(*signal).to_vec(), false),
             Cell::Verdict(verdict) => Entry::text(vec![Span { bold: *verdict == Verdict::Fail, ..Span::new(verdict.name(), ink) }], false),

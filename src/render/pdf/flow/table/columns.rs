@@ -8,7 +8,7 @@ pub(super) const BASE: f32 = 8.3;
 /// Smallest size by the base one.
 const SMALLEST: f32 = 0.72;
 /// Room at the right of each cell.
-pub(super) const PADDING: f32 = 8.0;
+const PADDING: f32 = 8.0;
 /// A column of text is given at least this much, where there is room.
 const TEXT: f32 = 60.0;
 
@@ -20,6 +20,8 @@ pub(super) struct Columns {
     pub behind: Vec<f32>,
     /// Size of type by the base size.
     pub scale: f32,
+    /// Room at the right of each cell.
+    pub padding: f32,
 }
 
 impl Columns {
@@ -54,7 +56,9 @@ impl Columns {
     }
 
     fn share(table: &Table, least: &[f32], most: &[f32], behind: Vec<f32>, room: f32) -> Self {
-        let inner = (room - PADDING * least.len() as f32).max(1.0);
+        // Very many columns share the room with less between them.
+        let padding = PADDING.min(room * 0.3 / least.len().max(1) as f32);
+        let inner = (room - padding * least.len() as f32).max(1.0);
         let wish: Vec<f32> = table
             .columns
             .iter()
@@ -68,18 +72,18 @@ impl Columns {
         let used: f32 = start.iter().sum::<f32>() * scale;
         let widths: Vec<f32> = if used > inner {
             // Not even the words fit: each column gives the same share, and long words are divided.
-            start.iter().map(|w| w * scale * inner / used + PADDING).collect()
+            start.iter().map(|w| w * scale * inner / used + padding).collect()
         } else {
             let wants: Vec<f32> = start.iter().zip(most).map(|(s, m)| ((m - s) * scale).max(0.0)).collect();
             let wanted: f32 = wants.iter().sum();
             let share = if wanted > 0.0 { ((inner - used) / wanted).min(1.0) } else { 0.0 };
-            start.iter().zip(&wants).map(|(s, w)| s * scale + w * share + PADDING).collect()
+            start.iter().zip(&wants).map(|(s, w)| s * scale + w * share + padding).collect()
         };
-        Self { widths, behind, scale }
+        Self { widths, behind, scale, padding }
     }
 
     /// Width of the table without the padding of its last column.
     pub fn total(&self) -> f32 {
-        self.widths.iter().sum::<f32>() - PADDING
+        self.widths.iter().sum::<f32>() - self.padding
     }
 }
