@@ -195,6 +195,14 @@ fn a_repair_that_was_not_read_is_not_shown() {
 }
 
 #[test]
+fn an_instrument_without_a_gain_error_is_taken_too() {
+    let mut site = sites().remove(0);
+    site["volts"][0] = json!(0);
+    let (visit, found) = of(&site);
+    assert_eq!(named(&visit, &found.ranking[0].runs), ["SVC"]);
+}
+
+#[test]
 fn without_a_circuit_list_or_readings_there_is_no_diagnosis() {
     let settings = DiagnosisSettings::default();
     let mut visit = site::visit(&sites()[0]);

@@ -10,6 +10,9 @@ use crate::visit::{Accuracy, Leg, Quantity, ReadingRow, Stage, Visit};
 /// Volts or amperes from which a difference of two readings shows a sign.
 const SHOWS: f64 = 1.0;
 
+/// No instrument is better than that, whatever its sheet says.
+const LEAST_GAIN: f64 = 1e-4;
+
 /// One reading as the fit sees it.
 #[derive(Clone, Debug)]
 pub(super) struct Observation {
@@ -140,7 +143,7 @@ impl Observations {
         let at = at.or(Some(visit.instruments.len() + usize::from(!quantity.is_voltage())));
         known.iter().position(|k| *k == at).unwrap_or_else(|| {
             known.push(at);
-            self.gains.push(accuracy.gain(1.0));
+            self.gains.push(accuracy.gain(1.0).abs().max(LEAST_GAIN));
             known.len() - 1
         })
     }
