@@ -26,6 +26,7 @@ mod switched;
 
 pub use settings::DiagnosisSettings;
 
+use crate::diag::CellRef;
 use crate::network;
 use crate::quantity::Ohms;
 use crate::results::{Cause, CauseKind, Diagnosis, NeutralInterval};
@@ -51,7 +52,7 @@ pub fn diagnose(visit: &Visit, settings: &DiagnosisSettings) -> Option<Diagnosis
     });
     let ends: Vec<(usize, Ends)> = found.neutral.iter().map(|n| (n.run, (n.low.0, n.high.map(|h| h.0)))).collect();
     let next = next_reading::propose(visit, settings, &found.ranking, &ends);
-    Some(Diagnosis { ranking: found.ranking, neutral: found.neutral, next, load_steps: network::load_steps(visit), repair })
+    Some(Diagnosis { ranking: found.ranking, neutral: found.neutral, next, load_steps: network::load_steps(visit), repair, left_out: found.left_out })
 }
 
 /// What one stage's readings say.
@@ -60,6 +61,8 @@ struct Examined {
     neutral: Vec<NeutralInterval>,
     /// Interval of the resistance that was asked about.
     asked: Option<Ends>,
+    /// Readings the fit did not use.
+    left_out: Vec<CellRef>,
 }
 
 /// Examines one stage; `about` is a cause whose resistance is to be bounded whatever the readings say.
@@ -75,7 +78,12 @@ fn examine(visit: &Visit, stage: Stage, settings: &DiagnosisSettings, about: Opt
         let ranked = rank(visit, &levels);
         match wider(&view, &mut levels, &ranked) {
             Some(next) => view = next,
-            None => return conclude(visit, &sites.first()?.1, &mut levels, ranked, about),
+            None => {
+                let left_out = sites.first()?.1.left_out(visit, &view);
+                let mut examined = conclude(visit, &sites.first()?.1, &mut levels, ranked, about)?;
+                examined.left_out = left_out;
+                return Some(examined);
+            }
         }
     }
 }
@@ -117,7 +125,7 @@ fn conclude(visit: &Visit, site: &Site, levels: &mut [Level], mut ranked: Vec<We
     let mut bounds = interval::Bounds::new(levels, &ranked)?;
     let ends = bounds.neutrals();
     let asked = about.and_then(|cause| bounds.of(cause));
-    Some(Examined { neutral: neutral_intervals(visit, site, &ends), ranking: listed(ranked), asked })
+    Some(Examined { neutral: neutral_intervals(visit, site, &ends), ranking: listed(ranked), asked, left_out: Vec::new() })
 }
 
 /// Causes below this probability are left out of the ranking, and what they had is shared out.

@@ -60,8 +60,10 @@ pub struct Checked {
     pub visit: Visit,
     /// What could not be used, or only with a remark.
     pub problems: Vec<Problem>,
-    /// What the rules found, with what passed.
+    /// What the rules found, with what passed, as far as there is room for it.
     pub findings: Vec<Finding>,
+    /// Comparisons that passed and are not among the findings.
+    pub passed_unlisted: usize,
     /// Load of the legs, where the circuit list gives one.
     pub balance: Option<Balance>,
     /// Ranking of causes, where the readings were fitted to the network.
@@ -77,6 +79,9 @@ impl Checked {
         self.findings.iter().filter(|f| f.verdict != Verdict::Pass).map(|f| f.signal).max()
     }
 }
+
+/// Findings that passed are kept up to this number (some 50 MB); a workbook of a hundred thousand readings has millions.
+const MOST_PASSED: usize = 50_000;
 
 /// SHA-256 of an input in hexadecimal; of a folder, over the names and contents of its files in order of name.
 #[must_use]
@@ -110,8 +115,8 @@ pub fn check(input: &Input, beside: &dyn Beside, settings: &Settings) -> Result<
     let diagnosis = diagnosis::diagnose(&visit, &settings.diagnosis);
     let exposure = network::exposure(&visit, &settings.network);
     let facts = Facts { visit: &visit, balance: balance.as_ref(), diagnosis: diagnosis.as_ref(), exposure: &exposure };
-    let findings = rules::check(&facts, &settings.rulebook);
-    Ok(Checked { file: input.name.to_owned(), sha256, visit, problems: read.problems, findings, balance, diagnosis, exposure })
+    let (findings, passed_unlisted) = rules::check_within(&facts, &settings.rulebook, MOST_PASSED);
+    Ok(Checked { file: input.name.to_owned(), sha256, visit, problems: read.problems, findings, passed_unlisted, balance, diagnosis, exposure })
 }
 
 /// How a report is to look.
@@ -142,6 +147,7 @@ pub fn document(checked: &Checked, settings: &Settings, options: &ReportOptions)
         visit: &checked.visit,
         problems: &checked.problems,
         findings: &checked.findings,
+        passed_unlisted: checked.passed_unlisted,
         balance: checked.balance.as_ref(),
         diagnosis: checked.diagnosis.as_ref(),
         exposure: &checked.exposure,

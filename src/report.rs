@@ -40,6 +40,8 @@ pub struct Source<'a> {
     pub problems: &'a [Problem],
     /// Findings, passes included, in the order of the rules.
     pub findings: &'a [Finding],
+    /// Comparisons that passed and are not among the findings.
+    pub passed_unlisted: usize,
     /// Load of the legs.
     pub balance: Option<&'a Balance>,
     /// Ranking of causes.
@@ -120,6 +122,7 @@ pub fn build(source: &Source, options: &Options) -> Result<Document, TemplateErr
     let tables = tables::build(source, language);
     let figures = figures::build(source, language, options.measure, options.page.text_width());
     let places = Places {
+        language,
         figures: figures.into_iter().map(|f| (f.name, f.caption, f.drawing)).collect(),
         facts: facts::all(source, language, date.as_deref()),
         photos: facts::photos(source),

@@ -117,18 +117,29 @@ impl<'a> Settings<'a> {
 /// signal word first; then the order of the rules; then that of the workbook.
 #[must_use]
 pub fn check(facts: &Facts, book: &Rulebook) -> Vec<Finding> {
+    check_within(facts, book, usize::MAX).0
+}
+
+/// As [`check`], but keeps no more than so many that passed, the first ones; the second value counts those that were not kept.
+/// What failed or is undecided is always kept.
+#[must_use]
+pub fn check_within(facts: &Facts, book: &Rulebook, most_passed: usize) -> (Vec<Finding>, usize) {
     let mut all: Vec<Finding> = Vec::new();
+    let (mut room, mut unlisted) = (most_passed, 0);
     for rule in RULES {
         if let Some(entry) = book.rule(rule.spec.id).filter(|entry| entry.enabled) {
             let settings = Settings::new(book, entry);
-            let mut findings = Findings::new(&settings);
+            let mut findings = Findings::new(&settings, room);
             (rule.run)(facts, &settings, &mut findings);
-            all.extend(findings.into_vec());
+            let (kept, left, more) = findings.finish();
+            all.extend(kept);
+            room = left;
+            unlisted += more;
         }
     }
     // The sort is stable: rules and rows keep their order.
     all.sort_by_key(|f| (rank(f.verdict), Reverse(f.signal)));
-    all
+    (all, unlisted)
 }
 
 fn rank(verdict: Verdict) -> u8 {

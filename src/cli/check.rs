@@ -114,7 +114,7 @@ fn print(out: &mut impl Write, checked: &Checked, settings: &Settings, all: bool
         "{file}: {worst}; {} failed, {} undecided, {} passed; {} cells named\n",
         count(Verdict::Fail),
         count(Verdict::Undecided),
-        count(Verdict::Pass),
+        count(Verdict::Pass) + checked.passed_unlisted,
         checked.problems.len()
     )
 }

@@ -25,11 +25,16 @@ pub(super) fn ends(curve: &[(f64, f64)], at_zero: f64) -> Ends {
     let points: Vec<(f64, f64)> = std::iter::once((0.0, at_zero)).chain(curve.iter().copied()).collect();
     let first = points.iter().position(|p| inside(p.1)).unwrap_or(0);
     let last = points.iter().rposition(|p| inside(p.1)).unwrap_or(0);
-    let low = if first == 0 { 0.0 } else { crossing(points[first - 1], points[first], floor) };
+    let low = match first.checked_sub(1) {
+        None => 0.0,
+        // Open alone: all that was tried below is excluded.
+        Some(below) if points[first].0 >= OPEN => points[below].0,
+        Some(below) => crossing(points[below], points[first], floor),
+    };
     let high = match points.get(last + 1) {
         _ if points[last].0 >= OPEN => None,
         None => None,
-        Some(next) if next.0 >= OPEN && points[last].0 > 50.0 => None,
+        Some(next) if next.0 >= OPEN => None,
         Some(next) => Some(crossing(points[last], *next, floor)),
     };
     (low, high)

@@ -8,7 +8,8 @@ use super::switched::Switched;
 use crate::diag::CellRef;
 use crate::network::SLOTS;
 use crate::quantity::math;
-use crate::visit::{Between, Conductor, Leg, Stage, Visit};
+use crate::visit::{Between, Conductor, Leg, ReadingRow, Stage, Visit};
+use std::collections::HashSet;
 
 /// What is looked at, and how widely.
 #[derive(Clone, Debug)]
@@ -64,6 +65,15 @@ impl Site {
 }
 
 impl Site {
+    /// Readings of the stage that could be fitted and are not: left out of the view, or of rows there was no room for.
+    pub fn left_out(&self, visit: &Visit, view: &View) -> Vec<CellRef> {
+        let used: HashSet<usize> = usable_rows(visit, view.stage).iter().map(|r| std::ptr::from_ref(*r).addr()).collect();
+        let is_fed = |row: &&ReadingRow| row.run.is_some_and(|r| self.reduced.attached.get(r).is_some_and(Option::is_some));
+        let spare = visit.rows.iter().filter(|r| r.stage == view.stage && !used.contains(&std::ptr::from_ref(*r).addr())).filter(is_fed);
+        let spare = spare.flat_map(|r| r.readings.iter().filter(|x| x.value.value().is_some())).map(|x| x.cell.clone());
+        view.without.iter().cloned().chain(spare).collect()
+    }
+
     /// Amperes in the neutral of a run by the watts of the circuit list alone, none where the list is silent.
     pub fn listed_neutral_amperes(&self, run: usize) -> f64 {
         self.listed.get(run).copied().unwrap_or_default()

@@ -27,6 +27,8 @@ pub fn document(checked: &Checked, language: &Language, all: bool) -> Value {
         "readings": visit.rows.iter().flat_map(|row| readings(visit, row)).collect::<Vec<_>>(),
         "circuits": visit.runs.iter().map(circuit).collect::<Vec<_>>(),
         "findings": findings,
+        // Comparisons that passed and are not listed even with `--all`: there are more than anyone could read.
+        "passed_unlisted": checked.passed_unlisted,
         "diagnosis": checked.diagnosis.as_ref().map(|d| diagnosis::diagnosis(d, visit, language)),
         "exposure": checked.exposure.iter().map(|e| diagnosis::exposure(e, visit)).collect::<Vec<_>>(),
         "balance": checked.balance.as_ref().map(|b| balance(b, visit)),

@@ -18,6 +18,8 @@ pub struct Diagnosis {
     pub load_steps: Vec<LoadStep>,
     /// As left against as found, where there are both.
     pub repair: Option<RepairEvidence>,
+    /// Readings the fit did not use: those with which nothing would explain the others, and what was too much of a very long sheet.
+    pub left_out: Vec<CellRef>,
 }
 
 /// One cause and how probable it is.

@@ -17,10 +17,14 @@ pub struct Findings<'a> {
     user_basis: bool,
     coverage: f64,
     items: Vec<Finding>,
+    /// How many more that passed are kept.
+    room: usize,
+    /// Those that passed and were not kept.
+    unlisted: usize,
 }
 
 impl<'a> Findings<'a> {
-    pub(super) fn new(settings: &Settings<'a>) -> Self {
+    pub(super) fn new(settings: &Settings<'a>, room: usize) -> Self {
         let entry = settings.entry;
         Self {
             rule: entry.spec.id,
@@ -30,11 +34,14 @@ impl<'a> Findings<'a> {
             user_basis: entry.basis.is_some(),
             coverage: settings.coverage,
             items: Vec::new(),
+            room,
+            unlisted: 0,
         }
     }
 
-    pub(super) fn into_vec(self) -> Vec<Finding> {
-        self.items
+    /// What was kept, how many more that passed could be, and how many were not.
+    pub(super) fn finish(self) -> (Vec<Finding>, usize, usize) {
+        (self.items, self.room, self.unlisted)
     }
 
     /// A finding with the rule's own signal word.
@@ -96,8 +103,15 @@ impl<'a> Findings<'a> {
         self.coverage * standard
     }
 
-    /// Takes a finding.
+    /// Takes a finding; one that passed is only counted once there is no more room for such.
     pub fn push(&mut self, finding: Finding) {
+        if finding.verdict == Verdict::Pass {
+            if self.room == 0 {
+                self.unlisted += 1;
+                return;
+            }
+            self.room -= 1;
+        }
         self.items.push(finding);
     }
 }

@@ -155,7 +155,7 @@ impl House {
     /// A cause of the ranking; the first is the answer.
     pub fn cause(mut self, kind: CauseKind, runs: &[&str], probability: f64) -> Self {
         let runs = runs.iter().map(|r| self.visit.run_named(r).unwrap()).collect();
-        let empty = Diagnosis { ranking: Vec::new(), neutral: Vec::new(), next: Vec::new(), load_steps: Vec::new(), repair: None };
+        let empty = Diagnosis { ranking: Vec::new(), neutral: Vec::new(), next: Vec::new(), load_steps: Vec::new(), repair: None, left_out: Vec::new() };
         self.diagnosis.get_or_insert(empty).ranking.push(Cause { kind, runs, probability, ohms: None });
         self
     }
@@ -187,6 +187,7 @@ impl House {
             visit: &self.visit,
             problems: &[],
             findings: &findings,
+            passed_unlisted: 0,
             balance: balance.as_ref(),
             diagnosis: self.diagnosis.as_ref(),
             exposure: &self.exposure,

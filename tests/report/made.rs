@@ -132,6 +132,7 @@ impl Made {
             visit: &self.fixture.visit,
             problems: &self.problems,
             findings: &findings,
+            passed_unlisted: 0,
             balance: self.fixture.balance.as_ref(),
             diagnosis: self.fixture.diagnosis.as_ref(),
             exposure: &self.fixture.exposure,

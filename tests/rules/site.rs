@@ -520,6 +520,7 @@ impl RawDiagnosis {
                 .collect(),
             load_steps: Vec::new(),
             repair,
+            left_out: Vec::new(),
         }
     }
 }

@@ -20,6 +20,7 @@ pub fn diagnosis(d: &Diagnosis, visit: &Visit, language: &Language) -> Value {
     object.insert("next_readings".into(), d.next.iter().map(|n| next(n, visit, language)).collect());
     object.insert("load_steps".into(), d.load_steps.iter().map(|s| load_step(s, visit)).collect());
     object.insert("repair".into(), d.repair.as_ref().map(|r| repair(r, visit)).into());
+    object.insert("left_out".into(), d.left_out.iter().map(ToString::to_string).collect());
     Value::Object(object)
 }
 

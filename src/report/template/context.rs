@@ -145,7 +145,7 @@ fn counts(source: &Source, standing: &[&Finding], shown: usize) -> BTreeMap<&'st
         ("failed", standing.len() - undecided),
         ("undecided", undecided),
         ("mended", shown - standing.len()),
-        ("passed", source.findings.len() - shown),
+        ("passed", source.findings.len() - shown + source.passed_unlisted),
         ("readings", source.visit.rows.iter().map(|r| r.readings.len()).sum()),
         ("locations", locations.len()),
         ("circuits", source.visit.runs.len()),

@@ -58,7 +58,7 @@ impl Frame {
 }
 
 struct Builder<'a> {
-    places: &'a Places,
+    places: &'a Places<'a>,
     stack: Vec<Frame>,
     anchors: HashSet<String>,
     /// The image being read: target and caption so far.

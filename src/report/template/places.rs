@@ -1,10 +1,14 @@
 //! What a template can place: tables, figures, facts, photos, a sign-off.
 
-use crate::report::document::{Block, CaptionedImage, Inline, Table};
+use crate::report::document::{Block, CaptionedImage, Cell, Inline, Row, Table};
 use crate::report::drawing::Drawing;
 use crate::report::tables;
 use crate::results::Signal;
+use crate::wording::{Language, Sentence};
 use std::sync::Arc;
+
+/// Rows of a table in the text; the XLSX has all of them.
+const MOST_ROWS: usize = 400;
 
 /// Kinds of place, each with the names it knows; a kind without names stands alone.
 pub(in crate::report) fn known(scheme: &str) -> Option<Vec<&'static str>> {
@@ -26,7 +30,9 @@ pub(in crate::report) const FIGURES: [&str; 4] = ["neutral-position", "run-tree"
 const FACTS: [&str; 3] = ["site", "service", "document"];
 
 /// Computed things by name.
-pub(in crate::report) struct Places {
+pub(in crate::report) struct Places<'a> {
+    /// The words.
+    pub language: &'a Language,
     /// Tables that have rows.
     pub tables: Vec<Arc<Table>>,
     /// Figures with their captions; a name may stand for several.
@@ -39,11 +45,30 @@ pub(in crate::report) struct Places {
     pub sign_off: Vec<(String, Option<String>)>,
 }
 
-impl Places {
+impl Places<'_> {
+    /// The table as it stands in the text: the same that the XLSX has where the caption stays and it is not too long. A longer one
+    /// is cut, and its last row says so.
+    fn shown(&self, table: &Arc<Table>, caption: &str) -> Arc<Table> {
+        let more = table.rows.len().saturating_sub(MOST_ROWS);
+        if caption.is_empty() && more == 0 {
+            return Arc::clone(table);
+        }
+        let mut rows = table.rows[..table.rows.len() - more].to_vec();
+        if more > 0 {
+            let mut cells = vec![Cell::Empty; table.columns.len()];
+            if let Some(first) = cells.first_mut() {
+                *first = Cell::Text(self.language.say(&Sentence::new("report.more-rows").with("n", more)));
+            }
+            rows.push(Row { cells, group: true });
+        }
+        let caption = if caption.is_empty() { table.caption.clone() } else { caption.to_owned() };
+        Arc::new(Table { name: table.name.clone(), caption, columns: table.columns.clone(), rows, when_empty: table.when_empty.clone() })
+    }
+
     /// The blocks of a place; none where there is nothing of that name.
     pub(super) fn at(&self, scheme: &str, name: &str, caption: &str) -> Vec<Block> {
         match scheme {
-            "table" => self.tables.iter().filter(|t| t.name == name).map(|t| Block::Table(captioned(t, caption))).collect(),
+            "table" => self.tables.iter().filter(|t| t.name == name).map(|t| Block::Table(self.shown(t, caption))).collect(),
             "figure" => self.figures.iter().filter(|f| f.0 == name).map(|f| figure(f, caption)).collect(),
             "facts" => self.facts.iter().filter(|f| f.0 == name && !f.1.is_empty()).map(|f| facts(&f.1)).collect(),
             "photos" if !self.photos.is_empty() => vec![Block::Photos(self.photos.clone())],
@@ -51,11 +76,6 @@ impl Places {
             _ => Vec::new(),
         }
     }
-}
-
-/// The table itself where the caption stays, so that all renderers share it.
-fn captioned(table: &Arc<Table>, caption: &str) -> Arc<Table> {
-    if caption.is_empty() { Arc::clone(table) } else { Arc::new(Table { caption: caption.to_owned(), ..(**table).clone() }) }
 }
 
 fn figure(figure: &(&'static str, String, Arc<Drawing>), caption: &str) -> Block {
