@@ -52,7 +52,14 @@ pub fn diagnose(visit: &Visit, settings: &DiagnosisSettings) -> Option<Diagnosis
     });
     let ends: Vec<(usize, Ends)> = found.neutral.iter().map(|n| (n.run, (n.low.0, n.high.map(|h| h.0)))).collect();
     let next = next_reading::propose(visit, settings, &found.ranking, &ends);
-    Some(Diagnosis { ranking: found.ranking, neutral: found.neutral, next, load_steps: network::load_steps(visit), repair, left_out: found.left_out })
+    Some(Diagnosis {
+        ranking: found.ranking,
+        neutral: found.neutral,
+        next,
+        load_steps: network::load_steps(visit),
+        repair,
+        left_out: found.left_out,
+    })
 }
 
 /// What one stage's readings say.

@@ -116,7 +116,17 @@ pub fn check(input: &Input, beside: &dyn Beside, settings: &Settings) -> Result<
     let exposure = network::exposure(&visit, &settings.network);
     let facts = Facts { visit: &visit, balance: balance.as_ref(), diagnosis: diagnosis.as_ref(), exposure: &exposure };
     let (findings, passed_unlisted) = rules::check_within(&facts, &settings.rulebook, MOST_PASSED);
-    Ok(Checked { file: input.name.to_owned(), sha256, visit, problems: read.problems, findings, passed_unlisted, balance, diagnosis, exposure })
+    Ok(Checked {
+        file: input.name.to_owned(),
+        sha256,
+        visit,
+        problems: read.problems,
+        findings,
+        passed_unlisted,
+        balance,
+        diagnosis,
+        exposure,
+    })
 }
 
 /// How a report is to look.

@@ -5,6 +5,7 @@
 use midwire::diag::Output;
 use midwire::intake::{Beside, BesideError, Content, Input, Options, Refusal, read};
 use midwire::pipeline;
+use midwire::quantity::Volts;
 use midwire::visit::{Quantity, Stage, System, Visit};
 use midwire::wording::Language;
 use std::collections::BTreeMap;
@@ -26,9 +27,10 @@ fn blank(system: &System) -> Vec<u8> {
     pipeline::blank(system, &Language::english(), 20).expect("the workbook is written")
 }
 
-/// All systems there are names for.
+/// All systems there are names for, and one by its voltages.
 fn systems() -> Vec<System> {
-    System::NAMED.iter().map(|s| System::named(s.0).expect("listed")).collect()
+    let by_voltages = System::by_voltages(Volts(127.0), Volts(220.0)).expect("a wye");
+    System::NAMED.iter().map(|s| System::named(s.0).expect("listed")).chain([by_voltages]).collect()
 }
 
 /// A workbook's parts by name.

@@ -285,6 +285,26 @@ fn a_first_mapping_changes_nothing_and_completed_it_places_the_columns() {
 }
 
 #[test]
+fn a_blank_workbook_is_for_a_system_by_name_or_voltages_and_not_for_another() {
+    let folder = tempfile::tempdir().unwrap();
+    for system in ["120/240", "208Y/120", "127/220"] {
+        let target = text(&folder.path().join(format!("{}.xlsx", system.replace('/', "-"))));
+        let written = midwire(&["blank", "--system", system, "-o", &target]);
+        assert_eq!(written.status.code(), Some(0), "{}", said(&written));
+        assert_eq!(midwire(&["blank", "-o", &target]).status.code(), Some(2), "never over a file that exists");
+        let refused = midwire(&["check", &target]);
+        assert_eq!(refused.status.code(), Some(2));
+        assert!(said(&refused).contains("not filled in yet"), "{}", said(&refused));
+    }
+    for system in ["", "<r>120/240</r>", "NaN/240", "100/500", "1e300/2e300"] {
+        let refused = midwire(&["blank", "--system", system, "-o", &text(&folder.path().join("no.xlsx"))]);
+        assert_eq!(refused.status.code(), Some(2), "{system}");
+        assert!(said(&refused).contains("208Y/120"), "{}", said(&refused));
+    }
+    assert_eq!(names(folder.path()).len(), 3);
+}
+
+#[test]
 fn every_command_has_help_with_examples() {
     for command in ["check", "report", "batch", "blank", "map", "rules", "templates"] {
         let help = printed(&midwire(&[command, "--help"]));

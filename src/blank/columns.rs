@@ -133,9 +133,9 @@ fn pairs(legs: &[Leg]) -> Vec<Between> {
 fn circuits(system: &System) -> Vec<Column> {
     let legs = system.legs();
     let mut columns = vec![
-        column("Circuit", 16.0, Entry::Text).hint("circuit"),
+        column("Circuit", 13.0, Entry::Text).hint("circuit"),
         column("Fed from", 14.0, Entry::Text).hint("fed-from"),
-        column("Serves", 28.0, Entry::Text),
+        column("Serves", 24.0, Entry::Text),
         column("Legs", 12.0, Entry::Choice(leg_choices(legs.len()))).hint("legs"),
         column("Breaker A", 10.0, Entry::Number(1.0, 6000.0)),
         column("Tie", 8.0, Entry::Choice(vec!["yes", "no"])).hint("tie"),
@@ -143,10 +143,10 @@ fn circuits(system: &System) -> Vec<Column> {
         column("Neutral wire", 11.0, Entry::Text).hint("neutral-wire"),
         column("Length ft", 10.0, Entry::Number(0.0, 50_000.0)).hint("length"),
     ];
-    columns.extend(legs.iter().map(|leg| column(format!("Load W {leg}"), 11.0, Entry::Number(0.0, 1e6))));
-    columns.extend(pairs(legs).into_iter().map(|pair| column(format!("Load W {pair}"), 12.0, Entry::Number(0.0, 1e6))));
-    columns.push(column("Load kind", 13.0, Entry::Choice(vec!["resistive", "filament", "electronic", "motor"])));
-    columns.push(column("Remarks", 30.0, Entry::Text));
+    columns.extend(legs.iter().map(|leg| column(format!("Load W {leg}"), 8.5, Entry::Number(0.0, 1e6))));
+    columns.extend(pairs(legs).into_iter().map(|pair| column(format!("Load W {pair}"), 9.0, Entry::Number(0.0, 1e6))));
+    columns.push(column("Load kind", 11.0, Entry::Choice(vec!["resistive", "filament", "electronic", "motor"])));
+    columns.push(column("Remarks", 24.0, Entry::Text));
     columns
 }
 

@@ -63,17 +63,19 @@ fn problem(problem: &Problem, language: &Language) -> MarkedProblem {
 }
 
 fn meta(checked: &Checked, language: &Language) -> Meta {
+    // A folder of the preparer's own is nobody else's business.
+    let file = checked.file.rsplit(['/', '\\']).next().unwrap_or_default();
     let producer = concat!("midwire ", env!("CARGO_PKG_VERSION"));
     Meta {
         title: language.text("marked.title"),
         author: checked.visit.site.prepared_by.as_ref().map(|by| by.value.clone()).unwrap_or_default(),
-        subject: checked.file.clone(),
+        subject: file.to_owned(),
         language: String::new(),
         date: None,
         input_sha256: checked.sha256.clone(),
         producer: producer.to_owned(),
         header_left: language.text("marked.title"),
-        header_right: checked.file.clone(),
+        header_right: file.to_owned(),
         footer_left: producer.to_owned(),
         page_words: language.text("report.page-words").replace("<page>", "{page}").replace("<pages>", "{pages}"),
         page: PageSize::Letter,

@@ -155,7 +155,14 @@ impl House {
     /// A cause of the ranking; the first is the answer.
     pub fn cause(mut self, kind: CauseKind, runs: &[&str], probability: f64) -> Self {
         let runs = runs.iter().map(|r| self.visit.run_named(r).unwrap()).collect();
-        let empty = Diagnosis { ranking: Vec::new(), neutral: Vec::new(), next: Vec::new(), load_steps: Vec::new(), repair: None, left_out: Vec::new() };
+        let empty = Diagnosis {
+            ranking: Vec::new(),
+            neutral: Vec::new(),
+            next: Vec::new(),
+            load_steps: Vec::new(),
+            repair: None,
+            left_out: Vec::new(),
+        };
         self.diagnosis.get_or_insert(empty).ranking.push(Cause { kind, runs, probability, ohms: None });
         self
     }

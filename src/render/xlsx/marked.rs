@@ -19,6 +19,8 @@ const ADDRESS: u16 = 2;
 const MOST_LINKS: usize = 65_530;
 /// Longest comment, in UTF-16 units; more is not read in a balloon.
 const LONGEST_NOTE: usize = 2_000;
+/// Cells that get a comment: each takes some 15 KB while the file is made. Further ones are coloured, and the list says all of them.
+const MOST_NOTES: usize = 5_000;
 /// The days that are dates: up to the end of 9999. Others are shown as the numbers they are.
 const DATES: std::ops::Range<f64> = 0.0..2_958_466.0;
 
@@ -99,9 +101,10 @@ pub fn marked(input: &Marked) -> Result<Vec<u8>, XlsxError> {
     list(workbook.add_worksheet().set_name(names.unique(&input.words.title))?, input, &copies, &styles)?;
     let marks = marks(input.problems);
     let author = visible(&input.meta.producer);
+    let mut notes = MOST_NOTES;
     for (copied, name) in input.sheets.iter().zip(&copies) {
         let worksheet = workbook.add_worksheet().set_name(name)?.set_default_note_author(author.as_ref());
-        copy(worksheet, copied, marks.get(copied.name.as_str()).unwrap_or(&Marks::new()))?;
+        copy(worksheet, copied, marks.get(copied.name.as_str()).unwrap_or(&Marks::new()), &mut notes)?;
     }
     Ok(workbook.save_to_buffer()?)
 }
@@ -160,12 +163,15 @@ fn marks(problems: &[MarkedProblem]) -> BTreeMap<&str, Marks<'_>> {
 }
 
 /// A sheet's data; a cell with problems is filled, framed and commented, an empty one too.
-fn copy(worksheet: &mut Worksheet, copied: &MarkedSheet, marks: &Marks) -> Result<(), XlsxError> {
+fn copy(worksheet: &mut Worksheet, copied: &MarkedSheet, marks: &Marks, notes: &mut usize) -> Result<(), XlsxError> {
     let format = |at| marks.get(&at).map_or_else(Format::new, |p| fill(p.iter().any(|p| p.left_out)));
     for (&(row, col), problems) in marks {
         let col = narrow(col)?;
         worksheet.write_blank(row, col, &format((row, u32::from(col))))?;
-        worksheet.insert_note(row, col, &note(problems))?;
+        if let Some(left) = notes.checked_sub(1) {
+            *notes = left;
+            worksheet.insert_note(row, col, &note(problems))?;
+        }
     }
     let mut widths: BTreeMap<u16, usize> = BTreeMap::new();
     for (row, col, value) in &copied.cells {
