@@ -148,7 +148,8 @@ fn elements_stand_in_reading_order() {
     ];
     let pdf = read(&pdf::write(&with(blocks)).unwrap());
     let tags: Vec<String> = elements(&pdf).iter().map(|(_, e)| tag(e)).collect();
-    let expected = "Document Figure H1 P Link L LI Lbl LBody P LI Lbl LBody P H2 Table Caption THead TR TH TH TH TBody TR TD TD TD TR TD TD TD";
+    let expected =
+        "Document Figure H1 P Link L LI Lbl LBody P LI Lbl LBody P H2 Table Caption THead TR TH TH TH TBody TR TD TD TD TR TD TD TD";
     assert_eq!(tags.join(" "), expected);
     let (_, paragraph) = elements(&pdf).into_iter().find(|(_, e)| tag(e) == "P").unwrap();
     let kids = paragraph.get(b"K").unwrap().as_array().unwrap();
