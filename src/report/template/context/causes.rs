@@ -27,6 +27,8 @@ pub(super) struct Causes {
     /// Runs in which an open neutral would not have shown, and how many they are.
     open_not_shown: String,
     open_count: usize,
+    /// Cells whose readings the fit did not use.
+    not_used: String,
     repair: String,
     /// The readings as left prove the repair.
     mended: bool,
@@ -64,6 +66,7 @@ pub(super) fn causes(source: &Source, d: &Diagnosis, language: &Language) -> Opt
         runs: words::listed(&runs, MOST_RUNS, language),
         open_count: open.len(),
         open_not_shown: words::listed(&open, MOST_RUNS, language),
+        not_used: words::listed(&d.left_out.iter().map(ToString::to_string).collect::<Vec<_>>(), MOST_RUNS, language),
         mended: d.repair.as_ref().is_some_and(|r| r.outcome == RepairOutcome::Proven),
         repair: repair.map_or_else(String::new, |key| language.text(key)),
     })
