@@ -5,7 +5,7 @@
 //! weighed by its evidence, so that a cause must explain every reading and pays for every liberty it takes. docs/diagnosis.md has
 //! the method, its parameters with their reasons, and measured figures.
 //!
-//! Bounds on any input: readings, spans and the work of the fits are capped (see [`settings`]); what was given up is reported as
+//! Bounds on any input: readings, spans and the work of the fits are capped (see `settings`); what was given up is reported as
 //! not ruled out, never as sound.
 
 mod evidence;
