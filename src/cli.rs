@@ -71,3 +71,9 @@ fn settings(rules: Option<&Path>, map: Option<&Path>) -> anyhow::Result<Settings
     }
     Ok(settings)
 }
+
+/// Does one workbook's work. A panic in it is a fault of the program: it is said in a sentence, and costs that workbook alone.
+fn contained<T>(work: impl FnOnce() -> anyhow::Result<T>) -> anyhow::Result<T> {
+    let done = std::panic::catch_unwind(std::panic::AssertUnwindSafe(work));
+    done.unwrap_or_else(|_| Err(anyhow::anyhow!("the program failed on this workbook; please report it with the file")))
+}

@@ -1,7 +1,7 @@
 //! `midwire check`.
 
 use super::files::Loaded;
-use super::{DONE, FAILED, FOUND, args, files, settings, terminal};
+use super::{DONE, FAILED, FOUND, args, contained, files, settings, terminal};
 use crate::intake::Input;
 use crate::pipeline::{self, Checked, Settings};
 use crate::results::{Signal, Verdict};
@@ -66,7 +66,8 @@ fn loaded(path: &Path) -> Result<Loaded, (String, String)> {
 fn of(loaded: &Loaded, path: &Path, name: &str, settings: &Settings) -> Result<Checked, (String, String)> {
     let input = Input { name, content: loaded.content() };
     let sha256 = || pipeline::sha256(&loaded.content());
-    pipeline::check(&input, &files::Siblings::of(path), settings).map_err(|e| (e.to_string(), sha256()))
+    let check = || Ok(pipeline::check(&input, &files::Siblings::of(path), settings)?);
+    contained(check).map_err(|e| (e.to_string(), sha256()))
 }
 
 /// What would stand in the way of a marked copy is said before anything is read.

@@ -1,6 +1,6 @@
 //! `midwire report`.
 
-use super::{DONE, FAILED, args, check, files, name, settings, terminal};
+use super::{DONE, FAILED, args, check, contained, files, name, settings, terminal};
 use crate::pipeline::{self, Checked, ReportOptions, Settings};
 use crate::report::BUILT_IN_TEMPLATES;
 use crate::report::document::PageSize;
@@ -93,7 +93,7 @@ fn write(
             terminal::line(&checked.file)
         );
     }
-    let files = pipeline::render(checked, settings, options, args.look.html)?;
+    let files = contained(|| Ok(pipeline::render(checked, settings, options, args.look.html)?))?;
     // Refused before anything is written, so that a visit has all of its files or none.
     let inputs: Vec<PathBuf> = args.workbooks.iter().filter_map(|w| w.canonicalize().ok()).collect();
     for (ending, _) in &files {

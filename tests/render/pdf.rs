@@ -251,6 +251,14 @@ fn every_column_of_a_very_wide_table_stands_on_the_page() {
 }
 
 #[test]
+fn a_running_line_that_is_cut_says_so() {
+    let mut document = with(vec![paragraph("text")]);
+    document.meta.header_left = "A company with a very long name ".repeat(12);
+    let text = pages(&read(&pdf::write(&document).unwrap())).join(" ");
+    assert!(text.contains("A company with a very long name") && text.contains('…'), "{text}");
+}
+
+#[test]
 fn no_operand_is_other_than_a_number() {
     let shape = |x: f64| Shape::Line { points: vec![(x, 1.0), (2.0, x)], width: x, colour: Colour::Ink, dash: None, round: false };
     let drawing = Drawing { width: 100.0, height: 50.0, alt: "a".into(), shapes: vec![shape(f64::NAN), shape(f64::INFINITY), shape(1.0)] };

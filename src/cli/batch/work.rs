@@ -2,7 +2,7 @@
 
 use super::journal::{Entry, Journal, Status, VisitLine};
 use super::{register, walk};
-use crate::cli::{files, name};
+use crate::cli::{contained, files, name};
 use crate::intake::Input;
 use crate::pipeline::{self, Checked, ReportOptions, Settings};
 use crate::results::{Signal, Verdict};
@@ -39,7 +39,7 @@ pub enum Outcome {
     Failed(Box<Entry>),
 }
 
-/// Does one workbook. A panic in it is a fault of the program; it costs this workbook alone and is said.
+/// Does one workbook.
 pub fn one(folder: &Path, file: &Path, job: &Job, journal: &Journal, force: bool) -> Outcome {
     let begun = Instant::now();
     let shown = walk::shown(file);
@@ -54,8 +54,7 @@ pub fn one(folder: &Path, file: &Path, job: &Job, journal: &Journal, force: bool
         visit: None,
         seconds: 0.0,
     };
-    let done = std::panic::catch_unwind(std::panic::AssertUnwindSafe(|| render(folder, file, job, journal, force, &mut entry)));
-    let result = done.unwrap_or_else(|_| Err(anyhow::anyhow!("the program failed on this workbook; please report it with the file")));
+    let result = contained(|| render(folder, file, job, journal, force, &mut entry));
     entry.seconds = (begun.elapsed().as_secs_f64() * 1e3).round() / 1e3;
     match result {
         Ok(None) => Outcome::Unchanged,

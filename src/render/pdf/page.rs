@@ -167,10 +167,16 @@ fn running(document: &Document, pages: &mut Pages) {
     }
 }
 
-/// One line of text from a point, or up to it; what does not fit is cut.
+/// One line of text from a point, or up to it; what does not fit is cut, and dots say so.
 fn line(text: &str, colour: [u8; 3], bold: bool, x: f32, y: f32, room: f32, to: bool) -> Vec<Paint> {
-    let span = Span { bold, ..Span::new(text, colour) };
-    let Some(line) = shape::shape(std::slice::from_ref(&span), RUNNING).lines(room).into_iter().next() else { return Vec::new() };
+    let broken = |text: &str| shape::shape(&[Span { bold, ..Span::new(text, colour) }], RUNNING).lines(room);
+    let mut lines = broken(text);
+    if lines.len() > 1 {
+        let first: String = lines[0].runs.iter().flat_map(|r| &r.glyphs).map(|g| g.text.as_str()).collect();
+        let kept = first.chars().count().saturating_sub(2);
+        lines = broken(&format!("{}…", first.chars().take(kept).collect::<String>().trim_end()));
+    }
+    let Some(line) = lines.into_iter().next() else { return Vec::new() };
     let left = if to { x - line.width } else { x };
     line.runs.into_iter().map(|run| Paint::Text { x: left + run.x, y, run: Arc::new(run), colour }).collect()
 }
