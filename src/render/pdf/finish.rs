@@ -182,8 +182,8 @@ fn element(node: &Node, parent: ObjectId, page_ids: &[ObjectId], nodes: &[Object
         Attribute::Numbered(yes) => {
             element.set("A", dictionary! { "O" => "List", "ListNumbering" => if yes { "Decimal" } else { "Disc" } })
         }
-        Attribute::Box((_, _, w, h)) => {
-            let rect: Vec<Object> = [0.0, 0.0, w.min(pages.size.0), h.min(pages.size.1)].map(Object::Real).to_vec();
+        Attribute::Box((x, y, w, h)) => {
+            let rect: Vec<Object> = [x, pages.size.1 - y - h, x + w, pages.size.1 - y].map(Object::Real).to_vec();
             element.set("A", dictionary! { "O" => "Layout", "Placement" => "Block", "BBox" => rect });
         }
     }

@@ -3,7 +3,7 @@
 use super::flow::Flow;
 use super::shape::{self, Span};
 use super::strip::{Area, Mark, Paint, Strip, Target};
-use super::structure::Kid;
+use super::structure::{Attribute, Kid};
 use crate::report::document::{Document, PageSize};
 use crate::report::drawing::Colour;
 use std::sync::Arc;
@@ -42,6 +42,8 @@ pub(super) struct Pages {
     pub pages: Vec<Page>,
     /// Headings.
     pub placed: Vec<Placed>,
+    /// Figures, each with the top of its strip on its page.
+    figures: Vec<(usize, f32)>,
     /// Width and height.
     pub size: (f32, f32),
 }
@@ -57,12 +59,18 @@ struct Filler<'a> {
 pub(super) fn fill(document: &Document, flow: &mut Flow) -> Pages {
     let size = points(document.meta.page);
     let headers = std::mem::take(&mut flow.headers);
-    let pages = Pages { pages: vec![Page::default()], placed: Vec::new(), size };
+    let pages = Pages { pages: vec![Page::default()], placed: Vec::new(), figures: Vec::new(), size };
     let mut filler = Filler { headers: &headers, pages, y: TOP, fresh: true };
     let strips = std::mem::take(&mut flow.strips);
     filler.all(strips);
     let mut pages = filler.pages;
     running(document, &mut pages);
+    for (node, top) in &pages.figures {
+        if let Attribute::Box((x, y, ..)) = &mut flow.structure.nodes[*node].attribute {
+            *x += SIDE;
+            *y += top;
+        }
+    }
     number(&pages, flow);
     pages
 }
@@ -130,6 +138,8 @@ impl Filler<'_> {
         }
         strip.shift(SIDE, self.y);
         let page = self.pages.pages.len() - 1;
+        let top = self.y;
+        self.pages.figures.extend(strip.figures.drain(..).map(|node| (node, top)));
         if let Some(target) = strip.target.take() {
             self.pages.placed.push(Placed { target, page, y: self.y });
         }

@@ -16,6 +16,9 @@ pub(super) const FACES: [(&str, &[u8]); 4] = [
 /// Stands for a character that the font has no glyph for; the font has one for it.
 const REPLACEMENT: char = '\u{FFFD}';
 
+/// Forbids a line break where it stands.
+pub(super) const WORD_JOINER: char = '\u{2060}';
+
 /// A stretch of text in one style.
 #[derive(Clone, Debug, PartialEq)]
 pub(super) struct Span {
@@ -218,7 +221,8 @@ fn add(run: &mut Run, cluster: &parley::Cluster<'_, u32>, text: &str) {
     let shown = text.trim_end_matches(['\n', '\r', '\u{2028}', '\u{2029}']);
     let target = if run.glyphs.len() > before { before } else { before.wrapping_sub(1) };
     if let Some(glyph) = run.glyphs.get_mut(target) {
-        glyph.text.push_str(shown);
+        // A word joiner keeps letters together; it is no text.
+        glyph.text.extend(shown.chars().filter(|c| *c != WORD_JOINER));
     }
 }
 

@@ -70,6 +70,8 @@ pub(super) struct Strip {
     pub areas: Vec<Area>,
     /// A heading begins here.
     pub target: Option<Target>,
+    /// Figures in it, whose place on the page their nodes must know.
+    pub figures: Vec<usize>,
     /// Begins a new page.
     pub breaks: bool,
 }

@@ -22,6 +22,7 @@ impl Flow<'_> {
     pub(super) fn facts(&mut self, facts: &[(String, Vec<Inline>)], place: Place) {
         let list = self.structure.add(place.node, "L");
         let half = if place.width < NARROWEST { place.width } else { (place.width - GUTTER) / 2.0 };
+        let first = self.strips.len();
         let mut open: Option<Strip> = None;
         for (label, value) in facts {
             let spans = self.spans(value, self.ink());
@@ -39,6 +40,11 @@ impl Flow<'_> {
             if fits && !second { open = Some(strip) } else { self.strips.push(strip) }
         }
         self.strips.extend(open);
+        // Few lines that say one thing together stay together.
+        let last = self.strips.len().saturating_sub(1);
+        for strip in self.strips.get_mut(first..last).into_iter().flatten() {
+            strip.keep = true;
+        }
     }
 
     fn pair(&mut self, strip: &mut Strip, label: &str, lines: Vec<Line>, spans: &[Span], (x, width): (f32, f32), list: usize) {

@@ -28,7 +28,14 @@ impl Flow<'_> {
         self.structure.nodes[node].attribute = Attribute::Box((place.x, 0.0, width * scale, height * scale));
         let paints = drawing.shapes.iter().filter(|s| is_finite(s)).flat_map(|s| self.paints(s, scale, place.x)).collect();
         let marks = vec![Mark { node: Some(node), paints }];
-        self.strips.push(Strip { height: height * scale, gap: 8.0, keep: !caption.is_empty(), marks, ..Strip::default() });
+        self.strips.push(Strip {
+            height: height * scale,
+            gap: 8.0,
+            keep: !caption.is_empty(),
+            marks,
+            figures: vec![node],
+            ..Strip::default()
+        });
         self.caption(caption, Place { node, ..place });
     }
 

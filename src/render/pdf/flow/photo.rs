@@ -110,6 +110,7 @@ impl Flow<'_> {
             height: height + 8.0,
             keep: true,
             marks: vec![Mark { node: Some(node), paints: vec![paint] }],
+            figures: vec![node],
             ..Strip::default()
         });
     }
@@ -174,6 +175,7 @@ impl Flow<'_> {
             }
         };
         strip.marks.push(Mark { node: Some(node), paints: vec![paint] });
+        strip.figures.push(node);
         node
     }
 }

@@ -60,8 +60,13 @@ impl Flow<'_> {
         let grid = Grid { x: place.x, number: self.headers.len(), size: BASE * columns.scale, columns };
         self.header(heads, &grid, node);
         let body = self.structure.add(node, "TBody");
-        for (row, entries) in table.rows.iter().zip(rows) {
+        let count = table.rows.len();
+        for (i, (row, entries)) in table.rows.iter().zip(rows).enumerate() {
             self.row(row, entries, &grid, body);
+            // No row of a table stands alone below its header or at the head of a page.
+            if let Some(strip) = self.strips.last_mut().filter(|_| count > 1 && (i == 0 || i + 2 == count)) {
+                strip.keep = true;
+            }
         }
     }
 

@@ -49,7 +49,7 @@ impl Entry {
 impl Flow<'_> {
     /// Heading of a column with its unit.
     pub(super) fn head(&self, column: &Column) -> Entry {
-        let mut spans = vec![Span::bold(&column.heading, self.ink())];
+        let mut spans = vec![Span::bold(&visible(&column.heading).replace('-', "-\u{2060}"), self.ink())];
         if let Some(unit) = column.unit.map(crate::quantity::Unit::symbol).filter(|u| !u.is_empty()) {
             spans.push(Span::new(&format!(" ({unit})"), self.colour(Colour::Quiet)));
         }
@@ -64,14 +64,16 @@ impl Flow<'_> {
     /// The cells of a row.
     pub(super) fn entries(&self, table: &Table, row: &Row) -> Vec<Entry> {
         let shown = if row.group { 1 } else { table.columns.len() };
-        row.cells.iter().take(shown).map(|cell| self.entry(cell, row.group)).collect()
+        row.cells.iter().zip(&table.columns).take(shown).map(|(cell, column)| self.entry(cell, row.group, column.kind)).collect()
     }
 
-    fn entry(&self, cell: &Cell, group: bool) -> Entry {
+    fn entry(&self, cell: &Cell, group: bool, kind: ColumnKind) -> Entry {
         let ink = self.ink();
         match cell {
             Cell::Empty => Entry { spans: Vec::new(), content: Content::Empty, widths: (0.0, 0.0) },
-            Cell::Text(text) => Entry::text(vec![Span { bold: group, ..Span::new(&visible(text), ink) }], false),
+            Cell::Text(text) => {
+                Entry::text(vec![Span { bold: group, ..Span::new(&visible(text), ink) }], kind == ColumnKind::Number && !group)
+            }
             Cell::Rich(inlines) => Entry::text(self.spans(inlines, ink), false),
             Cell::Signal(signal) => Entry::text(self.signal(*signal).to_vec(), false),
             Cell::Verdict(verdict) => Entry::text(vec![Span { bold: *verdict == Verdict::Fail, ..Span::new(verdict.name(), ink) }], false),
