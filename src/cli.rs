@@ -31,6 +31,13 @@ const FAILED: u8 = 2;
 /// Runs the command the arguments name.
 #[must_use]
 pub fn main() -> ExitCode {
+    // A fault of the program is a line, not a page, for who did not ask for more.
+    if std::env::var_os("RUST_BACKTRACE").is_none() {
+        std::panic::set_hook(Box::new(|fault| {
+            let place = fault.location().map_or_else(String::new, ToString::to_string);
+            anstream::eprintln!("midwire: a fault of the program at {place}");
+        }));
+    }
     let arguments = args::Arguments::parse();
     let outcome = match &arguments.command {
         args::Command::Check(a) => check::run(a),
