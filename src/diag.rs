@@ -3,6 +3,12 @@
 //! Every value read from a workbook is a [`Located`] one; every problem with a cell is a [`Problem`]. Problems are collected,
 //! never thrown: a wrong cell costs that value alone, and all of them are reported at once.
 
+mod settings;
+mod text;
+
+pub use settings::SettingsProblem;
+pub use text::steers;
+
 use crate::wording::Sentence;
 use std::fmt;
 use std::sync::Arc;

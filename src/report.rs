@@ -16,6 +16,7 @@ mod template;
 mod words;
 
 pub use facts::visible;
+pub use words::cause as cause_in_words;
 
 use crate::diag::Problem;
 use crate::results::{Balance, Diagnosis, Exposure, Finding};

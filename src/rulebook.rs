@@ -5,11 +5,11 @@
 //! validated: every number finite and in its range, every low end at or below its high end, every name known.
 
 mod limit;
-mod problem;
 mod read;
 
 pub use limit::{Bounds, LimitQuantity, LimitRow, Place};
-pub use problem::RulebookProblem;
+/// One thing wrong with a rule book file.
+pub type RulebookProblem = crate::diag::SettingsProblem;
 
 use crate::quantity::Unit;
 use crate::results::Signal;

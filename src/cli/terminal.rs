@@ -1,6 +1,6 @@
 //! Text for a terminal: what came from a file can't steer it.
 
-use crate::diag::Problem;
+use crate::diag::{Problem, steers};
 use crate::results::{Finding, Signal};
 use crate::wording::Language;
 use anstyle::{AnsiColor, Style};
@@ -11,7 +11,7 @@ use std::fmt::Write as _;
 pub fn visible(text: &str) -> String {
     let mut out = String::with_capacity(text.len());
     for c in text.chars() {
-        if (c.is_control() && c != '\n' && c != '\t') || steers(c) {
+        if (c.is_control() && c != '\n' && c != '\t') || steers(c) || matches!(c, '\u{200C}' | '\u{200D}') {
             let _ = write!(out, "⟨U+{:04X}⟩", u32::from(c));
         } else {
             out.push(c);
@@ -24,11 +24,6 @@ pub fn visible(text: &str) -> String {
 #[must_use]
 pub fn line(text: &str) -> String {
     visible(text).replace('\n', "⏎").replace('\t', " ")
-}
-
-/// Bidirectional marks and overrides, invisible characters, line and paragraph separators, tags.
-fn steers(c: char) -> bool {
-    matches!(c, '\u{061C}' | '\u{180E}' | '\u{200B}'..='\u{200F}' | '\u{2028}'..='\u{202E}' | '\u{2060}'..='\u{206F}' | '\u{FEFF}' | '\u{FFF9}'..='\u{FFFB}' | '\u{E0000}'..='\u{E007F}')
 }
 
 /// The style of a signal word; the word itself carries the meaning, so nothing is lost without colour.

@@ -24,47 +24,15 @@
 
 use super::header::What;
 use super::words::{Kind, Words};
+use crate::diag::SettingsProblem;
 use crate::quantity::parse::unit_word;
-use crate::wording::{Arg, Language, Sentence};
+use crate::wording::{Arg, Sentence};
 use std::fmt::Write as _;
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
 /// One thing wrong with a mapping file.
-#[derive(Clone, Debug, PartialEq)]
-pub struct MappingProblem {
-    /// The file as named by the caller.
-    pub file: String,
-    /// Line, from 1.
-    pub line: usize,
-    /// The key with its tables, dotted: `readings.Location`; empty for the file as a whole.
-    pub key: String,
-    /// What stood there, as text of bounded length.
-    pub found: String,
-    /// What was expected.
-    pub expected: Sentence,
-    /// The known name nearest to what stood there.
-    pub nearest: Option<String>,
-}
-
-impl MappingProblem {
-    /// The problem in one line: file, line, key, what stood there, what was expected.
-    #[must_use]
-    pub fn say(&self, language: &Language) -> String {
-        let sentence = Sentence::new(if self.key.is_empty() { "mapping.problem-in-file" } else { "mapping.problem" })
-            .with("file", self.file.as_str())
-            .with("line", self.line)
-            .with("key", self.key.as_str())
-            .with("found", self.found.as_str())
-            .with("expected", self.expected.clone());
-        let mut line = language.say(&sentence);
-        if let Some(nearest) = &self.nearest {
-            line.push(' ');
-            line.push_str(&language.say(&Sentence::new("intake.did-you-mean").with("likely", nearest.as_str())));
-        }
-        line
-    }
-}
+pub type MappingProblem = SettingsProblem;
 
 /// A user's words and entries, laid over the built-in ones.
 #[derive(Clone, Debug)]

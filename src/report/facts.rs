@@ -2,6 +2,7 @@
 
 use super::Source;
 use super::document::{CaptionedImage, Image};
+use crate::diag::steers;
 use crate::quantity::Unit;
 use crate::wording::Language;
 use std::fmt::Write as _;
@@ -105,13 +106,6 @@ pub fn visible(text: &str) -> String {
         }
     }
     out
-}
-
-/// Bidirectional marks and overrides, invisible characters, line separators, tags, and what XML can't hold. The joiners U+200C and
-/// U+200D stay: scripts need them, and they do nothing beyond their neighbours.
-fn steers(c: char) -> bool {
-    matches!(c, '\u{061C}' | '\u{180E}' | '\u{200B}' | '\u{200E}' | '\u{200F}' | '\u{2028}'..='\u{202E}' | '\u{2060}'..='\u{206F}')
-        || matches!(c, '\u{FEFF}' | '\u{FFF9}'..='\u{FFFB}' | '\u{FFFE}' | '\u{FFFF}' | '\u{E0000}'..='\u{E007F}')
 }
 
 #[cfg(test)]

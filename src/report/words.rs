@@ -1,8 +1,8 @@
 //! Results in words, as tables, templates and captions share them.
 
-use super::Source;
 use crate::quantity::Unit;
 use crate::results::{Cause, CauseKind, SupplyDirection};
+use crate::visit::Visit;
 use crate::wording::{Arg, Language, Sentence};
 
 /// So many places are told with what is there.
@@ -11,8 +11,9 @@ pub(super) const FEW: usize = 4;
 const LEAST_OHMS: f64 = 0.005;
 
 /// A cause in a few words.
-pub(super) fn cause(source: &Source, cause: &Cause, language: &Language) -> String {
-    let runs: Vec<Arg> = runs(source, &cause.runs).into_iter().map(Arg::from).collect();
+#[must_use]
+pub fn cause(visit: &Visit, cause: &Cause, language: &Language) -> String {
+    let runs: Vec<Arg> = runs(visit, &cause.runs).into_iter().map(Arg::from).collect();
     let sentence = match &cause.kind {
         CauseKind::None => Sentence::new("report.cause-none"),
         CauseKind::Neutral => Sentence::new("report.cause-neutral"),
@@ -25,9 +26,9 @@ pub(super) fn cause(source: &Source, cause: &Cause, language: &Language) -> Stri
 }
 
 /// Names of runs, and what they serve where they are few enough to be looked for.
-pub(super) fn runs(source: &Source, runs: &[usize]) -> Vec<String> {
+pub(super) fn runs(visit: &Visit, runs: &[usize]) -> Vec<String> {
     let is_few = runs.len() <= FEW;
-    let known = runs.iter().filter_map(|&r| source.visit.runs.get(r));
+    let known = runs.iter().filter_map(|&r| visit.runs.get(r));
     known.map(|r| place(&r.name.value, r.serves.as_ref().map(|s| s.value.as_str()).filter(|_| is_few))).collect()
 }
 

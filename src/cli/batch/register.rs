@@ -5,9 +5,8 @@ use crate::cli::files;
 use crate::quantity::Unit;
 use crate::render;
 use crate::report::document::{Cell, Chart, Column, ColumnKind, Document, Inline, Meta, Number, Row, Sheet, Table};
-use crate::results::{Cause, CauseKind, Signal, SupplyDirection};
-use crate::visit::Visit;
-use crate::wording::{Arg, Language, Sentence};
+use crate::results::Signal;
+use crate::wording::Language;
 use std::path::Path;
 use std::sync::Arc;
 
@@ -30,21 +29,6 @@ pub fn write(folder: &Path, journal: &Journal, language: &Language) -> anyhow::R
     };
     files::write(&folder.join(NAME), &render::xlsx::write(&document)?, true)?;
     files::write(&folder.join("register.csv"), &csv, true)
-}
-
-/// A cause in a few words.
-#[must_use]
-pub fn cause(cause: &Cause, visit: &Visit, language: &Language) -> String {
-    let runs: Vec<Arg> = cause.runs.iter().filter_map(|&r| visit.runs.get(r)).map(|r| Arg::from(r.name.value.as_str())).collect();
-    let sentence = match &cause.kind {
-        CauseKind::None => Sentence::new("register.cause-none"),
-        CauseKind::Neutral => Sentence::new("register.cause-neutral"),
-        CauseKind::Hot(leg) => Sentence::new("register.cause-hot").with("leg", leg.name()),
-        CauseKind::Supply(SupplyDirection::Low) => Sentence::new("register.cause-supply-low"),
-        CauseKind::Supply(SupplyDirection::High) => Sentence::new("register.cause-supply-high"),
-        CauseKind::Reading(cell) => Sentence::new("register.cause-reading").with("cell", cell.to_string()),
-    };
-    language.say(&sentence.with("runs", runs))
 }
 
 fn sheet(name: &str, table: Table, chart: Option<Chart>, language: &Language) -> Sheet {

@@ -1,10 +1,11 @@
 //! The work on one workbook of a batch: read, check, render; no naming, no writing.
 
 use super::journal::{Entry, Journal, Status, VisitLine};
-use super::{register, walk};
+use super::walk;
 use crate::cli::{contained, files, name};
 use crate::intake::Input;
 use crate::pipeline::{self, Checked, ReportOptions, Settings};
+use crate::report::cause_in_words;
 use crate::results::{Signal, Verdict};
 use std::path::Path;
 use std::time::Instant;
@@ -108,7 +109,7 @@ fn line(checked: &Checked, settings: &Settings) -> VisitLine {
         date: visit.site.date.as_ref().map(|l| l.value.to_string()),
         worst: checked.worst(),
         counts,
-        cause: lead.map(|c| register::cause(c, visit, &settings.language)),
+        cause: lead.map(|c| cause_in_words(visit, c, &settings.language)),
         probability: lead.map(|c| (c.probability * 1e4).round() / 1e4),
         not_ruled_out: open.filter_map(|n| visit.runs.get(n.run).map(|r| r.name.value.clone())).collect(),
         left_out: checked.problems.iter().filter(|p| p.severity == crate::diag::Severity::Error).count(),

@@ -1,5 +1,6 @@
 //! Shapes in the making: text that keeps to its room, lines, boxes; and the cutting of tall figures into pages.
 
+use crate::diag::steers;
 use crate::report::drawing::{Anchor, Colour, Drawing, Measure, Shape};
 use std::ops::Range;
 
@@ -132,9 +133,6 @@ impl<'a> Canvas<'a> {
 /// A label as it can stand on one line: blanks single; characters that control a terminal or turn the direction of writing shown as
 /// such, for they would carry what follows out of its place.
 pub(super) fn clean(text: &str) -> String {
-    let steers = |c: char| {
-        c.is_control() || matches!(c, '\u{61c}' | '\u{200b}'..='\u{200f}' | '\u{2028}'..='\u{202e}' | '\u{2060}'..='\u{206f}' | '\u{feff}')
-    };
     let mut out = String::new();
     for c in text.trim().chars().take(MOST_CHARACTERS) {
         match c {
@@ -143,7 +141,7 @@ pub(super) fn clean(text: &str) -> String {
                     out.push(' ');
                 }
             }
-            c if steers(c) => out.push(char::REPLACEMENT_CHARACTER),
+            c if c.is_control() || steers(c) => out.push(char::REPLACEMENT_CHARACTER),
             c => out.push(c),
         }
     }

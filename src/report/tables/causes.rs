@@ -25,7 +25,7 @@ pub(super) fn causes(source: &Source, language: &Language) -> Option<Table> {
     let (first, others) = ranking.split_first()?;
     for cause in std::iter::once(first).chain(others.iter().filter(|c| c.probability >= WORTH_LISTING)) {
         draft.row(vec![
-            text(&words::cause(source, cause, language)),
+            text(&words::cause(source.visit, cause, language)),
             probability(cause.probability, language),
             opt(cause.ohms, |o| text(&ohms(&o, language))),
         ]);

@@ -49,7 +49,7 @@ pub(super) fn causes(source: &Source, d: &Diagnosis, language: &Language) -> Opt
         RepairOutcome::NotRepaired => "report.repair-not",
         RepairOutcome::NotShown => "report.repair-not-shown",
     });
-    let runs = words::runs(source, &lead.runs);
+    let runs = words::runs(source.visit, &lead.runs);
     Some(Causes {
         kind: match lead.kind {
             CauseKind::None => "none",
@@ -58,7 +58,7 @@ pub(super) fn causes(source: &Source, d: &Diagnosis, language: &Language) -> Opt
             CauseKind::Supply(_) => "supply",
             CauseKind::Reading(_) => "reading",
         },
-        cause: words::cause(source, lead, language),
+        cause: words::cause(source.visit, lead, language),
         probability: words::probability(lead.probability, language),
         sure: lead.probability >= SURE,
         ohms: lead.ohms.map_or_else(String::new, |o| words::between(o.low.0, o.high.map(|h| h.0), language)),

@@ -1,10 +1,10 @@
-//! What was wrong with a rule book.
+//! What was wrong with a settings file of the user's: a rule book, a mapping.
 
 use crate::wording::{Language, Sentence};
 
-/// One thing wrong with a rule book file.
+/// One thing wrong with a settings file.
 #[derive(Clone, Debug, PartialEq)]
-pub struct RulebookProblem {
+pub struct SettingsProblem {
     /// The file as named by the caller.
     pub file: String,
     /// Line, from 1.
@@ -19,11 +19,11 @@ pub struct RulebookProblem {
     pub nearest: Option<String>,
 }
 
-impl RulebookProblem {
+impl SettingsProblem {
     /// The problem in one line: file, line, key, what stood there, what was expected.
     #[must_use]
     pub fn say(&self, language: &Language) -> String {
-        let sentence = Sentence::new(if self.key.is_empty() { "rulebook.problem-in-file" } else { "rulebook.problem" })
+        let sentence = Sentence::new(if self.key.is_empty() { "settings-file.problem-in-file" } else { "settings-file.problem" })
             .with("file", self.file.as_str())
             .with("line", self.line)
             .with("key", self.key.as_str())
@@ -32,7 +32,7 @@ impl RulebookProblem {
         let mut line = language.say(&sentence);
         if let Some(nearest) = &self.nearest {
             line.push(' ');
-            line.push_str(&language.say(&Sentence::new("rulebook.nearest").with("nearest", nearest.as_str())));
+            line.push_str(&language.say(&Sentence::new("settings-file.nearest").with("nearest", nearest.as_str())));
         }
         line
     }
