@@ -30,45 +30,46 @@ impl Loaded {
     }
 }
 
-/// Loads a workbook or a folder of csv files.
+/// Loads a workbook or a folder of csv files. Who asks says which one an error is about.
 pub fn load(path: &Path) -> anyhow::Result<Loaded> {
-    let meta = fs::metadata(path).with_context(|| format!("{} can't be opened", path.display()))?;
+    let meta = fs::metadata(path).context("it can't be opened")?;
     if !meta.is_dir() {
         return Ok(Loaded::File(bytes(path)?));
     }
     let mut names: Vec<String> = fs::read_dir(path)
-        .with_context(|| format!("{} can't be listed", path.display()))?
+        .context("it can't be listed")?
         .filter_map(|entry| entry.ok()?.file_name().into_string().ok())
         .filter(|name| Path::new(name).extension().is_some_and(|e| e.eq_ignore_ascii_case("csv")))
         .collect();
     names.sort();
     if names.is_empty() {
-        bail!("{} is a folder without csv files; a workbook or a folder with one csv file a sheet was expected", path.display());
+        bail!("it is a folder without csv files; a workbook or a folder with one csv file a sheet was expected");
     }
     if names.len() > MOST_SHEETS {
-        bail!("{} holds {} csv files; at most {MOST_SHEETS} are read as one workbook", path.display(), names.len());
+        bail!("it holds {} csv files; at most {MOST_SHEETS} are read as one workbook", names.len());
     }
-    let files = names.into_iter().map(|name| bytes(&path.join(&name)).map(|b| (name, b)));
+    let files = names.into_iter().map(|name| bytes(&path.join(&name)).with_context(|| name.clone()).map(|b| (name, b)));
     Ok(Loaded::Folder(files.collect::<anyhow::Result<_>>()?))
 }
 
 /// A file's bytes, bounded.
 fn bytes(path: &Path) -> anyhow::Result<Vec<u8>> {
-    let file = fs::File::open(path).with_context(|| format!("{} can't be opened", path.display()))?;
+    let file = fs::File::open(path).context("it can't be opened")?;
     if !file.metadata().is_ok_and(|m| m.is_file()) {
-        bail!("{} is not a file", path.display());
+        bail!("it is not a file");
     }
     let mut buffer = Vec::new();
-    file.take(MOST_BYTES + 1).read_to_end(&mut buffer).with_context(|| format!("{} can't be read", path.display()))?;
+    file.take(MOST_BYTES + 1).read_to_end(&mut buffer).context("it can't be read")?;
     if buffer.len() as u64 > MOST_BYTES {
-        bail!("{} is larger than {} MB, the most that is read", path.display(), MOST_BYTES / 1024 / 1024);
+        bail!("it is larger than {} MB, the most that is read", MOST_BYTES / 1024 / 1024);
     }
     Ok(buffer)
 }
 
 /// A text file.
 pub fn text(path: &Path) -> anyhow::Result<String> {
-    String::from_utf8(bytes(path)?).map_err(|_| anyhow::anyhow!("{} is not UTF-8 text", path.display()))
+    let bytes = bytes(path).with_context(|| path.display().to_string())?;
+    String::from_utf8(bytes).map_err(|_| anyhow::anyhow!("{} is not UTF-8 text", path.display()))
 }
 
 /// Files beside a workbook, for photos: never outside its folder.

@@ -372,7 +372,9 @@ fn behind(digits: &str, rest: &str) -> Result<(Option<Scale>, bool), NumberError
         return number_and_unit(spread.trim()).map(|(_, u, _)| (unit.or(u), true));
     }
     if more.bytes().any(|b| b.is_ascii_digit()) {
-        return Err(NumberError::Several);
+        // `11q.3` is one number with something in it, not two.
+        let is_one = unit.is_none() && rest.starts_with(char::is_alphabetic);
+        return Err(if is_one { NumberError::Words { rest: more.to_owned() } } else { NumberError::Several });
     }
     // "3 outlets dead" is no reading; "119.6 flickering" and "120 V steady" are.
     let note = more.starts_with('(') || unit.is_some() || digits.contains(['.', ',']) || NOTES.contains(&lower.as_str());

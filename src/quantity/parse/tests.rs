@@ -144,3 +144,9 @@ fn feet_and_inches_are_one_length() {
         assert_eq!(feet_and_inches(text), None, "{text}");
     }
 }
+
+#[test]
+fn a_letter_within_a_number_makes_it_no_two_numbers() {
+    assert_eq!(written("11q.3"), Err(NumberError::Words { rest: "q.3".to_owned() }));
+    assert_eq!(written("119.6/120.1"), Err(NumberError::Several));
+}
